@@ -1,0 +1,1 @@
+"""The numbers: pure functions and small classes on arrays. Imports numpy and scipy only."""

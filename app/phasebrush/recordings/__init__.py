@@ -1,0 +1,1 @@
+"""Files become trials here. The only room that imports mne."""

@@ -1,0 +1,1 @@
+"""Invented demo recordings with known ground truth."""
