@@ -28,7 +28,9 @@ class Spot:
         if not all(math.isfinite(number) for number in numbers):
             raise ValueError(f"a spot needs finite numbers, not {numbers}")
         if not 0 < self.low_hz <= self.high_hz:
-            raise ValueError(f"a spot needs 0 < low <= high, not {self.low_hz} to {self.high_hz} Hz")
+            raise ValueError(
+                f"a spot needs 0 < low <= high, not {self.low_hz} to {self.high_hz} Hz"
+            )
         if self.start_s > self.end_s:
             raise ValueError(f"a spot needs start <= end, not {self.start_s} to {self.end_s} s")
 
