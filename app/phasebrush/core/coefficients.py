@@ -66,14 +66,17 @@ class Coefficients:
         """Mark the valid grid points inside a spot, bool of shape (F, T).
 
         Along an axis on which no grid point lies inside, the one nearest to the spot's centre
-        stands in, so that a point is a box of one. All False where none of them is valid.
+        stands in. Where no point of the box is valid the centre alone is marked, so that there
+        is always something to read; whether it may be trusted says ``valid``.
         """
         freq, time = self.point(spot.centre_hz, spot.centre_s)
         rows = between(self.freqs_hz, spot.low_hz, spot.high_hz)
         columns = between(self.times_s, spot.start_s, spot.end_s)
         rows[freq] |= not rows.any()
         columns[time] |= not columns.any()
-        return rows[:, None] & columns[None, :] & self.valid
+        inside = rows[:, None] & columns[None, :] & self.valid
+        inside[freq, time] |= not inside.any()
+        return np.asarray(inside)
 
 
 def between(values: NDArray[np.float64], low: float, high: float) -> NDArray[np.bool_]:
