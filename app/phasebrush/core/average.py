@@ -28,7 +28,7 @@ def mean_uv(n: int, uv_sum: ArrayLike) -> Floats:
 
 
 def sem_uv(n: int, uv_sum: ArrayLike, uv_square_sum: ArrayLike) -> Floats:
-    """Standard error of the mean, sd / sqrt(n) with n - 1 in the sd, microvolts.
+    """Give the standard error of the mean, sd / sqrt(n) with n - 1 in the sd, microvolts.
 
     Parameters
     ----------

@@ -165,8 +165,10 @@ class Trials:
             raise ValueError("channel names repeat")
         if self.times_s.shape != (n_samples,):
             raise ValueError(f"{self.times_s.shape} times for {n_samples} samples")
-        arrays = [self.data_uv, self.times_s, self.positions_m, self.onset_samples, self.onsets_s,
-                  self.response_times_s, *self.columns.values()]  # fmt: skip
+        arrays: list[NDArray[Any]] = [
+            self.data_uv, self.times_s, self.positions_m, self.onset_samples, self.onsets_s,
+            self.response_times_s, *self.columns.values(),
+        ]  # fmt: skip
         for array in arrays:
             array.flags.writeable = False
 

@@ -140,7 +140,7 @@ def make_plan(
 
 
 def wavelet_spectrum(
-    freqs_hz: NDArray[np.float64], centre_hz: float, sigma_f_hz: float
+    freqs_hz: NDArray[np.floating], centre_hz: float, sigma_f_hz: float
 ) -> NDArray[np.float64]:
     """Zero-mean Morlet wavelet's spectrum W(v), scaled to 1 at its centre frequency.
 

@@ -1,0 +1,182 @@
+"""Sums over a set of trials, and the kernel that forms them."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from phasebrush.core.phase import unit_phasors
+from phasebrush.errors import JobStopped
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from numpy.typing import NDArray
+
+ROWS = 20
+POINTS = 4096
+"""Trials and points taken at a time: scratch of about a megabyte stays in the cache."""
+
+SMALLEST_SAFE = 1e-30
+LARGEST_SAFE = 1e30
+"""Between these |X|^2 keeps its full precision in single precision."""
+
+ARRAYS = ("unit_sum", "n_phase", "power_sum", "coef_sum", "uv_sum", "uv_square_sum")
+
+
+@dataclass(frozen=True, eq=False)
+class TrialSums:
+    """What ITC, PPC, power, average and band of a set of trials are derived from. Read-only.
+
+    Parameters
+    ----------
+    n : int
+        Number of trials.
+    unit_sum : ndarray of complex128, shape (F, T)
+        Sum of X / |X| over the trials that have a phase.
+    n_phase : ndarray of int64, shape (F, T)
+        Number of those trials: n less the coefficients that are exactly 0.
+    power_sum : ndarray of float64, shape (F, T)
+        Sum of |X|^2, uV^2.
+    coef_sum : ndarray of complex128, shape (F, T)
+        Sum of X, uV.
+    uv_sum, uv_square_sum : ndarray of float64, shape (S,)
+        Sums of voltages and of squared voltages, uV and uV^2.
+    """
+
+    n: int
+    unit_sum: NDArray[np.complex128]
+    n_phase: NDArray[np.int64]
+    power_sum: NDArray[np.float64]
+    coef_sum: NDArray[np.complex128]
+    uv_sum: NDArray[np.float64]
+    uv_square_sum: NDArray[np.float64]
+
+    def __post_init__(self) -> None:
+        for name in ARRAYS:
+            getattr(self, name).flags.writeable = False
+
+    @classmethod
+    def empty(cls, n_freqs: int, n_times: int, n_samples: int) -> TrialSums:
+        """Make the sums over no trials."""
+        plane = (n_freqs, n_times)
+        return cls(
+            n=0,
+            unit_sum=np.zeros(plane, np.complex128),
+            n_phase=np.zeros(plane, np.int64),
+            power_sum=np.zeros(plane, np.float64),
+            coef_sum=np.zeros(plane, np.complex128),
+            uv_sum=np.zeros(n_samples, np.float64),
+            uv_square_sum=np.zeros(n_samples, np.float64),
+        )
+
+    def plus(self, other: TrialSums) -> TrialSums:
+        """Add the sums over other trials."""
+        return self._combined(other, np.add)
+
+    def minus(self, other: TrialSums) -> TrialSums:
+        """Take away the sums over other trials, which must be among these."""
+        return self._combined(other, np.subtract)
+
+    def _combined(self, other: TrialSums, combine: np.ufunc) -> TrialSums:
+        pairs = {name: (getattr(self, name), getattr(other, name)) for name in ARRAYS}
+        arrays = {name: combine(mine, theirs) for name, (mine, theirs) in pairs.items()}
+        return TrialSums(n=int(combine(self.n, other.n)), **arrays)
+
+
+def sum_rows(
+    values: NDArray[np.complex64],
+    data_uv: NDArray[np.float32],
+    rows: NDArray[np.intp],
+    *,
+    after_block: Callable[[int], None] | None = None,
+    stopped: Callable[[], bool] | None = None,
+) -> TrialSums:
+    """Sum over some trials in double precision.
+
+    X / |X| is formed in single precision, the same way each time, so that a trial that leaves a
+    set takes away exactly what it brought in.
+
+    Parameters
+    ----------
+    values : ndarray of complex64, shape (N, F, T)
+        Coefficients, C-contiguous.
+    data_uv : ndarray of float32, shape (N, S)
+        Voltages.
+    rows : ndarray of int, shape (n,)
+        The trials.
+    after_block : callable, optional
+        Called with the number of trials of each block that is done.
+    stopped : callable, optional
+        Asked before each block; when it says True the work is given up.
+
+    Raises
+    ------
+    JobStopped
+        If ``stopped`` said True.
+    """
+    n_freqs, n_times = values.shape[1:]
+    n_points = n_freqs * n_times
+    floats = values.view(np.float32).reshape(values.shape[0], 2 * n_points)
+    unit, coef = np.zeros(2 * n_points), np.zeros(2 * n_points)
+    power, zeros = np.zeros(n_points), np.zeros(n_points, np.int64)
+    uv_sum, uv_square_sum = np.zeros(data_uv.shape[1]), np.zeros(data_uv.shape[1])
+    for start in range(0, rows.size, ROWS):
+        if stopped is not None and stopped():
+            raise JobStopped
+        block = rows[start : start + ROWS]
+        for left in range(0, n_points, POINTS):
+            right = min(left + POINTS, n_points)
+            here = slice(2 * left, 2 * right)
+            pairs = floats[block, here]
+            phasors, powers = _phasors_and_power(pairs, zeros[left:right])
+            unit[here] += phasors.sum(axis=0, dtype=np.float64)
+            coef[here] += pairs.sum(axis=0, dtype=np.float64)
+            power[left:right] += powers.sum(axis=0, dtype=np.float64)
+        voltages = data_uv[block].astype(np.float64)
+        uv_sum += voltages.sum(axis=0)
+        uv_square_sum += np.square(voltages, out=voltages).sum(axis=0)
+        if after_block is not None:
+            after_block(block.size)
+    plane = (n_freqs, n_times)
+    return TrialSums(
+        n=int(rows.size),
+        unit_sum=unit.view(np.complex128).reshape(plane),
+        n_phase=rows.size - zeros.reshape(plane),
+        power_sum=power.reshape(plane),
+        coef_sum=coef.view(np.complex128).reshape(plane),
+        uv_sum=uv_sum,
+        uv_square_sum=uv_square_sum,
+    )
+
+
+def _phasors_and_power(
+    pairs: NDArray[np.float32], zeros: NDArray[np.int64]
+) -> tuple[NDArray[np.floating], NDArray[np.floating]]:
+    """Form unit phasors, as pairs of floats, and |X|^2; count zeros into ``zeros``.
+
+    Squares and one reciprocal root are several times faster than the absolute value of a
+    complex number, which guards against overflow at every point; here the whole block is
+    guarded by its extremes.
+    """
+    with np.errstate(over="ignore", under="ignore"):
+        scratch = np.square(pairs)
+        power = scratch[:, 0::2] + scratch[:, 1::2]
+    if power.min() < SMALLEST_SAFE or power.max() > LARGEST_SAFE:
+        return _careful(pairs, zeros)
+    inverse = np.sqrt(power)
+    np.reciprocal(inverse, out=inverse)
+    scratch[:, 0::2] = inverse
+    scratch[:, 1::2] = inverse
+    scratch *= pairs
+    return scratch, power
+
+
+def _careful(
+    pairs: NDArray[np.float32], zeros: NDArray[np.int64]
+) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    values = pairs.view(np.complex64).astype(np.complex128)
+    zeros += np.count_nonzero(values == 0.0, axis=0)
+    return unit_phasors(values).view(np.float64), values.real**2 + values.imag**2
