@@ -40,6 +40,8 @@ def write_edf(session: Session, folder: Path) -> Path:
 
     from phasebrush.synth.sessions import STEP_UV
 
+    # Rounded, as the header has 8 characters for each: digital 0 is then exactly 0 uV.
+    limits_uv = (round(DIGITAL[0] * STEP_UV, 1), round(DIGITAL[1] * STEP_UV, 1))
     signals = [
         EdfSignal.from_digital(
             np.ascontiguousarray(counts),
@@ -47,7 +49,7 @@ def write_edf(session: Session, folder: Path) -> Path:
             label=name,
             transducer_type="AgAgCl electrode",
             physical_dimension="uV",
-            physical_range=(DIGITAL[0] * STEP_UV, DIGITAL[1] * STEP_UV),
+            physical_range=limits_uv,
             digital_range=DIGITAL,
         )
         for name, counts in zip(CHANNELS, session.counts, strict=True)
