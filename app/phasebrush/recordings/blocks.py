@@ -1,0 +1,152 @@
+"""Read a continuous recording block by block: reference, gaps, ends, filter."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from phasebrush.recordings.filtering import filter_inside
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from phasebrush.recordings.recording import Samples
+
+
+class Referencing:
+    """Take a reference off chosen channels, sample by sample.
+
+    Parameters
+    ----------
+    picks : ndarray of int, shape (channels,)
+        Channels that are kept.
+    references : ndarray of int, shape (references,)
+        Channels whose mean is taken off; none leaves the voltages as recorded.
+    """
+
+    def __init__(self, picks: NDArray[np.intp], references: NDArray[np.intp]) -> None:
+        self.needed = np.union1d(picks, references).astype(np.intp)
+        self._picks = np.searchsorted(self.needed, picks)
+        self._references = np.searchsorted(self.needed, references)
+
+    def __call__(self, data: NDArray[np.float64], axis: int) -> NDArray[np.float64]:
+        """Return the kept channels against the reference; ``axis`` is that of channels."""
+        kept = np.take(data, self._picks, axis=axis)
+        if len(self._references):
+            kept -= np.take(data, self._references, axis=axis).mean(axis=axis, keepdims=True)
+        return kept
+
+
+class Blocks:
+    """Referenced and filtered stretches of a recording, asked for in rising order.
+
+    What two stretches share with their filter's reach is read from the file once.
+
+    Parameters
+    ----------
+    samples : Samples
+        The recording.
+    n_samples : int
+        Its length.
+    referencing : Referencing
+        Channels and reference.
+    kernel : ndarray of float64, shape (taps,), or None
+        Symmetric filter kernel.
+    """
+
+    def __init__(
+        self,
+        samples: Samples,
+        n_samples: int,
+        referencing: Referencing,
+        kernel: NDArray[np.float64] | None,
+    ) -> None:
+        self._samples = samples
+        self._n_samples = n_samples
+        self._referencing = referencing
+        self._kernel = kernel
+        self._reach = 0 if kernel is None else len(kernel) // 2
+        self._held_start = 0
+        self._held = np.zeros((0, 0))
+
+    def get(self, start: int, stop: int) -> tuple[NDArray[np.float64], NDArray[np.bool_]]:
+        """One stretch, which may run past the ends of the recording.
+
+        Beyond the ends the recording is continued by its point reflection about the last
+        sample, so that a filter sees no step there.
+
+        Returns
+        -------
+        data : ndarray of float64, shape (channels, samples)
+            Microvolts.
+        finite : ndarray of bool, shape (samples,)
+            False where a channel held no number; such gaps are bridged by a straight line
+            before the filter.
+        """
+        first, last = start - self._reach, stop + self._reach
+        index = _reflected(np.arange(first, last), self._n_samples)
+        inside_first = int(index.min())
+        raw = self._read(inside_first, int(index.max()) + 1)
+        data = self._referencing(raw, axis=0)
+        bad = ~np.isfinite(data)
+        if bad.any():
+            _bridge(data, bad)
+        finite: NDArray[np.bool_] = np.logical_not(np.any(bad, axis=0))
+        if first < 0 or last > self._n_samples:
+            finite = finite[index - inside_first]
+            data = _reflect(data, index - inside_first, first, self._n_samples, inside_first)
+        if self._kernel is not None:
+            data = filter_inside(data, self._kernel)
+            finite = finite[self._reach : self._reach + data.shape[-1]]
+        return data, finite
+
+    def _read(self, start: int, stop: int) -> NDArray[np.float64]:
+        """Read the needed channels; what the last call left is used again."""
+        held_stop = self._held_start + self._held.shape[1]
+        if self._held_start <= start < held_stop:
+            kept = self._held[:, start - self._held_start :][:, : stop - start]
+            fresh_from = start + kept.shape[1]
+            parts = [kept]
+            if fresh_from < stop:
+                parts.append(self._samples.read_uv(self._referencing.needed, fresh_from, stop))
+            data = np.concatenate(parts, axis=1)
+        else:
+            data = self._samples.read_uv(self._referencing.needed, start, stop)
+        self._held_start, self._held = start, data
+        return data
+
+
+def _reflected(index: NDArray[np.int64], n_samples: int) -> NDArray[np.int64]:
+    """Place inside the recording that a place beyond its ends mirrors."""
+    mirrored = np.where(index < 0, -index, index)
+    mirrored = np.where(mirrored >= n_samples, 2 * (n_samples - 1) - mirrored, mirrored)
+    return np.clip(mirrored, 0, n_samples - 1)
+
+
+def _reflect(
+    data: NDArray[np.float64],
+    index: NDArray[np.int64],
+    first: int,
+    n_samples: int,
+    inside_first: int,
+) -> NDArray[np.float64]:
+    """Continue the recording beyond its ends by point reflection."""
+    wide = data[:, index]
+    places = np.arange(first, first + wide.shape[1])
+    before, after = places < 0, places >= n_samples
+    if before.any():
+        wide[:, before] = 2 * data[:, [0 - inside_first]] - wide[:, before]
+    if after.any():
+        wide[:, after] = 2 * data[:, [n_samples - 1 - inside_first]] - wide[:, after]
+    return wide
+
+
+def _bridge(data: NDArray[np.float64], bad: NDArray[np.bool_]) -> None:
+    """Replace samples that are no number by a straight line, in place; all-bad rows by 0."""
+    places = np.arange(data.shape[1])
+    for row in np.flatnonzero(bad.any(axis=1)):
+        good = ~bad[row]
+        data[row, ~good] = (
+            np.interp(places[~good], places[good], data[row, good]) if good.any() else 0.0
+        )

@@ -1,0 +1,71 @@
+"""Which channels are EEG, and what they are called."""
+
+from __future__ import annotations
+
+import re
+from collections import Counter
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+# EDF+ labels may begin with the kind of signal (Kemp & Olivan 2003, Clin Neurophysiol
+# 114:1755-1761; EDF+ "standard texts").
+_PREFIX = re.compile(r"^(EEG|EOG|ECG|EKG|EMG|Resp|Temp|SaO2|Light|Sound|Event|Pos|Stim)\s+(?=\S)")
+_NOT_EEG = re.compile(
+    r"^(eog|heog|veog|e[ck]g|emg|resp|temp|sao2|spo2|pulse|pleth|gsr|eda|scl|light|sound|photo|"
+    r"status|trig|trigger|stim|sti|event|marker|counter|acc|pos|pupil|audio|mic|annotations?)"
+    r"(?![a-z])|(?<![a-z])(eog|e[ck]g|emg)(?![a-z])|annotations$",
+    re.IGNORECASE,
+)
+
+
+def looks_like_eeg(name: str) -> bool:
+    """Whether a channel that has no type is EEG, by its name."""
+    return not _NOT_EEG.search(name.strip())
+
+
+def shown_name(name: str) -> str:
+    """Channel name without the ``EEG`` that EDF+ puts before it."""
+    prefix = _PREFIX.match(name)
+    return name[prefix.end() :].strip() if prefix and prefix[1] == "EEG" else name.strip()
+
+
+def unique_names(names: Sequence[str]) -> tuple[tuple[str, ...], tuple[str, ...]]:
+    """Make names unique and non-empty.
+
+    Returns
+    -------
+    names : tuple of str
+        A repeated name gets a number (``Cz-2``), an empty one its place (``channel 7``).
+    warnings : tuple of str
+        What was changed.
+    """
+    counts = Counter(names)
+    repeated = sorted(name for name, count in counts.items() if count > 1 and name)
+    taken = {name for name, count in counts.items() if count == 1}
+    seen: Counter[str] = Counter()
+    unique: list[str] = []
+    for place, name in enumerate(names, 1):
+        seen[name] += 1
+        wanted = name or f"channel {place}"
+        number = seen[name]
+        while (counts[name] > 1 or not name) and wanted in taken:
+            number = max(number, 2)
+            wanted = f"{name or f'channel {place}'}-{number}"
+            number += 1
+        taken.add(wanted)
+        unique.append(wanted)
+    said = []
+    if repeated:
+        said.append(f"channel names repeat and were numbered: {listed(repeated)}")
+    if counts[""]:
+        said.append(f"{counts['']} channels have no name and were given one by their place")
+    return tuple(unique), tuple(said)
+
+
+def listed(names: Sequence[str], limit: int = 8) -> str:
+    """Names in a row, the rest counted: ``Fp1, Fp2 and 3 more``."""
+    if len(names) <= limit:
+        return ", ".join(names)
+    return f"{', '.join(names[:limit])} and {len(names) - limit} more"

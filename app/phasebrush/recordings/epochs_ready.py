@@ -1,0 +1,142 @@
+"""Ready-made epochs from FIF files."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from phasebrush.core.trials import Source
+from phasebrush.errors import InputError
+from phasebrush.recordings.bids import names_of
+from phasebrush.recordings.channels import shown_name, unique_names
+from phasebrush.recordings.events import Events, column_from
+from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
+from phasebrush.recordings.positions import positions_for
+from phasebrush.recordings.recording import Recording
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+    from numpy.typing import NDArray
+
+UV_PER_V = 1e6
+_READER = "FIF epochs"
+
+
+class FifTrials:
+    """Trials of a FIF epochs file, read in groups when asked for."""
+
+    def __init__(self, epochs: Any, indices: NDArray[np.intp], path: Path) -> None:
+        self._epochs = epochs
+        self._indices = indices
+        self._path = path
+        self.times_s: NDArray[np.float64] = np.array(epochs.times, dtype=np.float64)
+
+    def read_uv(self, start: int, stop: int) -> NDArray[np.float64]:
+        """Trials of all EEG channels, shape (trials, channels, samples), microvolts."""
+        with faults_in_words(self._path, _READER):
+            group = self._epochs[start:stop]
+            data = np.array(group.get_data(picks=self._indices, verbose="ERROR"), dtype=np.float64)
+        data *= UV_PER_V
+        return data
+
+
+def open_fif_epochs(path: Path) -> Recording:
+    """Open FIF epochs without reading their samples.
+
+    Event labels come from the file's list of event names; event columns from its table of
+    metadata, where ``response_time`` (seconds from the event) and ``onset`` (seconds from
+    the recording's start) have their BIDS meaning.
+
+    Raises
+    ------
+    InputError
+        If it cannot be read, or holds no trial or no EEG channel.
+    """
+    with faults_in_words(path, _READER), quietly() as said:
+        epochs = library().read_epochs(path, proj=False, preload=False, verbose=False)
+        types = epochs.get_channel_types()
+        n_trials = len(epochs)
+    if n_trials == 0:
+        raise InputError("holds no trials", "export epochs with at least one trial", path)
+    eeg = np.array([i for i, one in enumerate(types) if one == "eeg"], dtype=np.intp)
+    if len(eeg) == 0:
+        raise InputError(
+            f"none of its {len(types)} channels is EEG", "set the channel types in the file", path
+        )
+    names, warnings = unique_names([shown_name(name) for name in epochs.ch_names])
+    eeg_names = tuple(names[i] for i in eeg)
+    with faults_in_words(path, _READER):
+        events = _events(epochs)
+    bids = names_of(path)
+    bads = epochs.info["bads"]
+    return Recording(
+        path=path,
+        source=Source(str(path), bids.title, _READER, continuous=False),
+        sfreq_hz=float(epochs.info["sfreq"]),
+        n_samples=len(epochs.times),
+        eeg_names=eeg_names,
+        other_names=tuple(n for n, one in zip(names, types, strict=True) if one != "eeg"),
+        positions_m=positions_for(epochs.info, [int(i) for i in eeg], eeg_names),
+        events=events,
+        ready=FifTrials(epochs, eeg, path),
+        bad_names=tuple(names[i] for i in eeg if epochs.ch_names[i] in bads),
+        warnings=(*remarks(said), *warnings),
+        bids=bids.entities,
+    )
+
+
+def _events(epochs: Any) -> Events:
+    """Events of ready-made trials, in the file's order."""
+    by_code = {code: label for label, code in epochs.event_id.items()}
+    samples = np.array(epochs.events[:, 0], dtype=np.int64)
+    # The samples count at the rate of the recording, the trials may have been thinned.
+    recorded_hz = getattr(epochs, "_raw_sfreq", None)
+    rate_hz = float(np.ravel(epochs.info["sfreq"] if recorded_hz is None else recorded_hz)[0])
+    columns = metadata_columns(epochs.metadata)
+    responses = columns.get("response_time")
+    if responses is not None and np.issubdtype(responses.dtype, np.number):
+        del columns["response_time"]
+    else:
+        responses = np.full(len(samples), np.nan)
+    onsets_s = columns.get("onset")
+    if onsets_s is not None and _all_finite(onsets_s):
+        del columns["onset"]
+    else:
+        onsets_s = samples / rate_hz
+    return Events(
+        labels=tuple(str(by_code.get(code, code)) for code in epochs.events[:, 2]),
+        onset_samples=samples,
+        onsets_s=onsets_s,
+        response_times_s=responses,
+        columns=columns,
+        source="epochs",
+    )
+
+
+def _all_finite(values: NDArray[Any]) -> bool:
+    return np.issubdtype(values.dtype, np.number) and bool(np.isfinite(values).all())
+
+
+def metadata_columns(metadata: Any) -> dict[str, NDArray[Any]]:
+    """Columns of an epochs table: a data frame, or a list of mappings where there is none.
+
+    Parameters
+    ----------
+    metadata : pandas.DataFrame, list of dict, or None
+        The library gives a data frame if pandas is installed.
+
+    Returns
+    -------
+    dict of str to ndarray, each of shape (trials,)
+        float64 where every value is a number or missing, else str.
+    """
+    if metadata is None:
+        return {}
+    if hasattr(metadata, "columns"):
+        return {str(name): column_from(list(metadata[name])) for name in metadata.columns}
+    rows: list[Mapping[str, Any]] = list(metadata) if isinstance(metadata, Iterable) else []
+    names = {str(name): None for row in rows for name in row}
+    return {name: column_from([row.get(name) for row in rows]) for name in names}

@@ -1,0 +1,222 @@
+"""Ready-made trials in a NumPy archive (.npz)."""
+
+from __future__ import annotations
+
+import zipfile
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+from numpy.lib import format as npy
+
+from phasebrush.core.trials import Source
+from phasebrush.errors import InputError
+from phasebrush.recordings.bids import file_stem
+from phasebrush.recordings.channels import unique_names
+from phasebrush.recordings.events import Events
+from phasebrush.recordings.library import faults_in_words
+from phasebrush.recordings.positions import standard_positions
+from phasebrush.recordings.recording import Recording
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+    from numpy.typing import NDArray
+
+UV_PER_V = 1e6
+_READER = "NumPy archive"
+_KEYS = "data (trials x channels x samples, volts), times_s and ch_names"
+# Small members (times, names, labels) never need more than this.
+_SMALL_BYTES = 64 * 2**20
+_EVEN = 1e-3
+
+
+@dataclass(frozen=True)
+class Member:
+    """What the header of one array in the archive promises."""
+
+    name: str
+    shape: tuple[int, ...]
+    dtype: np.dtype[Any]
+    fortran: bool
+    header_bytes: int
+
+    @property
+    def n_bytes(self) -> int:
+        """Bytes that shape and type ask for (Python integers do not overflow)."""
+        total = self.dtype.itemsize
+        for length in self.shape:
+            total *= length
+        return total
+
+
+class NpzTrials:
+    """Trials of a NumPy archive, read in groups straight from the archive."""
+
+    def __init__(self, path: Path, data: Member, times_s: NDArray[np.float64]) -> None:
+        self._path = path
+        self._data = data
+        self.times_s = times_s
+
+    def read_uv(self, start: int, stop: int) -> NDArray[np.float64]:
+        """Trials of all channels, shape (trials, channels, samples), microvolts."""
+        with faults_in_words(self._path, _READER):
+            if self._data.fortran:
+                with np.load(self._path, allow_pickle=False) as archive:
+                    values = archive["data"][start:stop]
+            else:
+                values = self._rows(start, stop)
+        return np.asarray(values, dtype=np.float64) * UV_PER_V
+
+    def _rows(self, start: int, stop: int) -> NDArray[Any]:
+        _, n_channels, n_samples = self._data.shape
+        row_bytes = n_channels * n_samples * self._data.dtype.itemsize
+        with zipfile.ZipFile(self._path) as archive, archive.open("data.npy") as stream:
+            stream.seek(self._data.header_bytes + start * row_bytes)
+            raw = stream.read((stop - start) * row_bytes)
+        return np.frombuffer(raw, self._data.dtype).reshape(stop - start, n_channels, n_samples)
+
+
+def open_npz(path: Path) -> Recording:
+    """Open trials in a NumPy archive; the array of samples stays in the file.
+
+    Keys: ``data`` (trials x channels x samples, volts), ``times_s``, ``ch_names``, and if
+    wished ``label`` (one per trial) and ``sfreq_hz``. Pickled objects are refused, and what
+    the headers promise is compared with the archive before anything is allocated.
+
+    Raises
+    ------
+    InputError
+        With the key that is missing or does not fit.
+    """
+    with faults_in_words(path, _READER):
+        members = _members(path)
+        _require(path, members)
+        data = members["data"]
+        times_s = _small(path, members["times_s"]).astype(np.float64)
+        texts = [str(name) for name in _small(path, members["ch_names"])]
+        labels = _labels(path, members, data.shape[0])
+        rate_hz = _small(path, members["sfreq_hz"]) if "sfreq_hz" in members else None
+    sfreq_hz = _rate(path, times_s, rate_hz)
+    repeated = sorted({name for name in texts if texts.count(name) > 1})
+    if repeated:
+        raise InputError(
+            f"ch_names repeats {repeated[0]!r}", "give each channel its own name", path
+        )
+    names, warnings = unique_names(texts)
+    n_trials = data.shape[0]
+    order = np.arange(n_trials, dtype=np.int64)
+    return Recording(
+        path=path,
+        source=Source(str(path), file_stem(path), _READER, continuous=False),
+        sfreq_hz=sfreq_hz,
+        n_samples=len(times_s),
+        eeg_names=names,
+        other_names=(),
+        positions_m=standard_positions(names),
+        events=Events(
+            labels=labels,
+            # There is no clock in the archive: trials count as if they followed each other.
+            onset_samples=order * len(times_s),
+            onsets_s=order * len(times_s) / sfreq_hz,
+            response_times_s=np.full(n_trials, np.nan),
+            source="archive",
+        ),
+        ready=NpzTrials(path, data, times_s),
+        warnings=(*warnings, "event times are not in the file; trials count as back to back"),
+    )
+
+
+def _members(path: Path) -> dict[str, Member]:
+    """Headers of the arrays in the archive, each checked against the size it has there."""
+    found: dict[str, Member] = {}
+    with zipfile.ZipFile(path) as archive:
+        for entry in archive.infolist():
+            if not entry.filename.endswith(".npy"):
+                continue
+            name = entry.filename.removesuffix(".npy")
+            with archive.open(entry) as stream:
+                version = npy.read_magic(stream)
+                read = npy.read_array_header_1_0 if version == (1, 0) else npy.read_array_header_2_0
+                shape, fortran, dtype = read(stream, max_header_size=10_000)
+                member = Member(name, shape, dtype, fortran, stream.tell())
+            if dtype.hasobject:
+                raise InputError(
+                    f"{name} holds Python objects", "store it as a plain array of numbers", path
+                )
+            if member.header_bytes + member.n_bytes != entry.file_size:
+                raise InputError(
+                    f"{name} promises {member.n_bytes:,} bytes but the archive holds "
+                    f"{entry.file_size - member.header_bytes:,}",
+                    "write the archive again",
+                    path,
+                )
+            found[name] = member
+    return found
+
+
+def _require(path: Path, members: dict[str, Member]) -> None:
+    """Check that the needed arrays are there, of the right kind, and fit one another."""
+    for key in ("data", "times_s", "ch_names"):
+        if key not in members:
+            raise InputError(f"has no array named {key}", f"store {_KEYS}", path)
+    shape = members["data"].shape
+    if len(shape) != 3 or 0 in shape or members["data"].dtype.kind not in "fiu":
+        raise InputError(
+            f"data is {members['data'].dtype} of shape {shape}",
+            "store numbers as trials x channels x samples, in volts",
+            path,
+        )
+    for key, wanted in (("times_s", (shape[2],)), ("ch_names", (shape[1],))):
+        if members[key].shape != wanted:
+            raise InputError(
+                f"{key} has shape {members[key].shape} where data asks for {wanted}",
+                f"store {_KEYS}",
+                path,
+            )
+    if members["times_s"].dtype.kind not in "fiu" or members["ch_names"].dtype.kind not in "US":
+        raise InputError("times_s must be numbers and ch_names texts", f"store {_KEYS}", path)
+
+
+def _small(path: Path, member: Member) -> NDArray[Any]:
+    if member.n_bytes > _SMALL_BYTES:
+        raise InputError(f"{member.name} is {member.n_bytes:,} bytes long", "shorten it", path)
+    with np.load(path, allow_pickle=False) as archive:
+        values: NDArray[Any] = archive[member.name]
+    return values.astype(str) if values.dtype.kind == "S" else values
+
+
+def _labels(path: Path, members: dict[str, Member], n_trials: int) -> tuple[str, ...]:
+    if "label" not in members:
+        return ("trial",) * n_trials
+    if members["label"].shape != (n_trials,):
+        raise InputError(
+            f"label has shape {members['label'].shape} for {n_trials} trials",
+            "store one label for each trial",
+            path,
+        )
+    return tuple(str(label) for label in _small(path, members["label"]))
+
+
+def _rate(path: Path, times_s: NDArray[np.float64], given: NDArray[Any] | None) -> float:
+    """Work out the sampling rate from evenly spaced times, compared with the one that is given."""
+    if len(times_s) < 2 or not np.isfinite(times_s).all():
+        raise InputError("times_s needs at least 2 finite numbers", "store seconds", path)
+    steps = np.diff(times_s)
+    step = float(times_s[-1] - times_s[0]) / (len(times_s) - 1)
+    if step <= 0 or np.abs(steps - step).max() > _EVEN * step:
+        raise InputError(
+            f"times_s is not evenly spaced (steps {steps.min():.6g} to {steps.max():.6g} s)",
+            "store seconds from the event at one sampling rate",
+            path,
+        )
+    if given is None:
+        return 1.0 / step
+    rate_hz = float(np.asarray(given, dtype=np.float64).reshape(-1)[0]) if given.size == 1 else 0.0
+    if not rate_hz > 0 or abs(rate_hz * step - 1) > _EVEN:
+        raise InputError(
+            f"sfreq_hz does not fit times_s, whose step is {step:.6g} s ({1 / step:.6g} Hz)",
+            "correct one of the two",
+            path,
+        )
+    return rate_hz

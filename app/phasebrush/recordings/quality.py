@@ -1,0 +1,95 @@
+"""What is odd about trials that have been cut."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from phasebrush.recordings.channels import listed
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from phasebrush.recordings.recording import Recording
+
+# Common practice, no source: scalp EEG spans some 10 to 200 microvolts in a trial.
+SMALLEST_UV = 0.05
+LARGEST_UV = 5_000.0
+_FLAT_UV = 1e-3
+
+
+def data_warnings(
+    data_uv: NDArray[np.float32], names: tuple[str, ...], *, ignore: frozenset[str]
+) -> tuple[str, ...]:
+    """Warn of flat channels and of voltages that no EEG has.
+
+    Parameters
+    ----------
+    data_uv : ndarray of float32, shape (trials, channels, samples)
+        Microvolts.
+    names : tuple of str
+        Channel names.
+    ignore : frozenset of str
+        Channels that are flat by right, as a single reference channel is.
+
+    Returns
+    -------
+    tuple of str
+        Warnings.
+    """
+    span_uv = np.ptp(data_uv, axis=2)
+    flat = (span_uv < _FLAT_UV).mean(axis=0) > 0.5
+    said = []
+    named = [name for name, one in zip(names, flat, strict=True) if one and name not in ignore]
+    if named:
+        what = "channel is" if len(named) == 1 else "channels are"
+        said.append(f"{len(named)} {what} flat in most trials: {listed(named)}")
+    if not flat.all():
+        typical_uv = float(np.median(span_uv[:, ~flat]))
+        if typical_uv > LARGEST_UV:
+            said.append(
+                f"a trial typically spans {typical_uv:,.0f} µV from peak to peak, far more than "
+                f"EEG ({LARGEST_UV:,.0f} µV); check the unit in the file"
+            )
+        elif typical_uv < SMALLEST_UV:
+            said.append(
+                f"a trial typically spans {typical_uv:.2g} µV from peak to peak, far less than "
+                f"EEG ({SMALLEST_UV} µV); check the unit in the file"
+            )
+    return tuple(said)
+
+
+def marked_warnings(
+    recording: Recording, onset_samples: NDArray[np.int64], start: int, stop: int
+) -> tuple[str, ...]:
+    """Count trials that touch a stretch marked bad or an interruption; they are kept.
+
+    Parameters
+    ----------
+    recording : Recording
+        With its marks.
+    onset_samples : ndarray of int64, shape (trials,)
+        Event samples.
+    start, stop : int
+        First and one-past-last sample of a trial, counted from its event.
+    """
+    first, last = onset_samples + start, onset_samples + stop
+    said = []
+    spans = recording.bad_spans
+    touched = (first[:, None] < spans[:, 1]) & (last[:, None] > spans[:, 0])
+    n_bad = int(np.count_nonzero(touched.any(axis=1)))
+    if n_bad:
+        said.append(_count(n_bad, "overlaps", "overlap", "a stretch that the file marks as bad"))
+    breaks = recording.breaks
+    crossed = (first[:, None] < breaks) & (last[:, None] > breaks)
+    n_crossed = int(np.count_nonzero(crossed.any(axis=1)))
+    if n_crossed:
+        said.append(_count(n_crossed, "runs", "run", "across an interruption of the recording"))
+    return tuple(said)
+
+
+def _count(number: int, one: str, many: str, what: str) -> str:
+    if number == 1:
+        return f"1 trial {one} {what}; it was kept"
+    return f"{number} trials {many} {what}; they were kept"

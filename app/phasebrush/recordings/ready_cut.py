@@ -1,0 +1,91 @@
+"""Take ready-made trials over: reference, new rate and baseline, a group at a time."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from phasebrush.errors import JobStopped
+from phasebrush.recordings.blocks import Referencing
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from numpy.typing import NDArray
+
+    from phasebrush.recordings.plan import Plan
+    from phasebrush.recordings.recording import ReadyTrials
+
+_GROUP_NUMBERS = 4_000_000
+
+
+def fill_from_ready(
+    ready: ReadyTrials,
+    plan: Plan,
+    data: NDArray[np.float32],
+    tell: Callable[[float], None],
+    stop: Callable[[], bool],
+) -> NDArray[np.bool_]:
+    """Fill in ready-made trials.
+
+    At a new rate each trial is continued beyond its ends by point reflection about its last
+    sample, as there is nothing to read there.
+
+    Parameters
+    ----------
+    ready : ReadyTrials
+        The trials in the file.
+    plan : Plan
+        Which trials and channels.
+    data : ndarray of float32, shape (trials, channels, samples)
+        Filled in place, microvolts.
+    tell, stop : callable
+        Progress, and whether to stop.
+
+    Returns
+    -------
+    ndarray of bool, shape (trials,)
+        Which trials hold numbers only.
+
+    Raises
+    ------
+    JobStopped
+        If ``stop`` said so.
+    """
+    referencing = Referencing(plan.picks, plan.references)
+    finite = np.ones(len(plan.rows), dtype=bool)
+    n_channels = max(len(referencing.needed), data.shape[1])
+    at_once = max(1, _GROUP_NUMBERS // (n_channels * len(ready.times_s)))
+    done = 0
+    last = int(plan.rows[-1]) + 1
+    for first in range(int(plan.rows[0]), last, at_once):
+        if stop():
+            raise JobStopped
+        until = min(first + at_once, last)
+        wanted = plan.rows[(plan.rows >= first) & (plan.rows < until)]
+        if len(wanted) == 0:
+            continue
+        group = ready.read_uv(first, until)[wanted - first][:, referencing.needed]
+        values = referencing(group, axis=1)
+        here = slice(done, done + len(wanted))
+        finite[here] = np.isfinite(values).all(axis=(1, 2))
+        values[~finite[here]] = 0.0
+        data[here] = plan.finish(_continued(values, plan))
+        done += len(wanted)
+        tell(0.99 * done / len(plan.rows))
+    return finite
+
+
+def _continued(values: NDArray[np.float64], plan: Plan) -> NDArray[np.float64]:
+    """Trials with as many reflected samples at each end as the anti-alias filter needs."""
+    grid = plan.grid
+    before, after = grid.need_start - grid.read_start, grid.read_stop - grid.need_stop
+    inside = values[..., plan.skipped :]
+    if before == 0 and after == 0:
+        return inside
+    room = inside.shape[-1] - 1
+    near = (min(before, room), min(after, room))
+    flat = ((0, 0), (0, 0))
+    wide = np.pad(inside, (*flat, near), mode="reflect", reflect_type="odd")
+    return np.pad(wide, (*flat, (before - near[0], after - near[1])), mode="edge")

@@ -1,0 +1,137 @@
+"""Write trials as FIF epochs, byte for byte the same each time."""
+
+from __future__ import annotations
+
+import json
+import math
+import os
+import struct
+import tempfile
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from phasebrush.errors import InputError
+from phasebrush.recordings.fif_tags import ID_TYPE, tags
+from phasebrush.recordings.library import library, quietly
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from phasebrush.core.trials import Trials
+
+V_PER_UV = 1e-6
+# An identity is version, two words of a machine's network address, and a time. The address
+# names a computer, so it is blanked.
+_BLANK_ID = struct.pack(">iiiii", 0x00010004, 0, 0, 0, 0)
+
+
+def write_fif(trials: Trials, path: str | Path) -> None:
+    """Write trials as a FIF epochs file that `open_recording` reads back.
+
+    Labels become event names; onset, response time and every further column go into the
+    table of metadata. Nothing about the participant, the computer or the moment is written.
+
+    Parameters
+    ----------
+    trials : Trials
+        Trials; margins are written with them.
+    path : str or Path
+        Target, ending in ``-epo.fif`` or ``_epo.fif``. Written beside and then moved in its
+        place, so that a failure leaves no half file.
+
+    Raises
+    ------
+    InputError
+        If the name does not end so, two trials share an event sample, or it cannot be written.
+    """
+    target = Path(path)
+    if not target.name.endswith(("-epo.fif", "_epo.fif")):
+        raise InputError("FIF epochs need this ending: -epo.fif", "rename the target", target)
+    if len(np.unique(trials.onset_samples)) != len(trials):
+        raise InputError(
+            "two trials share an event sample, which FIF epochs cannot hold",
+            "choose labels that do not coincide",
+            target,
+        )
+    epochs = _epochs(trials)
+    try:
+        with tempfile.TemporaryDirectory(dir=target.parent, prefix=".writing-") as folder:
+            draft = Path(folder) / "draft-epo.fif"
+            with quietly():
+                epochs.save(draft, fmt="single", verbose=False)
+            _blank_identities(draft)
+            os.replace(draft, target)  # noqa: PTH105 - over an existing file on Windows too
+    except OSError as fault:
+        raise InputError("cannot be written", "check folder and free space", target) from fault
+
+
+def _epochs(trials: Trials) -> Any:
+    mne = library()
+    names = list(dict.fromkeys(trials.labels))
+    codes = {name: code for code, name in enumerate(names, 1)}
+    events = np.zeros((len(trials), 3), dtype=np.int64)
+    events[:, 0] = trials.onset_samples
+    events[:, 2] = [codes[label] for label in trials.labels]
+    with quietly():
+        info = mne.create_info(list(trials.ch_names), trials.sfreq_hz, "eeg", verbose=False)
+        known = {
+            name: place
+            for name, place in zip(trials.ch_names, trials.positions_m, strict=True)
+            if np.isfinite(place).all()
+        }
+        if known:
+            montage = mne.channels.make_dig_montage(known, coord_frame="head")
+            info.set_montage(montage, on_missing="ignore", verbose=False)
+        epochs = mne.EpochsArray(
+            trials.data_uv.astype(np.float64) * V_PER_UV,
+            info,
+            events,
+            tmin=float(trials.times_s[0]),
+            # A semicolon separates the entries of the file's list of names.
+            event_id={name.replace(";", ","): code for name, code in codes.items()},
+            verbose=False,
+        )
+        _set_table(epochs, _table(trials))
+    return epochs
+
+
+def _table(trials: Trials) -> dict[str, list[Any]]:
+    columns: dict[str, NDArray[Any]] = {
+        "onset": trials.onsets_s,
+        "response_time": trials.response_times_s,
+        **trials.columns,
+    }
+    return {name: _plain(values) for name, values in columns.items()}
+
+
+def _plain(values: NDArray[Any]) -> list[Any]:
+    """Values that JSON can hold; a missing number is null."""
+    if np.issubdtype(values.dtype, np.number):
+        return [None if math.isnan(value) else float(value) for value in values]
+    return [str(value) for value in values]
+
+
+def _set_table(epochs: Any, table: dict[str, list[Any]]) -> None:
+    """Attach the table: a data frame where pandas is installed, else rows."""
+    try:
+        from pandas import DataFrame
+    except ImportError:
+        rows = [dict(zip(table, row, strict=True)) for row in zip(*table.values(), strict=True)]
+        epochs.metadata = json.loads(json.dumps(rows))
+    else:
+        epochs.metadata = DataFrame({name: _series(cells) for name, cells in table.items()})
+
+
+def _series(cells: list[Any]) -> list[Any]:
+    numeric = all(cell is None or isinstance(cell, float) for cell in cells)
+    return [float("nan") if cell is None else cell for cell in cells] if numeric else cells
+
+
+def _blank_identities(path: Path) -> None:
+    with path.open("r+b") as stream:
+        for tag in list(tags(stream)):
+            if tag.type == ID_TYPE and tag.size == len(_BLANK_ID):
+                stream.seek(tag.offset)
+                stream.write(_BLANK_ID)
