@@ -18,7 +18,7 @@ from phasebrush.sample_files import (
     sample_recordings,
     samples_folder,
 )
-from phasebrush.synth.fif_file import without_identity
+from phasebrush.synth.fif_file import as_trials
 from phasebrush.synth.montage import CHANNELS
 from phasebrush.synth.sessions import SESSIONS, Session, make_session, write_all, write_session
 
@@ -170,15 +170,15 @@ def test_fif_epochs_are_read_as_they_were_made(
     timeline = session.timeline
     epochs = mne.read_epochs(recordings["keeper-03"], verbose="error")
     assert tuple(epochs.ch_names) == CHANNELS
-    assert epochs.tmin == pytest.approx(-0.75)
-    assert epochs.tmax == pytest.approx(0.75)
+    assert epochs.tmin == pytest.approx(-0.752)
+    assert epochs.tmax == pytest.approx(0.752)
     names = {number: name for name, number in epochs.event_id.items()}
     labels = [names[number] for number in epochs.events[:, 2]]
     assert labels == ["flash/green" if green else "flash/white" for green in timeline.green]
     np.testing.assert_array_equal(epochs.events[:, 0], timeline.onset_samples)
     for trial in (0, 100, 227):
         first = timeline.onset_samples[trial] - 188
-        made = session.data_uv[:, first : first + 376]
+        made = session.data_uv[:, first : first + 377]
         np.testing.assert_allclose(epochs[trial].get_data()[0] * 1e6, made, atol=1e-4)
 
 
@@ -203,18 +203,9 @@ def test_the_messy_one_is_messy(recordings: dict[str, Path], sessions: dict[str,
     assert np.median(brow_uv[blinked]) > 2 * np.median(brow_uv[~blinked])
 
 
-def test_identity_tags_are_blank(recordings: dict[str, Path]) -> None:
-    content = recordings["keeper-03"].read_bytes()
-    assert without_identity(content) == content
-
-
-def test_a_broken_chain_of_tags_is_refused() -> None:
-    head = (100).to_bytes(4, "big") + (31).to_bytes(4, "big")
-    with pytest.raises(ValueError, match="the tag at byte 0 runs past the end of the file"):
-        without_identity(head + (20).to_bytes(4, "big") + bytes(4))
-    loop = head + bytes(4) + bytes(4) + head + bytes(4) + (16).to_bytes(4, "big")
-    with pytest.raises(ValueError, match="the tag at byte 16 points back to byte 16"):
-        without_identity(loop)
+def test_a_continuous_session_has_no_epochs(sessions: dict[str, Session]) -> None:
+    with pytest.raises(ValueError, match="keeper-01 is continuous; it has no epoch window"):
+        as_trials(sessions["keeper-01"])
 
 
 @pytest.mark.parametrize("name", list(SESSIONS))

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import struct
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -15,12 +14,6 @@ if TYPE_CHECKING:
     from pathlib import Path
 
     from phasebrush.synth.sessions import Session
-
-TAG = struct.Struct(">iiii")
-"""Head of each tag of a FIF file: kind, type, bytes of content, place of the next tag."""
-ID_TYPE = 31
-"""Type of an identification: version, machine (2 words), seconds, microseconds."""
-ID_BYTES = 20
 
 
 def write_epochs(session: Session, folder: Path) -> Path:
@@ -38,11 +31,10 @@ def write_epochs(session: Session, folder: Path) -> Path:
     Path
         The file.
     """
-    from phasebrush.recordings.write_fif import write_fif_epochs
+    from phasebrush.recordings.write_fif import write_fif
 
     path = folder / f"{session.recipe.name}_epo.fif"
-    write_fif_epochs(as_trials(session), path)
-    path.write_bytes(without_identity(path.read_bytes()))
+    write_fif(as_trials(session), path)
     return path
 
 
@@ -76,39 +68,3 @@ def as_trials(session: Session) -> Trials:
         source=Source("", session.recipe.name, "FIF epochs", continuous=False),
         cut=Cut(window_s=window_s, baseline_s=None),
     )
-
-
-def without_identity(content: bytes) -> bytes:
-    """Blank who wrote a FIF file and when, which its identification tags hold.
-
-    Parameters
-    ----------
-    content : bytes
-        A whole FIF file.
-
-    Returns
-    -------
-    bytes
-        The same file with the machine and the time of writing set to zero, so that
-        making the recording again gives the same bytes.
-
-    Raises
-    ------
-    ValueError
-        If the content is not a chain of tags.
-    """
-    blanked = bytearray(content)
-    place = 0
-    while place + TAG.size <= len(blanked):
-        _, kind_of_value, size, following = TAG.unpack_from(blanked, place)
-        start = place + TAG.size
-        if size < 0 or start + size > len(blanked):
-            raise ValueError(f"the tag at byte {place} runs past the end of the file")
-        if kind_of_value == ID_TYPE and size == ID_BYTES:
-            blanked[start + 4 : start + ID_BYTES] = bytes(ID_BYTES - 4)
-        if following < 0:
-            break
-        if following and following <= place:
-            raise ValueError(f"the tag at byte {place} points back to byte {following}")
-        place = following or start + size
-    return bytes(blanked)

@@ -153,7 +153,7 @@ SESSIONS: Mapping[str, Recipe] = MappingProxyType({
         "keeper-03", 4303, "FIF",
         "A messy one: blinks, a flat channel, missing response times, few green flashes.",
         n_flashes=228, n_green=36, rhythms=(ALIGNED_ALPHA, MU), miss_rate=0.2, blinks=70,
-        flat_channel="P8", epoch_s=(-0.75, 0.75),
+        flat_channel="P8", epoch_s=(-0.752, 0.752),
     ),
 })  # fmt: skip
 """The recipes by session name."""
