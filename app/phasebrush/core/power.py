@@ -59,7 +59,8 @@ def induced_power(power_sum: ArrayLike, coef_sum: ArrayLike, n: int) -> Floats:
     n : int
         Number of trials.
     """
-    return total_power(power_sum, n) - evoked_power(coef_sum, n)
+    # Identical trials leave a hair of rounding below 0, which is no power.
+    return np.maximum(total_power(power_sum, n) - evoked_power(coef_sum, n), 0.0)
 
 
 def evoked_share(power_sum: ArrayLike, coef_sum: ArrayLike, n: int) -> Floats:

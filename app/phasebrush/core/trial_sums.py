@@ -120,8 +120,8 @@ def sum_rows(
     n_freqs, n_times = values.shape[1:]
     n_points = n_freqs * n_times
     floats = values.view(np.float32).reshape(values.shape[0], 2 * n_points)
-    unit, coef = np.zeros(2 * n_points), np.zeros(2 * n_points)
-    power, zeros = np.zeros(n_points), np.zeros(n_points, np.int64)
+    unit, coef, squares = np.zeros((3, 2 * n_points))
+    zeros = np.zeros(n_points, np.int64)
     uv_sum, uv_square_sum = np.zeros(data_uv.shape[1]), np.zeros(data_uv.shape[1])
     for start in range(0, rows.size, ROWS):
         if stopped is not None and stopped():
@@ -131,10 +131,10 @@ def sum_rows(
             right = min(left + POINTS, n_points)
             here = slice(2 * left, 2 * right)
             pairs = floats[block, here]
-            phasors, powers = _phasors_and_power(pairs, zeros[left:right])
-            unit[here] += phasors.sum(axis=0, dtype=np.float64)
-            coef[here] += pairs.sum(axis=0, dtype=np.float64)
-            power[left:right] += powers.sum(axis=0, dtype=np.float64)
+            unit[here] += _phasors(pairs, zeros[left:right]).sum(axis=0, dtype=np.float64)
+            exact = pairs.astype(np.float64)
+            coef[here] += exact.sum(axis=0)
+            squares[here] += np.square(exact, out=exact).sum(axis=0)
         voltages = data_uv[block].astype(np.float64)
         uv_sum += voltages.sum(axis=0)
         uv_square_sum += np.square(voltages, out=voltages).sum(axis=0)
@@ -145,17 +145,15 @@ def sum_rows(
         n=int(rows.size),
         unit_sum=unit.view(np.complex128).reshape(plane),
         n_phase=rows.size - zeros.reshape(plane),
-        power_sum=power.reshape(plane),
+        power_sum=(squares[0::2] + squares[1::2]).reshape(plane),
         coef_sum=coef.view(np.complex128).reshape(plane),
         uv_sum=uv_sum,
         uv_square_sum=uv_square_sum,
     )
 
 
-def _phasors_and_power(
-    pairs: NDArray[np.float32], zeros: NDArray[np.int64]
-) -> tuple[NDArray[np.floating], NDArray[np.floating]]:
-    """Form unit phasors, as pairs of floats, and |X|^2; count zeros into ``zeros``.
+def _phasors(pairs: NDArray[np.float32], zeros: NDArray[np.int64]) -> NDArray[np.floating]:
+    """Form unit phasors, as pairs of floats, and count zeros into ``zeros``.
 
     Squares and one reciprocal root are several times faster than the absolute value of a
     complex number, which guards against overflow at every point; here the whole block is
@@ -163,20 +161,14 @@ def _phasors_and_power(
     """
     with np.errstate(over="ignore", under="ignore"):
         scratch = np.square(pairs)
-        power = scratch[:, 0::2] + scratch[:, 1::2]
-    if power.min() < SMALLEST_SAFE or power.max() > LARGEST_SAFE:
-        return _careful(pairs, zeros)
-    inverse = np.sqrt(power)
-    np.reciprocal(inverse, out=inverse)
-    scratch[:, 0::2] = inverse
-    scratch[:, 1::2] = inverse
+        lengths = scratch[:, 0::2] + scratch[:, 1::2]
+    if lengths.min() < SMALLEST_SAFE or lengths.max() > LARGEST_SAFE:
+        values = pairs.view(np.complex64)
+        zeros += np.count_nonzero(values == 0.0, axis=0)
+        return unit_phasors(values).view(np.float64)
+    np.sqrt(lengths, out=lengths)
+    np.reciprocal(lengths, out=lengths)
+    scratch[:, 0::2] = lengths
+    scratch[:, 1::2] = lengths
     scratch *= pairs
-    return scratch, power
-
-
-def _careful(
-    pairs: NDArray[np.float32], zeros: NDArray[np.int64]
-) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
-    values = pairs.view(np.complex64).astype(np.complex128)
-    zeros += np.count_nonzero(values == 0.0, axis=0)
-    return unit_phasors(values).view(np.float64), values.real**2 + values.imag**2
+    return scratch
