@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -27,15 +28,30 @@ class Referencing:
 
     def __init__(self, picks: NDArray[np.intp], references: NDArray[np.intp]) -> None:
         self.needed = np.union1d(picks, references).astype(np.intp)
-        self._picks = np.searchsorted(self.needed, picks)
-        self._references = np.searchsorted(self.needed, references)
+        self._n_references = len(references)
+        self._picks = _as_slice(np.searchsorted(self.needed, picks))
+        self._references = _as_slice(np.searchsorted(self.needed, references))
 
     def __call__(self, data: NDArray[np.float64], axis: int) -> NDArray[np.float64]:
-        """Return the kept channels against the reference; ``axis`` is that of channels."""
-        kept = np.take(data, self._picks, axis=axis)
-        if len(self._references):
-            kept -= np.take(data, self._references, axis=axis).mean(axis=axis, keepdims=True)
-        return kept
+        """Return the kept channels against the reference; ``axis`` is that of channels.
+
+        The result may share memory with ``data``.
+        """
+        before = (slice(None),) * axis
+        kept: NDArray[np.float64] = data[(*before, self._picks)]
+        if self._n_references == 0:
+            return kept
+        level: NDArray[np.float64] = data[(*before, self._references)].mean(
+            axis=axis, keepdims=True
+        )
+        return kept - level
+
+
+def _as_slice(index: NDArray[np.intp]) -> slice | NDArray[np.intp]:
+    """Return a slice where indices follow one another: it copies nothing."""
+    if len(index) and np.array_equal(index, np.arange(index[0], index[0] + len(index))):
+        return slice(int(index[0]), int(index[0]) + len(index))
+    return index
 
 
 class Blocks:
@@ -89,10 +105,7 @@ class Blocks:
         inside_first = int(index.min())
         raw = self._read(inside_first, int(index.max()) + 1)
         data = self._referencing(raw, axis=0)
-        bad = ~np.isfinite(data)
-        if bad.any():
-            _bridge(data, bad)
-        finite: NDArray[np.bool_] = np.logical_not(np.any(bad, axis=0))
+        data, finite = _without_gaps(data)
         if first < 0 or last > self._n_samples:
             finite = finite[index - inside_first]
             data = _reflect(data, index - inside_first, first, self._n_samples, inside_first)
@@ -142,11 +155,22 @@ def _reflect(
     return wide
 
 
-def _bridge(data: NDArray[np.float64], bad: NDArray[np.bool_]) -> None:
-    """Replace samples that are no number by a straight line, in place; all-bad rows by 0."""
+def _without_gaps(
+    data: NDArray[np.float64],
+) -> tuple[NDArray[np.float64], NDArray[np.bool_]]:
+    """Bridge samples that are no number by a straight line (rows without any number: 0).
+
+    Returns the data, copied where anything changed, and which samples are numbers.
+    """
+    if math.isfinite(data.sum()):  # one pass; a single NaN or infinity spoils a sum
+        return data, np.ones(data.shape[1], dtype=bool)
+    bad = ~np.isfinite(data)
+    data = data.copy()
     places = np.arange(data.shape[1])
     for row in np.flatnonzero(bad.any(axis=1)):
         good = ~bad[row]
         data[row, ~good] = (
             np.interp(places[~good], places[good], data[row, good]) if good.any() else 0.0
         )
+    finite: NDArray[np.bool_] = np.logical_not(np.any(bad, axis=0))
+    return data, finite

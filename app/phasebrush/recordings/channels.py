@@ -69,3 +69,10 @@ def listed(names: Sequence[str], limit: int = 8) -> str:
     if len(names) <= limit:
         return ", ".join(names)
     return f"{', '.join(names[:limit])} and {len(names) - limit} more"
+
+
+def bad_warning(names: Sequence[str]) -> tuple[str, ...]:
+    """Say which channels the file marks as bad; nothing if there are none."""
+    if not names:
+        return ()
+    return (f"marked as bad in the file, and left out of an average reference: {listed(names)}",)

@@ -9,7 +9,13 @@ import numpy as np
 from phasebrush.core.trials import Source
 from phasebrush.errors import InputError
 from phasebrush.recordings.bids import BidsNames, names_of
-from phasebrush.recordings.channels import listed, looks_like_eeg, shown_name, unique_names
+from phasebrush.recordings.channels import (
+    bad_warning,
+    listed,
+    looks_like_eeg,
+    shown_name,
+    unique_names,
+)
 from phasebrush.recordings.events import Events, Marks, sort_out
 from phasebrush.recordings.events_table import events_table_beside, read_events_table
 from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
@@ -93,6 +99,7 @@ def open_continuous(
     eeg_names = tuple(names[i] for i in eeg)
     bad = {names[i] for i, name in enumerate(raw.ch_names) if name in raw.info["bads"]}
     bad |= {name for name, row in bids.channels.items() if row.status == "bad"}
+    bad_names = tuple(name for name in eeg_names if name in bad)
     return Recording(
         path=path,
         source=Source(str(path), bids.title, reader, continuous=True),
@@ -103,10 +110,10 @@ def open_continuous(
         positions_m=positions_for(raw.info, [int(i) for i in eeg], eeg_names),
         events=marks.events,
         samples=FileSamples(raw, eeg, path, reader),
-        bad_names=tuple(name for name in eeg_names if name in bad),
+        bad_names=bad_names,
         bad_spans=marks.bad_spans,
         breaks=marks.breaks,
-        warnings=(*remarks(said), *warnings),
+        warnings=(*remarks(said), *warnings, *bad_warning(bad_names)),
         bids=bids.entities,
     )
 

@@ -21,8 +21,9 @@ if TYPE_CHECKING:
 
     from phasebrush.recordings.recording import Recording
 
-# One block holds this many numbers (32 MB in double precision) and at most a minute.
-_BLOCK_NUMBERS = 4_000_000
+# One block holds about this many numbers (8 MB in double precision: it stays in the cache),
+# and at most a minute.
+_BLOCK_NUMBERS = 1_000_000
 _BLOCK_S = 60.0
 _LARGEST_BYTES = 16 * 2**30
 
@@ -118,6 +119,7 @@ def _fill_from_samples(
     length = grid.read_stop - grid.read_start
     reach = 0 if kernel is None else len(kernel) // 2
     longest = min(_BLOCK_NUMBERS // len(recording.eeg_names), int(_BLOCK_S * recording.sfreq_hz))
+    longest = max(longest, 4 * reach)  # else a long filter works mostly on overlap
     finite = np.ones(len(starts), dtype=bool)
     done = 0
     for group in group_trials(starts, length, longest=longest, gap=2 * reach + length):
@@ -127,7 +129,7 @@ def _fill_from_samples(
         block, is_number = blocks.get(origin, int(starts[group[-1]]) + length)
         for trial in group:
             at = int(starts[trial]) - origin
-            data[trial] = plan.finish(block[:, at : at + length])
+            plan.finish(block[:, at : at + length], out=data[trial])
             needed = at + grid.need_start - grid.read_start
             stretch = is_number[needed : needed + grid.need_stop - grid.need_start]
             finite[trial] = bool(stretch.all())

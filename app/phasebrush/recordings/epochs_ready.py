@@ -10,7 +10,7 @@ import numpy as np
 from phasebrush.core.trials import Source
 from phasebrush.errors import InputError
 from phasebrush.recordings.bids import names_of
-from phasebrush.recordings.channels import shown_name, unique_names
+from phasebrush.recordings.channels import bad_warning, shown_name, unique_names
 from phasebrush.recordings.events import Events, column_from
 from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
 from phasebrush.recordings.positions import positions_for
@@ -72,6 +72,7 @@ def open_fif_epochs(path: Path) -> Recording:
         events = _events(epochs)
     bids = names_of(path)
     bads = epochs.info["bads"]
+    bad_names = tuple(names[i] for i in eeg if epochs.ch_names[i] in bads)
     return Recording(
         path=path,
         source=Source(str(path), bids.title, _READER, continuous=False),
@@ -82,8 +83,8 @@ def open_fif_epochs(path: Path) -> Recording:
         positions_m=positions_for(epochs.info, [int(i) for i in eeg], eeg_names),
         events=events,
         ready=FifTrials(epochs, eeg, path),
-        bad_names=tuple(names[i] for i in eeg if epochs.ch_names[i] in bads),
-        warnings=(*remarks(said), *warnings),
+        bad_names=bad_names,
+        warnings=(*remarks(said), *warnings, *bad_warning(bad_names)),
         bids=bids.entities,
     )
 

@@ -8,18 +8,26 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from phasebrush.core.trials import AS_RECORDED, AVERAGE, Cut
 from phasebrush.errors import InputError
 from phasebrush.recordings.channels import listed
-from phasebrush.recordings.resampling import Grid, grid_for, ready_grid
+from phasebrush.recordings.plan_checks import (
+    baseline_samples,
+    check_filter,
+    picked_channels,
+    reference_channels,
+    trial_grid,
+    whole_window,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from numpy.typing import NDArray
 
+    from phasebrush.core.trials import Cut
     from phasebrush.recordings.events import Events
     from phasebrush.recordings.recording import Recording
+    from phasebrush.recordings.resampling import Grid
 
 
 @dataclass(frozen=True)
@@ -82,7 +90,7 @@ class Plan:
     n_chosen: int
     reasons: tuple[str, ...]
 
-    def finish(self, values: NDArray[np.float64]) -> NDArray[np.float64]:
+    def finish(self, values: NDArray[np.float64], out: NDArray[np.float32]) -> None:
         """Change the rate (last axis) and take off the mean voltage of the baseline.
 
         Both in double precision: amplifiers without a high-pass have offsets that leave few
@@ -90,9 +98,10 @@ class Plan:
         """
         resampled = self.grid.apply(values)
         if self.baseline is None:
-            return resampled
-        level: NDArray[np.float64] = resampled[..., self.baseline].mean(axis=-1, keepdims=True)
-        return resampled - level
+            out[...] = resampled
+        else:
+            level = resampled[..., self.baseline].mean(axis=-1, keepdims=True)
+            np.subtract(resampled, level, out=out, casting="same_kind")
 
 
 def preview_cut(recording: Recording, cut: Cut) -> CutPreview:
@@ -131,9 +140,9 @@ def plan_cut(recording: Recording, cut: Cut, *, allow_none: bool = False) -> Pla
         If a label, channel, rate or window does not fit, or no trial is left.
     """
     chosen = _chosen(recording, cut)
-    wide_s = _whole_window(recording, cut)
-    _check_filter(recording, cut)
-    grid, times_s, skipped = _grid(recording, cut, wide_s)
+    wide_s = whole_window(recording, cut)
+    check_filter(recording, cut)
+    grid, times_s, skipped = trial_grid(recording, cut, wide_s)
     rows, reasons = _fitting(recording, chosen, grid)
     if len(rows) == 0 and not allow_none:
         raise InputError(
@@ -144,11 +153,11 @@ def plan_cut(recording: Recording, cut: Cut, *, allow_none: bool = False) -> Pla
     return Plan(
         rows=rows,
         response_times_s=_response_times(recording.events, cut, rows, chosen),
-        picks=_picks(recording, cut),
-        references=_references(recording, cut),
+        picks=picked_channels(recording, cut),
+        references=reference_channels(recording, cut),
         grid=grid,
         times_s=times_s,
-        baseline=_baseline(recording, cut, times_s),
+        baseline=baseline_samples(recording, cut, times_s),
         skipped=skipped,
         n_chosen=len(chosen),
         reasons=reasons,
@@ -157,8 +166,8 @@ def plan_cut(recording: Recording, cut: Cut, *, allow_none: bool = False) -> Pla
 
 def _chosen(recording: Recording, cut: Cut) -> NDArray[np.intp]:
     """Events with a chosen label; an empty choice is every label but the response's."""
-    labels = np.array(recording.events.labels, dtype=object)
-    known = set(recording.events.labels)
+    labels = recording.events.labels
+    known = set(labels)
     for label in (*cut.labels, *((cut.response_label,) if cut.response_label else ())):
         if label not in known:
             raise InputError(
@@ -166,73 +175,8 @@ def _chosen(recording: Recording, cut: Cut) -> NDArray[np.intp]:
                 f"choose among {listed(sorted(known), 12)}",
                 recording.path,
             )
-    if cut.labels:
-        return np.flatnonzero(np.isin(labels, list(cut.labels)))
-    return np.flatnonzero(labels != cut.response_label)
-
-
-def _whole_window(recording: Recording, cut: Cut) -> tuple[float, float]:
-    """Window with margins; ready-made trials are taken whole, the shown window inside them."""
-    there = recording.window_s
-    if there is None:
-        return cut.window_s[0] - cut.margin_s, cut.window_s[1] + cut.margin_s
-    half_s = 0.5 / recording.sfreq_hz
-    if cut.window_s[0] < there[0] - half_s or cut.window_s[1] > there[1] + half_s:
-        raise InputError(
-            f"the window {cut.window_s[0]:g} to {cut.window_s[1]:g} s is wider than its trials "
-            f"({there[0]:g} to {there[1]:g} s)",
-            "choose a window inside them",
-            recording.path,
-        )
-    return there
-
-
-def _check_filter(recording: Recording, cut: Cut) -> None:
-    edges_hz = [edge for edge in (cut.high_pass_hz, cut.low_pass_hz) if edge is not None]
-    if edges_hz and not recording.continuous:
-        raise InputError(
-            "its trials are ready-made, and a filter needs the continuous recording",
-            "leave out the filter or open the continuous recording",
-            recording.path,
-        )
-    nyquist_hz = recording.sfreq_hz / 2
-    if edges_hz and max(edges_hz) >= nyquist_hz:
-        raise InputError(
-            f"a filter edge of {max(edges_hz):g} Hz is not below half its sampling rate "
-            f"({nyquist_hz:g} Hz)",
-            "choose a lower edge",
-            recording.path,
-        )
-
-
-def _grid(
-    recording: Recording, cut: Cut, wide_s: tuple[float, float]
-) -> tuple[Grid, NDArray[np.float64], int]:
-    """Lay out samples and times of a trial; how many samples a ready-made one loses in front."""
-    try:
-        if recording.ready is None:
-            grid = grid_for(recording.sfreq_hz, wide_s, cut.resample_hz)
-            return grid, grid.times_s, 0
-        return ready_grid(recording.sfreq_hz, recording.ready.times_s, cut.resample_hz)
-    except ValueError as fault:
-        raise InputError(str(fault), "choose another rate or window", recording.path) from fault
-
-
-def _baseline(recording: Recording, cut: Cut, times_s: NDArray[np.float64]) -> slice | None:
-    """Find the samples of the baseline, which must lie inside the trials."""
-    if cut.baseline_s is None:
-        return None
-    start_s, end_s = cut.baseline_s
-    half_s = 0.5 * float(times_s[1] - times_s[0])
-    if start_s < times_s[0] - 2 * half_s or end_s > times_s[-1] + 2 * half_s:
-        raise InputError(
-            f"the baseline {start_s:g} to {end_s:g} s is not inside the trials "
-            f"({times_s[0]:g} to {times_s[-1]:g} s)",
-            "move the baseline or widen the window",
-            recording.path,
-        )
-    inside = np.flatnonzero((times_s >= start_s - half_s) & (times_s <= end_s + half_s))
-    return slice(int(inside[0]), int(inside[-1]) + 1)
+    wanted = set(cut.labels) or known - {cut.response_label}
+    return np.array([row for row, label in enumerate(labels) if label in wanted], dtype=np.intp)
 
 
 def _fitting(
@@ -285,39 +229,3 @@ def _response_times(
     next_s = np.append(starts_s, np.inf)[np.searchsorted(starts_s, onsets_s, side="right")]
     delay_s = first_s - onsets_s
     return np.where((delay_s <= cut.response_limit_s) & (first_s < next_s), delay_s, np.nan)
-
-
-def _picks(recording: Recording, cut: Cut) -> NDArray[np.intp]:
-    wanted = recording.eeg_names if cut.channels is None else cut.channels
-    if not wanted or len(set(wanted)) != len(wanted):
-        raise InputError(
-            "the choice of channels is empty or repeats a name",
-            "choose each channel once",
-            recording.path,
-        )
-    return _indices(recording, wanted)
-
-
-def _references(recording: Recording, cut: Cut) -> NDArray[np.intp]:
-    """Channels whose mean is the reference; those marked bad take no part in the average."""
-    if cut.reference == AS_RECORDED:
-        return np.zeros(0, dtype=np.intp)
-    if cut.reference == AVERAGE:
-        good = [name for name in recording.eeg_names if name not in recording.bad_names]
-        return _indices(recording, good or recording.eeg_names)
-    if isinstance(cut.reference, str):
-        return _indices(recording, (cut.reference,))
-    return _indices(recording, cut.reference)
-
-
-def _indices(recording: Recording, names: tuple[str, ...] | list[str]) -> NDArray[np.intp]:
-    places = {name: index for index, name in enumerate(recording.eeg_names)}
-    for name in names:
-        if name not in places:
-            what = "no EEG channel" if name in recording.other_names else "no channel"
-            raise InputError(
-                f"has {what} {name!r}",
-                f"choose among {listed(recording.eeg_names, 12)}",
-                recording.path,
-            )
-    return np.array([places[name] for name in names], dtype=np.intp)

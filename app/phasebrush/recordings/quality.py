@@ -38,7 +38,7 @@ def data_warnings(
     tuple of str
         Warnings.
     """
-    span_uv = np.ptp(data_uv, axis=2)
+    span_uv = data_uv.max(axis=2) - data_uv.min(axis=2)
     flat = (span_uv < _FLAT_UV).mean(axis=0) > 0.5
     said = []
     named = [name for name, one in zip(names, flat, strict=True) if one and name not in ignore]

@@ -70,8 +70,9 @@ def fill_from_ready(
         values = referencing(group, axis=1)
         here = slice(done, done + len(wanted))
         finite[here] = np.isfinite(values).all(axis=(1, 2))
-        values[~finite[here]] = 0.0
-        data[here] = plan.finish(_continued(values, plan))
+        if not finite[here].all():
+            values = np.where(finite[here][:, None, None], values, 0.0)
+        plan.finish(_continued(values, plan), out=data[here])
         done += len(wanted)
         tell(0.99 * done / len(plan.rows))
     return finite
