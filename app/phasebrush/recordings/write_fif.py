@@ -5,15 +5,16 @@ from __future__ import annotations
 import json
 import math
 import os
+import shutil
 import struct
 import tempfile
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import IO, TYPE_CHECKING, Any
 
 import numpy as np
 
 from phasebrush.errors import InputError
-from phasebrush.recordings.fif_tags import ID_TYPE, tags
+from phasebrush.recordings.fif_tags import BLOCK_START, ID_TYPE, tags
 from phasebrush.recordings.library import library, quietly
 
 if TYPE_CHECKING:
@@ -22,6 +23,9 @@ if TYPE_CHECKING:
     from phasebrush.core.trials import Trials
 
 V_PER_UV = 1e-6
+TAG_HEAD = struct.Struct(">iiii")
+BLOCK_END, EVENTS_BLOCK, METADATA_BLOCK = 105, 361, 3811
+_INT, _STRING, _DESCRIPTION = 3, 10, 206
 # An identity is version, two words of a machine's network address, and a time. The address
 # names a computer, so it is blanked.
 _BLANK_ID = struct.pack(">iiiii", 0x00010004, 0, 0, 0, 0)
@@ -58,11 +62,12 @@ def write_fif(trials: Trials, path: str | Path) -> None:
     epochs = _epochs(trials)
     try:
         with tempfile.TemporaryDirectory(dir=target.parent, prefix=".writing-") as folder:
-            draft = Path(folder) / "draft-epo.fif"
+            draft, whole = Path(folder) / "draft-epo.fif", Path(folder) / "whole-epo.fif"
             with quietly():
                 epochs.save(draft, fmt="single", verbose=False)
-            _blank_identities(draft)
-            os.replace(draft, target)  # noqa: PTH105 - over an existing file on Windows too
+            _add_table(draft, whole, _rows(trials))
+            _blank_identities(whole)
+            os.replace(whole, target)  # noqa: PTH105 - over an existing file on Windows too
     except OSError as fault:
         raise InputError("cannot be written", "check folder and free space", target) from fault
 
@@ -84,7 +89,7 @@ def _epochs(trials: Trials) -> Any:
         if known:
             montage = mne.channels.make_dig_montage(known, coord_frame="head")
             info.set_montage(montage, on_missing="ignore", verbose=False)
-        epochs = mne.EpochsArray(
+        return mne.EpochsArray(
             trials.data_uv.astype(np.float64) * V_PER_UV,
             info,
             events,
@@ -93,17 +98,17 @@ def _epochs(trials: Trials) -> Any:
             event_id={name.replace(";", ","): code for name, code in codes.items()},
             verbose=False,
         )
-        _set_table(epochs, _table(trials))
-    return epochs
 
 
-def _table(trials: Trials) -> dict[str, list[Any]]:
+def _rows(trials: Trials) -> list[dict[str, Any]]:
+    """Make one row of metadata for each trial."""
     columns: dict[str, NDArray[Any]] = {
         "onset": trials.onsets_s,
         "response_time": trials.response_times_s,
         **trials.columns,
     }
-    return {name: _plain(values) for name, values in columns.items()}
+    cells = {name: _plain(values) for name, values in columns.items()}
+    return [dict(zip(cells, row, strict=True)) for row in zip(*cells.values(), strict=True)]
 
 
 def _plain(values: NDArray[Any]) -> list[Any]:
@@ -113,20 +118,35 @@ def _plain(values: NDArray[Any]) -> list[Any]:
     return [str(value) for value in values]
 
 
-def _set_table(epochs: Any, table: dict[str, list[Any]]) -> None:
-    """Attach the table: a data frame where pandas is installed, else rows."""
-    try:
-        from pandas import DataFrame
-    except ImportError:
-        rows = [dict(zip(table, row, strict=True)) for row in zip(*table.values(), strict=True)]
-        epochs.metadata = json.loads(json.dumps(rows))
-    else:
-        epochs.metadata = DataFrame({name: _series(cells) for name, cells in table.items()})
+def _add_table(draft: Path, whole: Path, rows: list[dict[str, Any]]) -> None:
+    """Copy a file of epochs and put the metadata behind its events, where it belongs.
+
+    The library writes another spelling, and a column "index" more, where pandas is
+    installed; written here, the file does not depend on what else is installed. Tags
+    follow one another without pointers, so a block can be put between two of them.
+    """
+    text = json.dumps(rows).encode("ascii")
+    block = b"".join([
+        TAG_HEAD.pack(BLOCK_START, _INT, 4, 0) + struct.pack(">i", METADATA_BLOCK),
+        TAG_HEAD.pack(_DESCRIPTION, _STRING, len(text), 0) + text,
+        TAG_HEAD.pack(BLOCK_END, _INT, 4, 0) + struct.pack(">i", METADATA_BLOCK),
+    ])  # fmt: skip
+    with draft.open("rb") as source, whole.open("wb") as target:
+        end_of_events = _end_of_block(source, EVENTS_BLOCK)
+        source.seek(0)
+        target.write(source.read(end_of_events))
+        target.write(block)
+        shutil.copyfileobj(source, target)
 
 
-def _series(cells: list[Any]) -> list[Any]:
-    numeric = all(cell is None or isinstance(cell, float) for cell in cells)
-    return [float("nan") if cell is None else cell for cell in cells] if numeric else cells
+def _end_of_block(stream: IO[bytes], block: int) -> int:
+    """Find the byte behind the end of the first block of a kind."""
+    for tag in tags(stream):
+        if tag.kind == BLOCK_END and tag.size == 4:
+            stream.seek(tag.offset)
+            if struct.unpack(">i", stream.read(4))[0] == block:
+                return tag.offset + tag.size
+    raise ValueError(f"the file holds no block {block}")
 
 
 def _blank_identities(path: Path) -> None:
