@@ -199,8 +199,8 @@ def _marks(
 def _annotated(raw: Any) -> tuple[Events, NDArray[np.float64]]:
     """All annotations as events (samples counted from the file's first), and durations."""
     notes = raw.annotations
-    # Where there is a date, onsets count from it, and the file may begin later.
-    late_s = 0.0 if notes.orig_time is None else raw.first_samp / raw.info["sfreq"]
+    # The library counts onsets from the start of the clock; the file may begin later.
+    late_s = raw.first_samp / raw.info["sfreq"]
     onsets_s = np.asarray(notes.onset, dtype=np.float64) - late_s
     events = Events(
         labels=tuple(" ".join(str(text).split()) or "n/a" for text in notes.description),

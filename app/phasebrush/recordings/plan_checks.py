@@ -118,7 +118,7 @@ def baseline_samples(recording: Recording, cut: Cut, times_s: NDArray[np.float64
 
 
 def picked_channels(recording: Recording, cut: Cut) -> NDArray[np.intp]:
-    """Indices of the channels that a cut keeps, in its order.
+    """Find the indices of the channels that a cut keeps, in its order.
 
     Raises
     ------
@@ -136,7 +136,7 @@ def picked_channels(recording: Recording, cut: Cut) -> NDArray[np.intp]:
 
 
 def reference_channels(recording: Recording, cut: Cut) -> NDArray[np.intp]:
-    """Indices of the channels whose mean is the reference; empty for voltages as recorded.
+    """Find the channels whose mean is the reference; none for voltages as recorded.
 
     Channels that the file marks as bad take no part in the average.
 
