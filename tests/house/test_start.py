@@ -133,6 +133,22 @@ def test_a_folder_that_cannot_be_written_is_one_line(
         environment.set_up()
 
 
+def test_a_python_without_ensurepip_names_the_missing_package(
+    fresh: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    asked: list[str] = []
+    monkeypatch.setattr(environment.importlib.util, "find_spec", lambda _: None)
+    monkeypatch.setattr(system_libraries, "install", lambda names: bool(asked.extend(names)))
+    monkeypatch.setattr(system_libraries.shutil, "which", lambda _: "/usr/bin/apt-get")
+    package = f"python{sys.version_info.major}.{sys.version_info.minor}-venv"
+    with pytest.raises(environment.SetUpError) as failed:
+        environment.set_up()
+    assert str(failed.value) == (
+        f"this Python cannot make environments; run: sudo apt-get install {package}"
+    )
+    assert asked == [package]
+
+
 def test_display_is_found_as_the_system_says(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(sys, "platform", "linux")
     for name in ("DISPLAY", "WAYLAND_DISPLAY"):
