@@ -1,0 +1,161 @@
+"""Starts the window, with or without a display."""
+
+from __future__ import annotations
+
+import os
+import sys
+import time
+from dataclasses import dataclass
+from pathlib import Path
+
+import pyqtgraph as pg
+from platformdirs import user_config_path
+from PySide6.QtCore import QEventLoop, QSettings
+from PySide6.QtWidgets import QApplication
+
+from phasebrush.errors import InputError
+from phasebrush.gui import theme
+from phasebrush.gui.background import ThreadRunner
+from phasebrush.gui.main_window import MainWindow
+from phasebrush.model import intents
+from phasebrush.model.workbench import Workbench
+
+LONGEST_PICTURE_S = 300.0
+
+
+@dataclass(frozen=True)
+class Wish:
+    """What to open, and how.
+
+    Parameters
+    ----------
+    path : str
+        Recording or folder; empty for none.
+    picture : str
+        PNG to write instead of staying open.
+    size : tuple of int
+        Width and height of the window.
+    look : str
+        ``"light"``, ``"dark"`` or ``"system"``.
+    parts : dict
+        Quick parts to pick once the recording is open: ``{"A": "highest-third"}``.
+    channel : str
+        Channel to show; empty for the usual one.
+    """
+
+    path: str = ""
+    picture: str = ""
+    size: tuple[int, int] = (1600, 1000)
+    look: str = "system"
+    parts: tuple[tuple[str, str], ...] = ()
+    channel: str = ""
+
+
+def application() -> QApplication:
+    """The one QApplication; without a display Qt draws into memory."""
+    existing = QApplication.instance()
+    if isinstance(existing, QApplication):
+        return existing
+    if not has_display():
+        os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
+    pg.setConfigOptions(antialias=False, imageAxisOrder="row-major", useNumba=False)
+    made = QApplication(sys.argv[:1])
+    made.setApplicationName("Phasebrush")
+    made.setDesktopFileName("phasebrush")
+    return made
+
+
+def has_display() -> bool:
+    """Whether a window can be shown."""
+    if sys.platform in {"win32", "darwin"}:
+        return True
+    return bool(os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
+
+
+def settings() -> QSettings:
+    """The settings file: arrangement of the window and look, nothing about recordings."""
+    folder = user_config_path("phasebrush", appauthor=False, ensure_exists=True)
+    return QSettings(str(folder / "window.ini"), QSettings.Format.IniFormat)
+
+
+def run(wish: Wish) -> int:
+    """Open the window; returns the exit status.
+
+    Raises
+    ------
+    InputError
+        With ``picture``: if the recording cannot be opened or the picture not written.
+    """
+    app = application()
+    kept = None if wish.picture else settings()
+    named = wish.look
+    if named == "system" and kept is not None:
+        named = str(kept.value("look", "system"))
+    look = theme.look_named(named)
+    runner = ThreadRunner()
+    window = MainWindow(Workbench(runner), look, kept)
+    app.aboutToQuit.connect(window.shut_down)
+    window.resize(*wish.size)
+    if not wish.picture:
+        window.restore_place()
+    window.show()
+    try:
+        if wish.picture:
+            _draw_picture(app, window, wish)
+            return 0
+        if wish.path:
+            window.open_path(wish.path)
+        return app.exec()
+    finally:
+        window.close()
+        app.processEvents()
+        theme.forget_pixmaps()
+
+
+def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
+    said: list[str] = []
+    bench = window.workbench
+    if wish.path:
+        bench.listeners.message = said.append
+        bench.listeners.recording_read = None
+        window.open_path(wish.path)
+        _wait(app, window)
+        if bench.snapshot.trials is None:
+            raise InputError(*_split(said), wish.path)
+        bench.listeners.message = window.message_bar.say
+    if wish.channel:
+        if bench.snapshot.trials and wish.channel not in bench.snapshot.trials.ch_names:
+            names = ", ".join(bench.snapshot.trials.ch_names)
+            raise InputError(f"there is no channel {wish.channel}", f"choose one of {names}",
+                             wish.path)  # fmt: skip
+        bench.do(intents.show_channel(wish.channel))
+        _wait(app, window)
+    if wish.parts:
+        bench.do(intents.pick_parts(dict(wish.parts)))  # type: ignore[arg-type]
+        _wait(app, window)
+    target = Path(wish.picture)
+    beside = target.with_name(f".{target.name}.part")
+    if not window.save_picture(str(beside)):
+        beside.unlink(missing_ok=True)
+        raise InputError("could not be written", "choose a folder that can be written", target)
+    beside.replace(target)
+
+
+def _split(said: list[str]) -> tuple[str, str]:
+    """Fault and remedy of the last message, without the file's name before them."""
+    line = said[-1] if said else "could not be opened; try another file"
+    wrong, _semicolon, remedy = line.partition("; ")
+    return wrong.split(": ", 1)[-1], remedy or "try another file"
+
+
+def _wait(app: QApplication, window: MainWindow) -> None:
+    """Let the window work until everything asked for is drawn."""
+    end = time.monotonic() + LONGEST_PICTURE_S
+    while time.monotonic() < end:
+        app.processEvents(QEventLoop.ProcessEventsFlag.AllEvents, 20)
+        if window.settled:
+            app.processEvents()
+            if window.settled:
+                return
+        time.sleep(0.002)
+    raise InputError("was not drawn in time", "try fewer frequencies or fewer trials")

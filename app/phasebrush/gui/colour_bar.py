@@ -1,0 +1,88 @@
+"""A colour bar of fixed width beside a map, with unit and chance mark."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+from PySide6.QtCore import QRectF, QSize, Qt
+from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
+from PySide6.QtWidgets import QWidget
+
+from phasebrush.gui import theme
+from phasebrush.gui.time_plot import pen
+from phasebrush.look.tokens import LIGHT, Look
+
+WIDTH = 64
+BAR_LEFT, BAR_WIDTH = 8, 10
+
+
+def decimals_for(step: float) -> int:
+    """Decimals that a tick step needs."""
+    return max(0, int(np.ceil(-np.log10(step) - 1e-9)))
+
+
+def number(value: float, decimals: int) -> str:
+    """A number with a true minus sign."""
+    return f"{value:.{decimals}f}".replace("-", "−")
+
+
+class ColourBar(QWidget):
+    """Colours from low to high, ticks with the unit, and a mark at the chance level."""
+
+    def __init__(self, unit: str, top: int, bottom: int, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._unit, self._top, self._bottom = unit, top, bottom
+        self._range = (0.0, 1.0)
+        self._table: NDArray[np.uint8] = np.zeros((256, 3), dtype=np.uint8)
+        self._chance = float("nan")
+        self._look = LIGHT
+        self.setFixedWidth(WIDTH)
+        self.setFont(theme.font(8.0))
+
+    def sizeHint(self) -> QSize:
+        """As wide as it is, as high as the map."""
+        return QSize(WIDTH, 60)
+
+    def show_scale(
+        self, low: float, high: float, table: NDArray[np.uint8], look: Look, chance: float
+    ) -> None:
+        """Change the scale; NaN for no chance mark."""
+        same = (low, high) == self._range and table is self._table and look is self._look
+        if same and (chance == self._chance or (np.isnan(chance) and np.isnan(self._chance))):
+            return
+        self._range, self._table, self._look, self._chance = (low, high), table, look, chance
+        mark = "" if np.isnan(chance) else f"; chance (5 %) at {chance:.3f}"
+        self.setToolTip(f"{self._unit} from {low:g} to {high:g}{mark}")
+        self.update()
+
+    def paintEvent(self, _event: QPaintEvent) -> None:
+        """Draw the bar, its ticks and the unit."""
+        painter = QPainter(self)
+        painter.setFont(self.font())
+        low, high = self._range
+        bar = QRectF(BAR_LEFT, self._top, BAR_WIDTH, self.height() - self._top - self._bottom)
+        strip = np.ascontiguousarray(self._table[::-1])
+        picture = QImage(strip.data, 1, 256, 3, QImage.Format.Format_RGB888)
+        painter.drawImage(bar, picture)
+        painter.setPen(pen(self._look.hairline))
+        painter.drawRect(bar)
+        painter.setPen(QColor(self._look.muted))
+        span = high - low
+        step = next(s for s in (0.05, 0.1, 0.2, 0.25, 0.5, 1, 2, 5, 10, 20, 50, 1e9)
+                    if span / s <= max(2, bar.height() / 28))  # fmt: skip
+        places = decimals_for(step)
+        first = np.ceil(low / step - 1e-9) * step
+        half = painter.fontMetrics().height() / 2
+        for value in np.arange(first, high + step * 1e-6, step):
+            y = bar.bottom() - (value - low) / span * bar.height()
+            painter.drawLine(round(bar.right()), round(y), round(bar.right()) + 3, round(y))
+            box = QRectF(bar.right() + 6, y - half, WIDTH - bar.right() - 6, 2 * half)
+            painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, number(float(value), places))
+        if low <= self._chance <= high:
+            y = round(bar.bottom() - (self._chance - low) / span * bar.height())
+            painter.setPen(pen(self._look.text, width=2))
+            painter.drawLine(round(bar.left()) - 4, y, round(bar.right()) + 2, y)
+        painter.setPen(QColor(self._look.muted))
+        unit = QRectF(0, bar.bottom() + 4, WIDTH, 2 * half)
+        painter.drawText(unit, Qt.AlignmentFlag.AlignLeft, f" {self._unit}")
+        painter.end()

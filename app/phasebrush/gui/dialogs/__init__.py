@@ -1,0 +1,1 @@
+"""Dialogs: how to cut, how to transform, which keys, about."""

@@ -1,0 +1,167 @@
+"""The docks around the bench: built once, closed and brought back by the person."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QHBoxLayout, QMainWindow, QMenu, QToolButton, QWidget
+
+from phasebrush.gui.panel import PanelDock
+from phasebrush.gui.view import View
+from phasebrush.gui.views.channel_list import ChannelList
+from phasebrush.gui.views.head_map import HeadMap
+from phasebrush.gui.views.map_view import ItcMap, PowerMap
+from phasebrush.gui.views.order_panel import OrderPanel
+from phasebrush.gui.views.phase_dial import PhaseDial
+from phasebrush.gui.views.readout import ReadoutView
+from phasebrush.gui.views.recordings_list import RecordingsList
+from phasebrush.gui.views.subset_cards import SubsetCards
+from phasebrush.gui.views.trace_view import ItcTrace, PowerTrace
+from phasebrush.model.results import Snapshot
+from phasebrush.model.state import MapsShow
+
+LEFT = Qt.DockWidgetArea.LeftDockWidgetArea
+RIGHT = Qt.DockWidgetArea.RightDockWidgetArea
+MAPS_SHOW: tuple[tuple[MapsShow, str, str], ...] = (
+    ("all", "all", "Maps show all trials (1)"),
+    ("A", "A", "Maps show A (2)"),
+    ("B", "B", "Maps show B (3)"),
+    ("A-B", "A−B", "Maps show A − B (4)"),
+)
+SET_WORDS = {"all": "all trials", "A": "A", "B": "B", "A-B": "A − B"}
+
+
+@dataclass(frozen=True)
+class Views:
+    """The views in the docks."""
+
+    recordings: RecordingsList
+    head: HeadMap
+    channels: ChannelList
+    order: OrderPanel
+    subsets: SubsetCards
+    itc_map: ItcMap
+    itc_trace: ItcTrace
+    power_map: PowerMap
+    power_trace: PowerTrace
+    dial: PhaseDial
+    readout: ReadoutView
+
+    def all(self) -> tuple[View, ...]:
+        """Every view."""
+        return tuple(self.__dict__.values())
+
+
+def seconds(value: float) -> str:
+    """A time in words, with a true minus sign."""
+    return f"{value:.2f}".replace("-", "−") + " s"
+
+
+class Docks:
+    """Makes the docks of a window and their menu."""
+
+    def __init__(self, window: QMainWindow) -> None:
+        self._window = window
+        self.views = Views(
+            RecordingsList(), HeadMap(), ChannelList(), OrderPanel(), SubsetCards(), ItcMap(),
+            ItcTrace(), PowerMap(), PowerTrace(), PhaseDial(), ReadoutView(),
+        )  # fmt: skip
+        views = self.views
+        head = QWidget()
+        row = QHBoxLayout(head)
+        row.setContentsMargins(0, 0, 0, 0)
+        row.addWidget(views.head, 5)
+        row.addWidget(views.channels, 3)
+        views.channels.setMinimumWidth(62)
+        self.recordings = self._dock("recordings", "Recordings", LEFT, views.recordings)
+        self.channel = self._dock("channel", "Channel", LEFT, head)
+        self.order = self._dock("order", "Order", LEFT, views.order)
+        self.subsets = self._dock("subsets", "Subsets", LEFT, views.subsets)
+        self.itc = self._dock("itc", "ITC", RIGHT, views.itc_map, views.itc_trace)
+        self.power = self._dock("power", "Power", RIGHT, views.power_map, views.power_trace)
+        self.dial = self._dock("dial", "Phase at the spot", RIGHT, views.dial)
+        self.readout = self._dock("readout", "At the spot", RIGHT, views.readout)
+        self.map_buttons = {
+            which: self._map_button(words, tip) for which, words, tip in MAPS_SHOW
+        }
+
+    @property
+    def docks(self) -> tuple[PanelDock, ...]:
+        """Every dock, in reading order."""
+        return (
+            self.recordings, self.channel, self.order, self.subsets, self.itc, self.power,
+            self.dial, self.readout,
+        )  # fmt: skip
+
+    def _dock(
+        self, name: str, title: str, area: Qt.DockWidgetArea, *parts: QWidget
+    ) -> PanelDock:
+        dock = PanelDock(name, title, self._window)
+        for number, part in enumerate(parts):
+            dock.body.box.addWidget(part, 3 - number)
+        self._window.addDockWidget(area, dock)
+        return dock
+
+    def _map_button(self, words: str, tip: str) -> QToolButton:
+        button = self.itc.title_line.add_tool(words, tip, checkable=True)
+        button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
+        return button
+
+    def arrange(self) -> None:
+        """The arrangement of a first start; brings back what was closed."""
+        window = self._window
+        for dock in self.docks:
+            dock.setFloating(False)
+            window.addDockWidget(LEFT if dock in self.docks[:4] else RIGHT, dock)
+            dock.show()
+        window.splitDockWidget(self.dial, self.readout, Qt.Orientation.Horizontal)
+        width, height = window.width(), window.height()
+        left = 216 if width < 1500 else 248
+        right = round(min(520.0, max(400.0, width * 0.345)))
+        window.resizeDocks([self.recordings, self.itc], [left, right], Qt.Orientation.Horizontal)
+        tall = height - 120
+        shares = {
+            self.recordings: 0.15, self.channel: 0.33, self.order: 0.26, self.subsets: 0.26,
+            self.itc: 0.37, self.power: 0.37, self.dial: 0.26,
+        }  # fmt: skip
+        window.resizeDocks(
+            list(shares), [round(share * tall) for share in shares.values()],
+            Qt.Orientation.Vertical,
+        )  # fmt: skip
+        window.resizeDocks(
+            [self.dial, self.readout], [round(right * 0.44), round(right * 0.56)],
+            Qt.Orientation.Horizontal,
+        )  # fmt: skip
+
+    def menu(self, parent: QWidget) -> QMenu:
+        """A line a panel, and the way back to the first arrangement."""
+        menu = QMenu(parent)
+        for dock in self.docks:
+            action = dock.toggleViewAction()
+            menu.addAction(action)
+        menu.addSeparator()
+        menu.addAction("Arrange as at first").triggered.connect(self.arrange)
+        return menu
+
+    def show_titles(self, snapshot: Snapshot) -> None:
+        """Say what is drawn in each panel."""
+        state, maps, dial = snapshot.state, snapshot.maps, snapshot.dial
+        self.channel.title_line.set_title(f"Channel · {state.channel}" if state.channel else "Channel")
+        if maps is not None:
+            words = SET_WORDS[maps.shown]
+            n = f", n {maps.of[maps.shown].n}" if maps.shown in maps.of else ""  # type: ignore[index]
+            start, end = maps.baseline_s
+            self.itc.title_line.set_title(f"ITC · {words}{n}")
+            self.power.title_line.set_title(
+                f"Power · {words}{n}, dB from {seconds(start)[:-2]} to {seconds(end)}"
+            )
+            for which, button in self.map_buttons.items():
+                button.setChecked(which == state.maps_show)
+                possible = which == "all" or all(x in maps.of for x in which.split("-"))
+                button.setEnabled(possible)
+        if dial is not None:
+            where = f"{seconds(dial.time_s)}, {dial.freq_hz:.1f} Hz"
+            trust = "" if dial.valid else " (not to be trusted)"
+            self.dial.title_line.set_title(f"Phase at {where}{trust}")
+            self.readout.title_line.set_title(f"At the spot, {where}{trust}")

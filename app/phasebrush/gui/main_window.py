@@ -1,0 +1,407 @@
+"""The main window: wires views, docks, actions and the workbench together."""
+
+from __future__ import annotations
+
+from functools import partial
+from pathlib import Path
+
+from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
+from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
+from PySide6.QtWidgets import (
+    QApplication,
+    QDialog,
+    QFileDialog,
+    QMainWindow,
+    QMenu,
+    QStackedWidget,
+    QVBoxLayout,
+    QWidget,
+)
+
+from phasebrush.core.trials import Cut
+from phasebrush.gui import theme
+from phasebrush.gui.actions import Actions
+from phasebrush.gui.bench import Bench
+from phasebrush.gui.dialogs.cut_dialog import CutDialog
+from phasebrush.gui.dialogs.transform_dialog import TransformDialog
+from phasebrush.gui.dialogs.words import about_dialog, keys_dialog
+from phasebrush.gui.docks import Docks
+from phasebrush.gui.foot import Foot, MessageBar
+from phasebrush.gui.frame_clock import FrameClock
+from phasebrush.gui.view import Ways
+from phasebrush.gui.view_board import ViewBoard
+from phasebrush.gui.welcome import Welcome
+from phasebrush.look.tokens import DARK, LIGHT, Look
+from phasebrush.model import intents
+from phasebrush.model.results import Snapshot
+from phasebrush.model.stale import Result
+from phasebrush.model.state import MapsShow
+from phasebrush.model.workbench import Workbench
+from phasebrush.recordings import Recording
+from phasebrush.sample_files import sample_recordings, samples_folder
+
+FILES = "Recordings (*.fif *.fif.gz *.edf *.bdf *.vhdr *.npz);;All files (*)"
+NARROW = 1180
+TITLES = frozenset(
+    {Result.TRIALS, Result.CHANNEL, Result.KEY, Result.STACK, Result.SUBSETS, Result.MAPS,
+     Result.DIAL}
+)  # fmt: skip
+
+
+class MainWindow(QMainWindow):
+    """The window on one workbench.
+
+    Parameters
+    ----------
+    workbench : Workbench
+        The shared model.
+    look : Look
+        Light or dark.
+    settings : QSettings, optional
+        Where the arrangement is remembered; not at all where none is given.
+    """
+
+    def __init__(
+        self, workbench: Workbench, look: Look, settings: QSettings | None = None
+    ) -> None:
+        super().__init__()
+        self.setObjectName("phasebrush")
+        self.setWindowTitle("Phasebrush")
+        self.setAcceptDrops(True)
+        self.setDockNestingEnabled(True)
+        self.setMinimumSize(900, 600)
+        self.workbench = workbench
+        self.look = look
+        self._settings = settings
+        self._open_dialogs: list[QDialog] = []
+        self._folded: list[QWidget] = []
+        self._arranged = False
+        self._closed = False
+        self.clock = FrameClock(self._flush, self)
+        self.actions_ = Actions(self, self._slots())
+        self.docks = Docks(self)
+        self.bench = Bench()
+        self.message_bar = MessageBar()
+        self.foot = Foot(
+            lambda: workbench.jobs.running, workbench.stop, workbench.compute_again, self
+        )
+        self.setStatusBar(self.foot)
+        self._pages = QStackedWidget()
+        self._pages.addWidget(Welcome(sample_recordings(), self.open_path, self._choose_file))
+        self._pages.addWidget(self.bench)
+        centre = QWidget()
+        layout = QVBoxLayout(centre)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.addWidget(self._pages, 1)
+        layout.addWidget(self.message_bar)
+        self.setCentralWidget(centre)
+        bench = self.bench
+        self.board = ViewBoard(
+            (*self.docks.views.all(), bench.average, bench.stack, bench.strip, bench.corner)
+        )
+        self._wire()
+        self.set_look(look)
+        self._show_page(open_now=False)
+        self.clock.request()
+
+    def _slots(self) -> dict[str, object]:
+        show = {"show_all": "all", "show_a": "A", "show_b": "B", "show_difference": "A-B"}
+        slots: dict[str, object] = {
+            name: partial(self._maps_show, which) for name, which in show.items()
+        }
+        return slots | {
+            "open": self._choose_file,
+            "open_folder": self._choose_folder,
+            "samples": self._open_samples,
+            "cut": self.cut_dialog,
+            "transform": self.transform_dialog,
+            "undo": self.workbench.undo,
+            "redo": self.workbench.redo,
+            "panels": self._panels_menu,
+            "picture": self._choose_picture,
+            "theme": self.toggle_look,
+            "keys": self._keys,
+            "about": self._about,
+            "thirds": self._thirds,
+            "halves": self._halves,
+            "swap": self._swap,
+            "whole": self._whole,
+            "earlier_channel": partial(self._step_channel, -1),
+            "later_channel": partial(self._step_channel, 1),
+        }
+
+    def _wire(self) -> None:
+        workbench = self.workbench
+        listeners = workbench.listeners
+        listeners.dirty = self.clock.request
+        listeners.jobs = self.foot.show_jobs
+        listeners.message = self.message_bar.say
+        listeners.fault = self._tell_fault
+        listeners.recording_read = self._ask_cut
+        for view in self.board.views:
+            view.ways = Ways(
+                workbench.do,
+                workbench.end_gesture,
+                workbench.abandon_gesture,
+                self.foot.hint,
+                self.board.catch_up,
+            )
+        self.docks.views.recordings.open_listed = workbench.open_listed
+        for which, button in self.docks.map_buttons.items():
+            button.clicked.connect(partial(self._maps_show, which))
+
+    # -- frames -------------------------------------------------------------------------------
+
+    def _flush(self) -> None:
+        frame = self.workbench.flush()
+        snapshot = frame.snapshot
+        if Result.TRIALS in frame.changed:
+            self._show_page(open_now=bool(snapshot.state.recording))
+        self.board.deliver(frame)
+        if frame.changed & TITLES:
+            self._show_words(snapshot)
+        self.foot.show_snapshot(snapshot)
+        history = self.workbench.history
+        self._name_step("undo", history.undo_name)
+        self._name_step("redo", history.redo_name)
+
+    def _show_words(self, snapshot: Snapshot) -> None:
+        self.docks.show_titles(snapshot)
+        self.bench.show_titles(snapshot)
+        self.bench.show_legend(snapshot, self.look)
+        trials = snapshot.trials
+        title = f"{trials.source.title} · Phasebrush" if trials is not None else "Phasebrush"
+        if title != self.windowTitle():
+            self.setWindowTitle(title)
+        for name in ("cut", "transform", "thirds", "halves", "swap"):
+            self.actions_[name].setEnabled(trials is not None)
+
+    def _name_step(self, action: str, step: str) -> None:
+        item = self.actions_[action]
+        words = f"{action.capitalize()} {step}".strip()
+        if item.text() != words or item.isEnabled() != bool(step):
+            item.setText(words)
+            item.setToolTip(words)
+            item.setEnabled(bool(step))
+
+    def _show_page(self, *, open_now: bool) -> None:
+        page = 1 if open_now else 0
+        if open_now and not self._arranged:
+            self._arranged = True
+            if not self._restore_arrangement():
+                self.docks.arrange()
+        elif not open_now:
+            for dock in self.docks.docks:
+                dock.hide()
+        self._pages.setCurrentIndex(page)
+
+    # -- recordings come in -------------------------------------------------------------------
+
+    def open_path(self, path: str, *, ask: bool = False) -> None:
+        """Open a file or folder."""
+        self.message_bar.clear()
+        self.workbench.open(path, ask=ask)
+
+    def _choose_file(self) -> None:
+        path, _kind = QFileDialog.getOpenFileName(self, "Open a recording", "", FILES)
+        if path:
+            self.open_path(path, ask=True)
+
+    def _choose_folder(self) -> None:
+        path = QFileDialog.getExistingDirectory(self, "Open a folder of recordings")
+        if path:
+            self.open_path(path)
+
+    def _open_samples(self) -> None:
+        self.open_path(str(samples_folder()))
+
+    def _ask_cut(self, recording: Recording, how: Cut) -> None:
+        dialog = CutDialog(recording, how, self)
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        dialog.accepted.connect(lambda: self.workbench.cut(recording, dialog.cut()))
+        self._show_dialog(dialog)
+
+    def cut_dialog(self) -> None:
+        """Ask how to cut the open recording anew."""
+        self.workbench.ask_cut()
+
+    def transform_dialog(self) -> None:
+        """Ask for other transform settings."""
+        snapshot = self.workbench.snapshot
+        if snapshot.trials is None:
+            return
+        state = self.workbench.state
+        dialog = TransformDialog(
+            state.transform, state.baseline_s, snapshot.trials.sfreq_hz / 2, self
+        )
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        dialog.accepted.connect(partial(self._take_transform, dialog))
+        self._show_dialog(dialog)
+
+    def _take_transform(self, dialog: TransformDialog) -> None:
+        self.workbench.do(intents.transform_with(dialog.settings()))
+        self.workbench.do(intents.power_baseline(*dialog.baseline_s()))
+
+    def _show_dialog(self, dialog: QDialog) -> None:
+        self._open_dialogs.append(dialog)
+        dialog.finished.connect(partial(self._dialog_done, dialog))
+        dialog.open()
+
+    def _dialog_done(self, dialog: QDialog, _result: int) -> None:
+        if dialog in self._open_dialogs:
+            self._open_dialogs.remove(dialog)
+
+    def _tell_fault(self, error: Exception) -> None:
+        self.message_bar.say(
+            f"this did not work ({type(error).__name__}); what was open stays as it was"
+        )
+
+    def dragEnterEvent(self, event: QDragEnterEvent) -> None:
+        """Files are welcome."""
+        if event.mimeData().hasUrls():
+            event.acceptProposedAction()
+
+    def dropEvent(self, event: QDropEvent) -> None:
+        """Open the first file that was dropped."""
+        paths = [url.toLocalFile() for url in event.mimeData().urls() if url.isLocalFile()]
+        if paths:
+            self.open_path(paths[0], ask=not Path(paths[0]).is_dir())
+            event.acceptProposedAction()
+
+    # -- keys and tools -----------------------------------------------------------------------
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Escape empties A and B where no drag took it."""
+        if event.key() == Qt.Key.Key_Escape:
+            self.workbench.do(intents.clear())
+            event.accept()
+        else:
+            super().keyPressEvent(event)
+
+    def _maps_show(self, which: MapsShow, _checked: object = None) -> None:
+        self.workbench.do(intents.show_in_maps(which))
+        for name, button in self.docks.map_buttons.items():
+            button.setChecked(name == which)
+
+    def _thirds(self) -> None:
+        self.bench.corner.pick_thirds()
+
+    def _halves(self) -> None:
+        self.bench.corner.pick_halves()
+
+    def _swap(self) -> None:
+        self.workbench.do(intents.swap_subsets())
+
+    def _whole(self) -> None:
+        self.workbench.do(intents.zoom_time(None))
+
+    def _step_channel(self, step: int, _checked: object = None) -> None:
+        trials = self.workbench.snapshot.trials
+        channel = self.workbench.state.channel
+        if trials is not None and channel in trials.ch_names:
+            at = (trials.ch_names.index(channel) + step) % len(trials.ch_names)
+            self.workbench.do(intents.show_channel(trials.ch_names[at]))
+
+    def _panels_menu(self) -> None:
+        menu: QMenu = self.docks.menu(self)
+        menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        button = self.actions_.button("panels")
+        menu.popup(button.mapToGlobal(button.rect().bottomLeft()))
+
+    def _keys(self) -> None:
+        self._show_dialog(keys_dialog(self))
+
+    def _about(self) -> None:
+        self._show_dialog(about_dialog(self))
+
+    def _choose_picture(self) -> None:
+        path, _kind = QFileDialog.getSaveFileName(
+            self, "Save a picture of the window", "phasebrush.png", "PNG (*.png)"
+        )
+        if path and not self.save_picture(path):
+            self.message_bar.say(f"{Path(path).name}: could not be written; choose another folder")
+
+    def save_picture(self, path: str) -> bool:
+        """Save what the window shows as PNG; False if it could not be written."""
+        return self.grab().save(path, "PNG")
+
+    # -- look ---------------------------------------------------------------------------------
+
+    def toggle_look(self) -> None:
+        """Light becomes dark and dark light."""
+        self.set_look(DARK if self.look is LIGHT else LIGHT)
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        self.look = look
+        application = QApplication.instance()
+        if isinstance(application, QApplication):
+            theme.apply(application, look)
+        for view in self.board.views:
+            view.set_look(look)
+            view.update()
+        self.bench.set_look(look)
+        self.actions_.set_look(look)
+        self.bench.show_legend(self.workbench.snapshot, look)
+        self.setWindowIcon(theme.icon("phasebrush", look))
+
+    # -- size, arrangement, end ---------------------------------------------------------------
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Below the smallest useful width the left column folds away."""
+        super().resizeEvent(event)
+        narrow = self.width() < NARROW
+        if narrow and not self._folded:
+            self._folded = [dock for dock in self.docks.docks[:4] if dock.isVisible()]
+            for dock in self._folded:
+                dock.hide()
+        elif not narrow and self._folded:
+            for dock in self._folded:
+                dock.show()
+            self._folded = []
+
+    def _restore_arrangement(self) -> bool:
+        if self._settings is None:
+            return False
+        state = self._settings.value("arrangement")
+        if not isinstance(state, QByteArray):
+            return False
+        for dock in self.docks.docks:
+            dock.show()
+        return self.restoreState(state)
+
+    def restore_place(self) -> None:
+        """Put the window where it was."""
+        place = self._settings.value("place") if self._settings is not None else None
+        if isinstance(place, QByteArray):
+            self.restoreGeometry(place)
+
+    @property
+    def settled(self) -> bool:
+        """Whether everything asked for is drawn."""
+        return self.workbench.settled and not self.clock.waiting
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        """Remember the arrangement and shut everything down."""
+        self.shut_down()
+        event.accept()
+        super().closeEvent(event)
+
+    def shut_down(self) -> None:
+        """Take no more jobs, stop timers, cancel, disconnect. Safe to call twice."""
+        if self._closed:
+            return
+        self._closed = True
+        if self._settings is not None:
+            self._settings.setValue("place", self.saveGeometry())
+            if self._arranged:
+                self._settings.setValue("arrangement", self.saveState())
+            self._settings.setValue("look", self.look.name)
+            self._settings.sync()
+        self.clock.stop()
+        self.foot.close_foot()
+        for dialog in tuple(self._open_dialogs):
+            dialog.close()
+        self.workbench.close()
+        self.board.close()
+        QTimer.singleShot(0, self, self.deleteLater)

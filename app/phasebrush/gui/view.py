@@ -1,0 +1,77 @@
+"""What every view is: data in by ``show``, intents out by ``do``."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import ClassVar
+
+from PySide6.QtGui import QShowEvent
+from PySide6.QtWidgets import QWidget
+
+from phasebrush.look.tokens import LIGHT, Look
+from phasebrush.model.intents import Intent
+from phasebrush.model.results import Snapshot
+from phasebrush.model.stale import Result
+
+
+def _no_intent(_intent: Intent) -> None:
+    return None
+
+
+def _nothing() -> None:
+    return None
+
+
+@dataclass
+class Ways:
+    """The ways out of a view: intents, the two ends of a gesture, and a hint for the foot."""
+
+    do: Callable[[Intent], None] = _no_intent
+    end_gesture: Callable[[], None] = _nothing
+    abandon_gesture: Callable[[], None] = _nothing
+    hint: Callable[[str], None] = lambda _text: None
+    missed: Callable[[View], None] = lambda _view: None
+
+
+class View(QWidget):
+    """Base of the views.
+
+    A view takes data in (`show_snapshot`) and gives intents out (`ways`). It never writes
+    state, computes no statistic and knows no other view.
+    """
+
+    needs: ClassVar[frozenset[Result]] = frozenset()
+    own: ClassVar[frozenset[Result]] = frozenset()
+    _next_gesture: ClassVar[int] = 1
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.look = LIGHT
+        self.ways = Ways()
+        self.shows = 0
+        self.missed: frozenset[Result] = frozenset(Result)
+
+    def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
+        """Draw what changed. Never emits an intent."""
+        raise NotImplementedError
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        self.look = look
+
+    def showEvent(self, event: QShowEvent) -> None:
+        """Catch up with what was missed while hidden."""
+        super().showEvent(event)
+        if self.missed:
+            self.ways.missed(self)
+
+    def close_view(self) -> None:
+        """Let go of everything that could call back."""
+        self.ways = Ways()
+
+    @classmethod
+    def new_gesture(cls) -> int:
+        """A number for the moves of one drag."""
+        View._next_gesture += 1
+        return View._next_gesture

@@ -1,0 +1,100 @@
+"""The average waveform of all trials, A and B, with 95 % bands."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, ClassVar
+
+from PySide6.QtWidgets import QHBoxLayout, QWidget
+
+from phasebrush.gui.curves import Band, Line
+from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
+from phasebrush.gui.view import View
+from phasebrush.model.intents import move_cursor, zoom_time
+from phasebrush.model.results import SET_NAMES
+from phasebrush.model.stale import Result
+
+if TYPE_CHECKING:
+    from phasebrush.look.tokens import Look
+    from phasebrush.model.results import Averages, Snapshot
+
+
+class AverageView(View):
+    """Mean voltage over time; the bands are 95 % confidence bands from Student's t."""
+
+    needs: ClassVar[frozenset[Result]] = frozenset(
+        {Result.TRIALS, Result.AVERAGE, Result.CURSOR, Result.SPOT, Result.SHOWN}
+    )
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.setObjectName("average_plot")
+        self.plot = TimePlot("average_plot_area", Margins(), self)
+        layout = QHBoxLayout(self)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.addWidget(self.plot)
+        self.plot.name_axes("voltage (µV)", "")
+        self.lines = {name: Line(name) for name in SET_NAMES}
+        self.bands = {name: Band(name) for name in ("A", "B")}
+        self.plot.add(*self.bands.values(), *self.lines.values())
+        self.plot.zoomed = self._zoomed
+        self.plot.pressed = self.plot.dragged = self._moved
+        self.plot.hovered = self._hovered
+        self._averages: Averages | None = None
+        self.setAccessibleName("average waveform of all trials, A and B")
+        self.setToolTip(
+            "Average waveform (µV): mean over trials; band: 95 % confidence band of the mean, "
+            "Student's t with n − 1. Click or drag moves the time cursor; the wheel zooms time."
+        )
+
+    def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
+        """Draw what changed."""
+        trials = snapshot.trials
+        if changed & {Result.TRIALS, Result.SHOWN} and trials is not None:
+            self.plot.set_time_range(*(snapshot.state.shown_s or trials.window_s))
+        if changed & {Result.CURSOR, Result.SPOT}:
+            self.plot.set_cursor_time(snapshot.state.cursor_s)
+        if self._averages is not snapshot.averages:
+            self._averages = snapshot.averages
+            self._draw()
+        self.plot.setEnabled(trials is not None)
+        faded = Result.AVERAGE in snapshot.outdated
+        for line in self.lines.values():
+            line.setOpacity(0.4 if faded else 1.0)
+
+    def _draw(self) -> None:
+        averages = self._averages
+        if averages is None:
+            for item in (*self.lines.values(), *self.bands.values()):
+                item.clear_points()
+            return
+        if self.plot.getPlotItem().vb.viewRange()[1] != list(averages.limit_uv):
+            self.plot.set_value_range(*averages.limit_uv)
+        for name, line in self.lines.items():
+            average = averages.of.get(name)
+            if average is None:
+                line.clear_points()
+            else:
+                line.set_points(averages.times_s, average.mean_uv)
+        for name, band in self.bands.items():
+            average = averages.of.get(name)  # type: ignore[call-overload]
+            if average is None or average.n < 2:
+                band.clear_points()
+            else:
+                mean, half = average.mean_uv, average.band_uv
+                band.set_edges(averages.times_s, mean - half, mean + half)
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        super().set_look(look)
+        self.plot.set_look(look)
+        for item in (*self.lines.values(), *self.bands.values()):
+            item.set_look(look)
+
+    def _moved(self, pointer: Pointer) -> None:
+        self.ways.do(move_cursor(pointer.x))
+
+    def _hovered(self, pointer: Pointer | None) -> None:
+        self.ways.hint("" if pointer is None else f"{pointer.x:.3f} s · {pointer.y:.2f} µV")
+
+    def _zoomed(self, span_s: tuple[float, float] | None) -> None:
+        self.ways.do(zoom_time(span_s))

@@ -1,0 +1,179 @@
+"""The key strip: beside the stack, the value of the sort key for each row, and the brush."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, ClassVar
+
+import numpy as np
+import pyqtgraph as pg
+from PySide6.QtCore import QRectF
+
+from phasebrush.core.stack_image import reduce_rows
+from phasebrush.gui.time_plot import Margins, Pointer
+from phasebrush.gui.views.row_view import RowView
+from phasebrush.look import colour_maps
+from phasebrush.look.colour_maps import mixed
+from phasebrush.look.tokens import Look, rgb
+from phasebrush.model.stale import Result
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+    from PySide6.QtWidgets import QWidget
+
+    from phasebrush.model.results import KeyValues, Snapshot
+
+GUTTER = 14
+EMPTY, REST, IN_A, IN_B, IN_BOTH, CYCLE = 0, 1, 2, 3, 4, 16
+
+
+class KeyStrip(RowView):
+    """Bars of the sort key by row; a bracket at the left marks A (solid) and B (dashed)."""
+
+    needs: ClassVar[frozenset[Result]] = frozenset(
+        {Result.TRIALS, Result.KEY, Result.ROWS, Result.SUBSETS}
+    )
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__("key_strip", Margins(left=4, right=8), parent)
+        self._key: KeyValues | None = None
+        self._by_row: NDArray[np.float64] = np.zeros(0)
+        self._image = pg.ImageItem(axisOrder="row-major")
+        self.plot.add(self._image)
+        self.plot.zero_line.hide()
+        self.plot.cursor_line.hide()
+        self.plot.getPlotItem().getAxis("left").setStyle(showValues=False)
+        self.setAccessibleName("key strip: the sort key of each row; drag to pick trials")
+
+    def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
+        """Draw values and membership as far as they changed."""
+        self.take_rows(snapshot)
+        key, rows = snapshot.key, snapshot.rows
+        if changed & {Result.TRIALS, Result.KEY, Result.ROWS}:
+            fits = key is not None and rows is not None and self.brush.n_rows > 0
+            self._key = key if fits else None
+            if key is not None and rows is not None and fits:
+                self._by_row = key.values[rows.trial_of_row]
+                name = f"{key.title} ({key.unit})" if key.unit else key.title
+                self.plot.name_axes("", key.unit or "number")
+                self.setToolTip(
+                    f"Key strip: {name} for each row. The bracket at the left marks A "
+                    f"(solid) and B (dashed). {rows.n_missing} trials have no value."
+                )
+                self.plot.set_value_range(0, self.brush.n_rows)
+        self.draw_again()
+
+    def draw_marks(self) -> None:
+        """Membership is part of the picture."""
+        self.draw_again()
+
+    def _scale(self) -> tuple[float, float]:
+        key = self._key
+        if key is not None and key.is_angle:
+            return -np.pi, np.pi
+        finite = self._by_row[np.isfinite(self._by_row)]
+        if not finite.size:
+            return 0.0, 1.0
+        low, high = float(finite.min()), float(finite.max())
+        if low == high:
+            return low - 0.5, high + 0.5
+        return low - 0.04 * (high - low), high
+
+    def draw_again(self) -> None:
+        """Paint the strip at the plot area's own pixels."""
+        self._image.setVisible(self._key is not None)
+        if self._key is None:
+            return
+        height, width = self.pixels()
+        self._drawn_for = (height, width)
+        gutter = round(GUTTER * self.devicePixelRatioF())
+        low, high = self._scale()
+        bars = max(1, width - gutter)
+        values = np.nan_to_num(self._by_row, nan=low).astype(np.float32)[:, None]
+        lines = reduce_rows(values, height)[:, 0]
+        row_of_line = (np.arange(height) + 0.5) / height * self.brush.n_rows
+        row_of_line = np.minimum(row_of_line.astype(int), self.brush.n_rows - 1)
+        if len(lines) < height:
+            lines = values[row_of_line, 0]
+        in_a, in_b = (self.brush.picked.rows[x] for x in ("A", "B"))
+        colour = self._member(in_a, in_b)[row_of_line]
+        picture = np.zeros((height, width), dtype=np.uint8)
+        reach = (lines - low) / (high - low) * bars
+        if self._key.is_angle:
+            cell = np.clip(CYCLE + (lines + np.pi) / (2 * np.pi) * 239, CYCLE, 255)
+            picture[:, gutter:] = cell.astype(np.uint8)[:, None]
+            here = np.abs(np.arange(bars)[None, :] - reach[:, None]) <= 1.0
+            picture[:, gutter:][here] = REST
+        else:
+            filled = np.arange(bars)[None, :] < np.maximum(reach, 1.0)[:, None]
+            picture[:, gutter:] = np.where(filled, colour[:, None], EMPTY)
+        missing = np.isnan(self._by_row)[row_of_line]
+        picture[missing, gutter:] = EMPTY
+        self._bracket(picture, in_a[row_of_line], IN_A, 2, solid=True)
+        self._bracket(picture, in_b[row_of_line], IN_B, 7, solid=False)
+        self._image.setImage(picture, levels=(0, 255), autoLevels=False, lut=self._table())
+        unit = (high - low) / bars
+        self.plot.set_time_range(low - gutter * unit, high)
+        self._image.setRect(
+            QRectF(low - gutter * unit, 0, high - low + gutter * unit, self.brush.n_rows)
+        )
+        self._tick_angles()
+
+    def _tick_angles(self) -> None:
+        axis = self.plot.getPlotItem().getAxis("bottom")
+        angle = self._key is not None and self._key.is_angle
+        axis.setTicks([[(-np.pi, "−π"), (0.0, "0"), (np.pi, "π")]] if angle else None)
+
+    @staticmethod
+    def _member(in_a: NDArray[np.bool_], in_b: NDArray[np.bool_]) -> NDArray[np.uint8]:
+        both = np.where(in_a, np.where(in_b, IN_BOTH, IN_A), np.where(in_b, IN_B, REST))
+        return both.astype(np.uint8)
+
+    def _bracket(
+        self,
+        picture: NDArray[np.uint8],
+        inside: NDArray[np.bool_],
+        colour: int,
+        left: int,
+        *,
+        solid: bool,
+    ) -> None:
+        """A line along the rows that are in, with a foot at each end."""
+        ratio = self.devicePixelRatioF()
+        at, wide, foot = round(left * ratio), max(2, round(2 * ratio)), round(4 * ratio)
+        drawn = inside if solid else inside & (np.arange(len(inside)) // round(4 * ratio) % 2 == 0)
+        picture[drawn, at : at + wide] = colour
+        steps = np.diff(np.concatenate(([False], inside, [False])).astype(np.int8))
+        for line in np.flatnonzero(steps == 1):
+            picture[line : line + wide, at : at + foot] = colour
+        for line in np.flatnonzero(steps == -1):
+            picture[max(0, line - wide) : line, at : at + foot] = colour
+
+    def _table(self) -> NDArray[np.uint8]:
+        look = self.look
+        table = np.zeros((256, 3), dtype=np.uint8)
+        table[EMPTY] = rgb(look.panel)
+        table[REST] = rgb(mixed(look.muted, look.panel, 0.25))
+        table[IN_A] = rgb(look.subset_a)
+        table[IN_B] = rgb(look.subset_b)
+        table[IN_BOTH] = rgb(look.text)
+        wheel = colour_maps.cyclic(look)
+        table[CYCLE:] = wheel[np.linspace(0, 255, 256 - CYCLE).astype(int)]
+        if self._key is not None and self._key.is_angle:
+            table[REST] = rgb(look.text)
+        return table
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        super().set_look(look)
+        self.plot.set_look(look)
+        self.draw_again()
+
+    def hover_at(self, pointer: Pointer | None) -> None:
+        """Say row and key value under the pointer."""
+        if pointer is None or self._key is None:
+            self.ways.hint("")
+            return
+        row = min(max(int(pointer.y), 0), len(self._by_row) - 1)
+        value = self._by_row[row]
+        words = f"{value:.2f} {self._key.unit}" if np.isfinite(value) else "no value"
+        self.ways.hint(f"row {row + 1} · {self._key.title}: {words}")

@@ -1,0 +1,127 @@
+"""The cards of subset A and B: how many, by which rule, and what to do with them."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, ClassVar
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
+
+from phasebrush.gui import theme
+from phasebrush.gui.view import View
+from phasebrush.model import intents
+from phasebrush.model.stale import Result
+from phasebrush.model.state import LETTERS, Letter
+
+if TYPE_CHECKING:
+    from phasebrush.look.tokens import Look
+    from phasebrush.model.results import Snapshot
+    from phasebrush.model.state import Subset
+
+MARKS = {"A": "■", "B": "●"}
+CAUTION_BELOW = 20
+
+
+def rule_words(subset: Subset) -> str:
+    """How a subset came about, in words."""
+    if not subset.n:
+        return "no trial yet"
+    return subset.rule or "picked by hand"
+
+
+class _Card(QWidget):
+    def __init__(self, letter: Letter, parent: QWidget) -> None:
+        super().__init__(parent)
+        self.letter = letter
+        self.head = QLabel(self)
+        self.head.setFont(theme.font(9.0, bold=True))
+        self.count = QLabel(self)
+        self.words = QLabel(self)
+        self.words.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+        self.words.setWordWrap(True)
+        self.clear = QPushButton("clear", self)
+        self.clear.setObjectName("quiet")
+        self.clear.setToolTip(f"Empty subset {letter}")
+        self.clear.setAccessibleName(f"clear subset {letter}")
+        top = QHBoxLayout()
+        top.setContentsMargins(0, 0, 0, 0)
+        top.addWidget(self.head)
+        top.addWidget(self.count, 1)
+        top.addWidget(self.clear)
+        layout = QVBoxLayout(self)
+        layout.setContentsMargins(4, 0, 4, 0)
+        layout.setSpacing(0)
+        layout.addLayout(top)
+        layout.addWidget(self.words)
+
+
+class SubsetCards(View):
+    """A and B with their counts."""
+
+    needs: ClassVar[frozenset[Result]] = frozenset({Result.TRIALS, Result.SUBSETS})
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.setObjectName("subset_cards")
+        self._cards = {letter: _Card(letter, self) for letter in LETTERS}
+        self._swap = QPushButton("swap A and B", self)
+        self._swap.setObjectName("quiet")
+        self._swap.setToolTip("A becomes B and B becomes A (X)")
+        self._caution = QLabel(self)
+        self._caution.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
+        self._caution.setWordWrap(True)
+        grid = QGridLayout(self)
+        grid.setContentsMargins(0, 0, 0, 4)
+        grid.setVerticalSpacing(4)
+        for number, card in enumerate(self._cards.values()):
+            grid.addWidget(card, number, 0)
+        grid.addWidget(self._caution, 2, 0)
+        grid.addWidget(self._swap, 3, 0, Qt.AlignmentFlag.AlignLeft)
+        grid.setRowStretch(4, 1)
+        self._cards["A"].clear.clicked.connect(self._clear_a)
+        self._cards["B"].clear.clicked.connect(self._clear_b)
+        self._swap.clicked.connect(self._swapped)
+
+    def show_snapshot(self, snapshot: Snapshot, _changed: frozenset[Result]) -> None:
+        """Write counts and rules."""
+        sizes = {}
+        for letter, card in self._cards.items():
+            subset = snapshot.state.subset(letter)
+            sizes[letter] = subset.n
+            card.count.setText(f"{subset.n} of {snapshot.n_trials}")
+            card.words.setText(rule_words(subset))
+            card.clear.setEnabled(subset.n > 0)
+        self._swap.setEnabled(any(sizes.values()))
+        self._caution.setText(self._cautions(snapshot, sizes))
+        self._caution.setVisible(bool(self._caution.text()))
+
+    @staticmethod
+    def _cautions(snapshot: Snapshot, sizes: dict[Letter, int]) -> str:
+        few = [letter for letter, n in sizes.items() if 0 < n < CAUTION_BELOW]
+        words = [f"{' and '.join(few)}: fewer than {CAUTION_BELOW} trials"] if few else []
+        low, high = min(sizes.values()), max(sizes.values())
+        if low and high > 1.1 * low:
+            words.append("n differs by more than 10 %: compare PPC, not ITC")
+        if all(sizes.values()):
+            n_trials = snapshot.n_trials
+            masks = [snapshot.state.subset(letter).mask_of(n_trials) for letter in LETTERS]
+            shared = int((masks[0] & masks[1]).sum())
+            if shared:
+                words.append(f"{shared} trials are in both A and B")
+        return "; ".join(words)
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        super().set_look(look)
+        for letter, card in self._cards.items():
+            card.head.setText(f"{MARKS[letter]} Subset {letter}")
+            card.head.setStyleSheet(f"color: {look.subset(letter)};")
+
+    def _clear_a(self) -> None:
+        self.ways.do(intents.clear(("A",)))
+
+    def _clear_b(self) -> None:
+        self.ways.do(intents.clear(("B",)))
+
+    def _swapped(self) -> None:
+        self.ways.do(intents.swap_subsets())

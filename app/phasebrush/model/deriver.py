@@ -1,0 +1,226 @@
+"""Keeps the snapshot in step with the record: derives what is stale and can be derived now."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from phasebrush.model import derive
+from phasebrush.model.channel_work import ChannelQuestion, ChannelWork
+from phasebrush.model.results import SET_NAMES, Average, SetMaps, SetName, Snapshot
+from phasebrush.model.stale import Result, in_order
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from phasebrush.core.trials import Trials
+    from phasebrush.model.state import State
+
+FindTrials = Callable[["State"], "Trials | None"]
+AskTransform = Callable[[ChannelQuestion], None]
+
+
+class Deriver:
+    """Holds the snapshot and the running sums behind it.
+
+    Parameters
+    ----------
+    find_trials : callable
+        Gives the trials that a record names, or None while they are being read.
+    ask_transform : callable
+        Starts the transform of a channel; the answer comes to `take_work`.
+    """
+
+    def __init__(self, find_trials: FindTrials, ask_transform: AskTransform) -> None:
+        self.snapshot = Snapshot()
+        self._find_trials = find_trials
+        self._ask_transform = ask_transform
+        self._work: ChannelWork | None = None
+        self._asked: ChannelQuestion | None = None
+        self._baseline_s: tuple[float, float] | None = None
+        self._averages: dict[SetName, Average] = {}
+        self._maps: dict[SetName, SetMaps] = {}
+        self._map_limits = (1.0, 3.0)
+        self._average_limit = (-1.0, 1.0)
+        self._steps: dict[Result, Callable[[State], bool]] = {
+            Result.TRIALS: self._trials,
+            Result.CHANNEL: self._channel,
+            Result.KEY: self._key,
+            Result.ROWS: self._rows,
+            Result.STACK: self._stack,
+            Result.SUBSETS: self._subsets,
+            Result.AVERAGE: self._average,
+            Result.MAPS: self._set_maps,
+            Result.TRACES: self._traces,
+            Result.DIAL: self._dial,
+            Result.READOUT: self._readout,
+        }
+        self._keep_scales = False
+
+    @property
+    def work(self) -> ChannelWork | None:
+        """The channel as transformed; None while that is under way."""
+        return self._work
+
+    def masks(self, state: State, n_trials: int) -> dict[SetName, NDArray[np.bool_]]:
+        """Membership of every set of trials."""
+        return {
+            "all": np.ones(n_trials, dtype=bool),
+            "A": state.a.mask_of(n_trials),
+            "B": state.b.mask_of(n_trials),
+        }
+
+    def run(
+        self, state: State, stale: frozenset[Result], *, keep_scales: bool
+    ) -> frozenset[Result]:
+        """Derive what is stale; returns what was derived.
+
+        What cannot be derived yet is marked as outdated in the snapshot and comes with
+        the answer of the job that it waits for. Colour scales stay put during a drag.
+        """
+        self._keep_scales = keep_scales
+        self.snapshot = replace(self.snapshot, state=state)
+        derived, waiting = set(), set()
+        for result in in_order(stale):
+            step = self._steps.get(result)
+            if step is None or step(state):
+                derived.add(result)
+            else:
+                waiting.add(result)
+        outdated = (self.snapshot.outdated | waiting) - derived
+        self.snapshot = replace(self.snapshot, outdated=outdated)
+        return frozenset(derived)
+
+    def take_work(self, work: ChannelWork) -> bool:
+        """Take the answer of a transform; False if another question was asked meanwhile."""
+        if not work.question.same_as(self._asked):
+            return False
+        self._asked = None
+        self._work = work
+        self._averages.clear()
+        self._maps.clear()
+        return True
+
+    def forget_question(self) -> None:
+        """The transform was stopped or failed: it may be asked for again."""
+        self._asked = None
+
+    def close(self) -> None:
+        """Let go of the arrays."""
+        self._work = None
+        self._asked = None
+        self._averages.clear()
+        self._maps.clear()
+        self.snapshot = Snapshot()
+
+    def _trials(self, state: State) -> bool:
+        trials = self._find_trials(state) if state.recording else None
+        if trials is not self.snapshot.trials:
+            self._work = None
+            self._asked = None
+            self.snapshot = Snapshot(state=state, trials=trials)
+        return trials is not None
+
+    def _channel(self, state: State) -> bool:
+        trials = self.snapshot.trials
+        if trials is None or state.channel not in trials.ch_names:
+            return False
+        question = ChannelQuestion(trials, state.channel, state.transform)
+        if self._work is not None and question.same_as(self._work.question):
+            self._asked = None
+        elif not question.same_as(self._asked):
+            # The old coefficients go first: two sets of them may not fit into memory.
+            self._work = None
+            self.snapshot = replace(self.snapshot, coefficients=None)
+            self._asked = question
+            self._ask_transform(question)
+        if self._work is None:
+            return False
+        self.snapshot = replace(self.snapshot, coefficients=self._work.coefficients)
+        return True
+
+    def _key(self, state: State) -> bool:
+        if self._work is None:
+            return False
+        self.snapshot = replace(self.snapshot, key=derive.derive_key(state, self._work))
+        return True
+
+    def _rows(self, state: State) -> bool:
+        key = self.snapshot.key
+        if self._work is None or key is None:
+            return False
+        self.snapshot = replace(self.snapshot, rows=derive.derive_rows(state, key))
+        return True
+
+    def _stack(self, state: State) -> bool:
+        key, rows = self.snapshot.key, self.snapshot.rows
+        if self._work is None or key is None or rows is None:
+            return False
+        self.snapshot = replace(
+            self.snapshot, stack=derive.derive_stack(state, self._work, key, rows)
+        )
+        return True
+
+    def _subsets(self, state: State) -> bool:
+        if self._work is None:
+            return False
+        for name, mask in self.masks(state, len(self._work.question.trials)).items():
+            if self._work.sums[name].set_members(mask):
+                self._averages.pop(name, None)
+                self._maps.pop(name, None)
+        return True
+
+    def _average(self, _state: State) -> bool:
+        work = self._work
+        if work is None:
+            return False
+        for name in SET_NAMES:
+            if name not in self._averages and work.sums[name].n > 0:
+                self._averages[name] = derive.derive_average(work.sums[name])
+        if not self._keep_scales:
+            self._average_limit = derive.average_limit(self._averages)
+        averages = derive.derive_averages(work, self._averages, self._average_limit)
+        self.snapshot = replace(self.snapshot, averages=averages)
+        return True
+
+    def _set_maps(self, state: State) -> bool:
+        work = self._work
+        if work is None:
+            return False
+        if state.baseline_s != self._baseline_s:
+            self._maps.clear()
+            self._baseline_s = state.baseline_s
+        for name in SET_NAMES:
+            if name not in self._maps and work.sums[name].n > 0:
+                self._maps[name] = derive.derive_set_maps(
+                    work.sums[name], work.coefficients, state.baseline_s
+                )
+        if not self._keep_scales:
+            self._map_limits = derive.map_limits(self._maps, work.coefficients.valid)
+        maps = derive.derive_maps(state, work.coefficients, self._maps, self._map_limits)
+        self.snapshot = replace(self.snapshot, maps=maps)
+        return True
+
+    def _traces(self, state: State) -> bool:
+        maps = self.snapshot.maps
+        if self._work is None or maps is None:
+            return False
+        self.snapshot = replace(self.snapshot, traces=derive.derive_traces(state, maps))
+        return True
+
+    def _dial(self, state: State) -> bool:
+        if self._work is None:
+            return False
+        self.snapshot = replace(self.snapshot, dial=derive.derive_dial(state, self._work))
+        return True
+
+    def _readout(self, state: State) -> bool:
+        maps = self.snapshot.maps
+        if self._work is None or maps is None:
+            return False
+        readout = derive.derive_readout(state, maps, self._work.coefficients)
+        self.snapshot = replace(self.snapshot, readout=readout)
+        return True

@@ -1,0 +1,207 @@
+"""One recording measured without a window: a record made from arguments, and its numbers."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from phasebrush import recordings
+from phasebrush.core import phase
+from phasebrush.core.parts import part_mask
+from phasebrush.core.sort_keys import SortKey
+from phasebrush.core.spot import Spot
+from phasebrush.core.transform_settings import TransformSettings
+from phasebrush.errors import InputError
+from phasebrush.model import intents
+from phasebrush.model.intents import Intent
+from phasebrush.model.state import Subset
+from phasebrush.model.workbench import Workbench
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from phasebrush.core.parts import Part
+    from phasebrush.core.trials import Cut
+    from phasebrush.model.results import SetName, Snapshot
+    from phasebrush.model.state import State
+
+Say = Callable[[str], None]
+
+
+@dataclass(frozen=True)
+class Question:
+    """What is to be measured. None leaves a thing as the recording suggests it.
+
+    Parameters
+    ----------
+    path : str
+        Recording.
+    channel : str
+        Channel under study.
+    labels : tuple of str
+        Event labels; empty for the usual ones.
+    window_s, baseline_s : tuple of float or None
+        Shown window, and baseline of the dB scale.
+    voltage_baseline_s : tuple of float or None
+        Baseline of the voltages.
+    settings : TransformSettings
+        Frequencies and cycles.
+    key : SortKey or None
+        Sort key; recording order where none is given.
+    part : str or tuple or None
+        Part of the key to measure; None for all trials.
+    spot : Spot
+        For keys that are read at the spot.
+    """
+
+    path: str
+    channel: str
+    labels: tuple[str, ...] = ()
+    window_s: tuple[float, float] | None = None
+    baseline_s: tuple[float, float] | None = None
+    voltage_baseline_s: tuple[float, float] | None = None
+    settings: TransformSettings = TransformSettings()
+    key: SortKey | None = None
+    part: Part | None = None
+    spot: Spot = Spot()
+
+
+def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
+    """Measure a recording.
+
+    Parameters
+    ----------
+    question : Question
+        What is asked.
+    say : callable
+        Takes warnings.
+
+    Returns
+    -------
+    Snapshot
+        Record and results.
+    str
+        The set of trials that was asked for: ``"A"`` for a part, else ``"all"``.
+
+    Raises
+    ------
+    InputError
+        If the recording or the question cannot be used.
+    """
+    bench = Workbench()
+    bench.listeners.message = say
+    bench.listeners.fault = _raise
+    recording = recordings.open_recording(question.path)
+    trials = recordings.cut_trials(recording, _cut(question, recording))
+    if question.channel not in trials.ch_names:
+        raise InputError(
+            f"there is no channel {question.channel}",
+            f"choose one of {', '.join(trials.ch_names)}",
+            question.path,
+        )
+    bench.do(_settings(question))
+    bench.take_trials(trials)
+    bench.flush()
+    bench.do(intents.show_channel(question.channel))
+    snapshot = bench.flush().snapshot
+    if snapshot.key is not None and snapshot.key.fault:
+        raise InputError(*_halves(snapshot.key.fault), question.path)
+    if question.part is None:
+        return snapshot, "all"
+    bench.do(_pick(question.part))
+    snapshot = bench.flush().snapshot
+    if not snapshot.state.a.n:
+        raise InputError(
+            "the part holds no trial: the sort key has too few values",
+            "choose another key or a larger part",
+            question.path,
+        )
+    return snapshot, "A"
+
+
+def _raise(error: Exception) -> None:
+    raise error
+
+
+def _halves(line: str) -> tuple[str, str]:
+    wrong, _semicolon, remedy = line.partition("; ")
+    return wrong, remedy
+
+
+def _cut(question: Question, recording: recordings.Recording) -> Cut:
+    cut = recordings.default_cut(recording, margin_s=question.settings.margin_s)
+    if question.labels:
+        cut = replace(cut, labels=question.labels)
+    if question.window_s is not None:
+        cut = replace(cut, window_s=question.window_s)
+    if question.voltage_baseline_s is not None:
+        cut = replace(cut, baseline_s=question.voltage_baseline_s)
+    return cut
+
+
+def _settings(question: Question) -> Intent:
+    def change(state: State, _snapshot: Snapshot) -> State:
+        return replace(
+            state,
+            channel=question.channel,
+            transform=question.settings,
+            key=question.key or SortKey("recording-order"),
+            spot=question.spot,
+            baseline_s=question.baseline_s or state.baseline_s,
+        )
+
+    return Intent("settings", change)
+
+
+def _pick(part: Part) -> Intent:
+    def change(state: State, snapshot: Snapshot) -> State:
+        if snapshot.key is None:
+            return state
+        return replace(state, a=Subset(part_mask(snapshot.key.values, part)))
+
+    return Intent("part", change)
+
+
+def numbers(snapshot: Snapshot, chosen: SetName) -> dict[str, NDArray[Any]]:
+    """The measured arrays under the names that scripts rely on.
+
+    Returns
+    -------
+    dict
+        ``times_s (T)``, ``freqs_hz (F)``, ``itc (F,T)``, ``ppc (F,T)``,
+        ``power_uv2 (F,T)``, ``power_db (F,T)``, ``valid (F,T)``, ``n_trials``,
+        ``average_times_s (S)``, ``average_uv (S)``, ``sem_uv (S)``, ``trial_onset_s (N)``,
+        ``trial_label (N)``, ``used (N)``, ``key (N)``.
+
+    Raises
+    ------
+    ValueError
+        If the snapshot holds no results for the set.
+    """
+    maps, averages, trials, key = snapshot.maps, snapshot.averages, snapshot.trials, snapshot.key
+    if maps is None or averages is None or trials is None or key is None or chosen not in maps.of:
+        raise ValueError("nothing was measured yet")
+    item = maps.of[chosen]
+    used = np.ones(len(trials), dtype=bool)
+    if chosen != "all":
+        used = snapshot.state.subset(chosen).mask_of(len(trials))
+    return {
+        "times_s": maps.times_s,
+        "freqs_hz": maps.freqs_hz,
+        "itc": item.itc,
+        "ppc": phase.ppc(item.itc, item.n_phase),
+        "power_uv2": item.power_uv2,
+        "power_db": item.power_db,
+        "valid": maps.valid,
+        "n_trials": np.asarray(item.n),
+        "average_times_s": averages.times_s,
+        "average_uv": averages.of[chosen].mean_uv,
+        "sem_uv": averages.of[chosen].sem_uv,
+        "trial_onset_s": trials.onsets_s,
+        "trial_label": np.asarray(trials.labels),
+        "used": used,
+        "key": key.values,
+    }

@@ -1,0 +1,289 @@
+"""What is derived from the record and the trials, and the snapshot that holds it all."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING, Literal
+
+from phasebrush.model.state import State
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+    import numpy as np
+    from numpy.typing import NDArray
+
+    from phasebrush.core.morlet import Coefficients
+    from phasebrush.core.sort_keys import Footprint
+    from phasebrush.core.trials import Trials
+    from phasebrush.model.stale import Result
+
+    Floats = NDArray[np.float64]
+
+SetName = Literal["all", "A", "B"]
+SET_NAMES: tuple[SetName, ...] = ("all", "A", "B")
+
+
+@dataclass(frozen=True, eq=False)
+class KeyValues:
+    """The sort key of every trial.
+
+    Parameters
+    ----------
+    values : ndarray, shape (trials,)
+        NaN where a trial has none.
+    title, unit : str
+        In words.
+    is_angle : bool
+        Whether values are phases in rad.
+    footprint : Footprint or None
+        Part of the time-frequency plane that was used.
+    fault : str
+        Why the key could not be computed; the stack then keeps recording order.
+    """
+
+    values: Floats
+    title: str
+    unit: str
+    is_angle: bool
+    footprint: Footprint | None
+    fault: str = ""
+
+
+@dataclass(frozen=True, eq=False)
+class Rows:
+    """The order of the stack.
+
+    Parameters
+    ----------
+    trial_of_row : ndarray of int, shape (trials,)
+        Row 0 is at the foot.
+    row_of_trial : ndarray of int, shape (trials,)
+        The inverse.
+    n_missing : int
+        Trials without a key; they are the last rows.
+    """
+
+    trial_of_row: NDArray[np.intp]
+    row_of_trial: NDArray[np.intp]
+    n_missing: int
+
+
+@dataclass(frozen=True, eq=False)
+class Stack:
+    """The trial stack of one channel, in order and smoothed.
+
+    Parameters
+    ----------
+    image_uv : ndarray of float32, shape (trials, samples)
+        Row 0 is at the foot.
+    times_s : ndarray, shape (samples,)
+        Shown window.
+    limit_uv : float
+        Colour scale runs from minus to plus this.
+    response_times_s : ndarray, shape (trials,)
+        By row; NaN for none.
+    """
+
+    image_uv: NDArray[np.float32]
+    times_s: Floats
+    limit_uv: float
+    response_times_s: Floats
+
+
+@dataclass(frozen=True, eq=False)
+class Average:
+    """Average waveform of one set of trials.
+
+    Parameters
+    ----------
+    n : int
+        Number of trials.
+    mean_uv, sem_uv, band_uv : ndarray, shape (samples,)
+        Mean, standard error, and half width of the 95 % band; NaN where undefined.
+    """
+
+    n: int
+    mean_uv: Floats
+    sem_uv: Floats
+    band_uv: Floats
+
+
+@dataclass(frozen=True, eq=False)
+class Averages:
+    """Average waveforms of all trials and of the subsets."""
+
+    times_s: Floats
+    of: Mapping[SetName, Average]
+    limit_uv: tuple[float, float]
+
+
+@dataclass(frozen=True, eq=False)
+class SetMaps:
+    """Time-frequency maps of one set of trials, each of shape (frequencies, times).
+
+    Parameters
+    ----------
+    n : int
+        Number of trials.
+    itc : ndarray
+        Inter-trial coherence, 0 to 1.
+    power_uv2, power_db : ndarray
+        Total power, and the same against the baseline.
+    evoked_uv2 : ndarray
+        Power of the mean coefficient.
+    n_phase : ndarray or int
+        Trials with a phase at each point (a coefficient of exactly 0 has none).
+    """
+
+    n: int
+    itc: Floats
+    power_uv2: Floats
+    power_db: Floats
+    evoked_uv2: Floats
+    n_phase: NDArray[np.int64]
+
+
+@dataclass(frozen=True, eq=False)
+class Maps:
+    """The maps that are shown and those behind them.
+
+    Parameters
+    ----------
+    freqs_hz, times_s : ndarray
+        Grid.
+    valid : ndarray of bool, shape (frequencies, times)
+        Points whose wavelet stays on the data.
+    of : mapping
+        Maps of each set that has trials.
+    shown : str
+        ``"all"``, ``"A"``, ``"B"`` or ``"A-B"``: what the maps can show now.
+    itc_limit, db_limit : float
+        Colour scales: ITC 0 (or minus) to this; dB minus to plus this.
+    chance_itc : float
+        ITC that chance exceeds with probability 0.05 at the n shown; NaN for A - B.
+    baseline_s : tuple of float
+        Baseline of the dB scale.
+    """
+
+    freqs_hz: Floats
+    times_s: Floats
+    valid: NDArray[np.bool_]
+    of: Mapping[SetName, SetMaps]
+    shown: str
+    itc: Floats
+    power_db: Floats
+    itc_limit: float
+    db_limit: float
+    chance_itc: float
+    baseline_s: tuple[float, float]
+    notes: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, eq=False)
+class Trace:
+    """Band traces of one set: the map's mean over the spot's band, at each time."""
+
+    n: int
+    itc: Floats
+    power_db: Floats
+    chance_itc: float
+
+
+@dataclass(frozen=True, eq=False)
+class Traces:
+    """Band traces of all trials and the subsets."""
+
+    times_s: Floats
+    valid: NDArray[np.bool_]
+    band_hz: tuple[float, float]
+    of: Mapping[SetName, Trace]
+    db_limit: tuple[float, float]
+
+
+@dataclass(frozen=True, eq=False)
+class Phasors:
+    """Phases of one set of trials at the spot's centre."""
+
+    angles_rad: Floats
+    resultant: complex
+    chance_itc: float
+
+
+@dataclass(frozen=True, eq=False)
+class Dial:
+    """Phases at the spot's centre: of A and B where picked, else of all trials.
+
+    ``phase_of_trial`` has every trial's phase, NaN where it has none.
+    """
+
+    freq_hz: float
+    time_s: float
+    valid: bool
+    of: Mapping[SetName, Phasors]
+    phase_of_trial: Floats
+
+
+@dataclass(frozen=True)
+class SetReadout:
+    """Numbers of one set of trials at the spot's centre.
+
+    Parameters
+    ----------
+    n : int
+        Trials.
+    itc, ppc, rayleigh_z, rayleigh_p, chance_itc : float
+        Phase measures; chance is the ITC exceeded with probability 0.05.
+    power_db, evoked_share : float
+        Power against the baseline; evoked over total power, 0 to 1.
+    box_itc, box_db : float
+        Mean over the valid points of the spot's box.
+    """
+
+    n: int
+    itc: float
+    ppc: float
+    rayleigh_z: float
+    rayleigh_p: float
+    chance_itc: float
+    power_db: float
+    evoked_share: float
+    box_itc: float
+    box_db: float
+
+
+@dataclass(frozen=True, eq=False)
+class Readout:
+    """The numbers at the spot, for all trials and the subsets that have trials."""
+
+    freq_hz: float
+    time_s: float
+    valid: bool
+    of: Mapping[SetName, SetReadout]
+
+
+@dataclass(frozen=True, eq=False)
+class Snapshot:
+    """The record and all that was derived from it: what every view, file and page is drawn from.
+
+    ``outdated`` names the results that still belong to an earlier record because slower
+    work for them is under way; a result that was never derived is None.
+    """
+
+    state: State = field(default_factory=State)
+    trials: Trials | None = None
+    coefficients: Coefficients | None = None
+    key: KeyValues | None = None
+    rows: Rows | None = None
+    stack: Stack | None = None
+    averages: Averages | None = None
+    maps: Maps | None = None
+    traces: Traces | None = None
+    dial: Dial | None = None
+    readout: Readout | None = None
+    outdated: frozenset[Result] = frozenset()
+
+    @property
+    def n_trials(self) -> int:
+        """Number of trials on the table, 0 while none are."""
+        return 0 if self.trials is None else len(self.trials)

@@ -1,0 +1,331 @@
+"""The shared model: takes intents, keeps the record and its history, and flushes once a frame."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from functools import partial
+from typing import TYPE_CHECKING
+
+from phasebrush.errors import PersonError
+from phasebrush.model import intents, opening
+from phasebrush.model.channel_work import ChannelQuestion, ChannelWork, transform_channel
+from phasebrush.model.deriver import Deriver
+from phasebrush.model.history import History
+from phasebrush.model.jobs import InlineRunner, Job, JobBoard, Progress, Runner
+from phasebrush.model.stale import Result, stale_after, with_followers
+from phasebrush.model.state import State, changed_fields
+from phasebrush.model.trials_shelf import TrialsShelf
+
+if TYPE_CHECKING:
+    from phasebrush.core.trials import Cut, Trials
+    from phasebrush.model.intents import Intent
+    from phasebrush.model.results import Snapshot
+    from phasebrush.recordings import Recording
+
+EVERYTHING = frozenset(Result)
+
+
+@dataclass(frozen=True, eq=False)
+class Frame:
+    """What one flush brought.
+
+    Parameters
+    ----------
+    snapshot : Snapshot
+        Record and results.
+    changed : frozenset of Result
+        Results that are new, or newly outdated.
+    sources : frozenset of str
+        Views whose own gestures caused it.
+    """
+
+    snapshot: Snapshot
+    changed: frozenset[Result]
+    sources: frozenset[str]
+
+
+def _nothing(*_: object) -> None:
+    return None
+
+
+@dataclass
+class Listeners:
+    """Who is told: each is one function, set by the window; the command line needs none."""
+
+    dirty: Callable[[], None] = _nothing
+    jobs: Callable[[], None] = _nothing
+    message: Callable[[str], None] = _nothing
+    fault: Callable[[Exception], None] = _nothing
+    recording_read: Callable[[Recording, Cut], None] | None = None
+
+
+class Workbench:
+    """Record, history, jobs and snapshot behind every view.
+
+    Parameters
+    ----------
+    runner : Runner, optional
+        Where slow work runs; in place where none is given.
+    """
+
+    def __init__(self, runner: Runner | None = None) -> None:
+        self.listeners = Listeners()
+        self.jobs = JobBoard(runner or InlineRunner(), lambda: self.listeners.jobs())
+        self._state = State()
+        self._history = History()
+        self._shelf = TrialsShelf()
+        self._deriver = Deriver(self._find_trials, self._ask_transform)
+        self._stale: frozenset[Result] = EVERYTHING
+        self._sources: frozenset[str] | None = None
+        self._gesture = 0
+        self._origin = self._state
+        self._gesture_kept = False
+
+    # -- the record ---------------------------------------------------------------------------
+
+    @property
+    def state(self) -> State:
+        """The record as it is now."""
+        return self._state
+
+    @property
+    def snapshot(self) -> Snapshot:
+        """Record and results as of the last flush."""
+        return self._deriver.snapshot
+
+    @property
+    def history(self) -> History:
+        """Names of the steps that can be undone and redone."""
+        return self._history
+
+    def do(self, intent: Intent) -> None:
+        """Carry out an intent. Within one gesture each move starts from where the drag began."""
+        in_gesture = intent.gesture != 0 and intent.gesture == self._gesture
+        if not in_gesture:
+            self._gesture, self._origin = intent.gesture, self._state
+            self._gesture_kept = False
+        wished = intent.change(self._origin, self.snapshot)
+        if wished == self._state:
+            return
+        if not intent.fleeting and not self._gesture_kept:
+            self._history.keep(intent.name, self._origin)
+            self._gesture_kept = intent.gesture != 0
+        self._swap(wished, intent.source)
+
+    def end_gesture(self) -> None:
+        """The drag ended: colour scales may follow now."""
+        if self._gesture == 0:
+            return
+        if self._gesture_kept and self._state == self._origin:
+            self._history.forget_last()
+        self._gesture, self._gesture_kept = 0, False
+        self._mark({Result.AVERAGE, Result.MAPS}, "")
+
+    def abandon_gesture(self) -> None:
+        """The drag was called off: back to where it began."""
+        if self._gesture != 0:
+            self._swap(self._origin, "")
+            self.end_gesture()
+
+    def undo(self) -> None:
+        """Go back one step."""
+        self.end_gesture()
+        state = self._history.undo(self._state)
+        if state is not None:
+            self._swap(state, "")
+
+    def redo(self) -> None:
+        """Go forward one undone step."""
+        self.end_gesture()
+        state = self._history.redo(self._state)
+        if state is not None:
+            self._swap(state, "")
+
+    def _swap(self, state: State, source: str) -> None:
+        old, self._state = self._state, state
+        self._mark(stale_after(old, state), source)
+        if "transform" in changed_fields(old, state):
+            self._widen_margin()
+
+    def _mark(self, stale: set[Result] | frozenset[Result], source: str) -> None:
+        self._stale |= with_followers(stale, self._state)
+        own = frozenset({source} if source else ())
+        self._sources = own if self._sources is None else self._sources & own
+        self.listeners.dirty()
+
+    # -- once a frame -------------------------------------------------------------------------
+
+    def flush(self) -> Frame:
+        """Derive everything that is stale and can be derived now; start jobs for the rest."""
+        stale, self._stale = self._stale, frozenset()
+        sources, self._sources = self._sources or frozenset(), None
+        before = self.snapshot.outdated
+        self._deriver.run(self._state, stale, keep_scales=self._gesture != 0)
+        if Result.TRIALS in stale and self._state.cut and self.snapshot.trials is None:
+            # Undo reached a recording whose trials had to make room: read them again.
+            self._cut_again(self._state.cut, self._lay_again)
+        if self._stale:  # a job that ran in place has answered already
+            again = self.flush()
+            return Frame(again.snapshot, again.changed | stale, sources & again.sources)
+        return Frame(self.snapshot, stale | (before ^ self.snapshot.outdated), sources)
+
+    @property
+    def settled(self) -> bool:
+        """Whether nothing is stale and no job runs."""
+        return not self._stale and not self.jobs.running
+
+    # -- recordings come in -------------------------------------------------------------------
+
+    def open(self, path: str, *, ask: bool = False) -> None:
+        """Open a file or folder and lay its trials on the table.
+
+        What is open stays untouched until the new trials are there.
+
+        Parameters
+        ----------
+        path : str
+            File or folder.
+        ask : bool
+            Whether the person is asked how to cut before it is done.
+        """
+        self._read(partial(opening.read, path), ask=ask)
+
+    def open_listed(self, path: str) -> None:
+        """Open a line of the recordings list, as it lay on its desk where it was open before."""
+        if path != self._state.recording:
+            self._read(partial(opening.read, path), ask=False)
+
+    def ask_cut(self) -> None:
+        """Read the open recording again and ask how to cut it anew."""
+        path, how = self._state.recording, self._state.cut
+        ask = self.listeners.recording_read
+        if not path or how is None or ask is None:
+            return
+        self.jobs.start(
+            Job(
+                "read",
+                "opening",
+                partial(opening.open_recording, path),
+                lambda recording: ask(recording, how),
+                self._failed,
+            )
+        )
+
+    def cut(self, recording: Recording, how: Cut) -> None:
+        """Cut trials from a recording and lay them on the table."""
+        trials = self._shelf.find(recording.source.path, how)
+        if trials is not None:
+            self._take(trials)
+            return
+        self.jobs.start(
+            Job(
+                "cut",
+                f"cutting trials from {recording.source.title}",
+                partial(opening.cut, recording, how),
+                self._take,
+                self._failed,
+            )
+        )
+
+    def take_trials(self, trials: Trials) -> None:
+        """Lay ready trials on the table."""
+        self._take(trials)
+
+    def _read(self, work: Callable[[Progress], opening.Opened], *, ask: bool) -> None:
+        self.jobs.drop("cut")
+        self.jobs.start(
+            Job("read", "opening", work, partial(self._opened, ask=ask), self._failed)
+        )
+
+    def _opened(self, opened: opening.Opened, *, ask: bool) -> None:
+        if len(opened.lines) > 1:
+            self.do(intents.shelve(opened.lines))
+        desk = self._state.desk(opened.recording.source.path)
+        how = (
+            desk.cut
+            if desk is not None
+            else opening.cut_for(opened.recording, self._state.cut, self._margin_s())
+        )
+        if ask and self.listeners.recording_read is not None:
+            self.listeners.recording_read(opened.recording, how)
+        else:
+            self.cut(opened.recording, how)
+
+    def _take(self, trials: Trials) -> None:
+        new = self._find_trials(self._state) is not trials
+        self._shelf.put(trials)
+        self.do(intents.take_trials(trials))
+        self._mark({Result.TRIALS}, "")
+        if new:
+            for warning in trials.warnings:
+                self.listeners.message(warning)
+
+    def _margin_s(self) -> float:
+        """Margin for the lowest wavelet, in whole tenths so that small changes re-use the cut."""
+        return max(0.5, -(-self._state.transform.margin_s // 0.1) * 0.1)
+
+    def _widen_margin(self) -> None:
+        """Cut anew where longer wavelets would run off the margins of a continuous recording."""
+        trials = self._find_trials(self._state)
+        need_s = self._margin_s()
+        if trials is None or not trials.source.continuous or trials.cut.margin_s >= need_s - 1e-9:
+            return
+        self._cut_again(replace(trials.cut, margin_s=need_s), self._take)
+
+    def _lay_again(self, trials: Trials) -> None:
+        self._shelf.put(trials)
+        self._mark({Result.TRIALS}, "")
+
+    def _cut_again(self, how: Cut, done: Callable[[Trials], None]) -> None:
+        work = partial(opening.read_and_cut, self._state.recording, how)
+        self.jobs.start(Job("cut", "cutting trials", work, done, self._failed))
+
+    def _find_trials(self, state: State) -> Trials | None:
+        if state.cut is None:
+            return None
+        return self._shelf.find(state.recording, state.cut)
+
+    # -- jobs ---------------------------------------------------------------------------------
+
+    def _ask_transform(self, question: ChannelQuestion) -> None:
+        masks = self._deriver.masks(self._state, len(question.trials))
+        self.jobs.start(
+            Job(
+                "transform",
+                f"transforming {question.channel}",
+                partial(transform_channel, question, masks),
+                self._transformed,
+                self._failed,
+            )
+        )
+
+    def _transformed(self, work: ChannelWork) -> None:
+        if self._deriver.take_work(work):
+            self._mark({Result.CHANNEL, Result.SUBSETS}, "")
+
+    def stop(self) -> None:
+        """Stop every job; what was shown stays, marked as outdated."""
+        if self.jobs.running:
+            self.jobs.drop_all()
+            self._deriver.forget_question()
+            self.listeners.message("stopped; what is drawn dimmed belongs to the earlier choice")
+
+    def compute_again(self) -> None:
+        """Ask again for what was stopped or failed."""
+        self._deriver.forget_question()
+        self._mark({Result.TRIALS}, "")
+
+    def _failed(self, error: Exception) -> None:
+        self._deriver.forget_question()
+        if isinstance(error, PersonError):
+            self.listeners.message(error.line)
+        else:
+            self.listeners.fault(error)
+
+    def close(self) -> None:
+        """Stop the jobs and let go of the data."""
+        self.listeners = Listeners()
+        self.jobs.close()
+        self._shelf.clear()
+        self._deriver.close()
