@@ -74,7 +74,7 @@ def test_a_long_drag_does_not_drift(rng):
         mask[order[start : start + length]] = True
         sums.set_members(mask)
     fresh.set_members(mask)
-    np.testing.assert_allclose(sums.unit_sum, fresh.unit_sum, atol=1e-9)
+    np.testing.assert_allclose(sums.unit_sum, fresh.unit_sum, atol=1e-12)
     np.testing.assert_allclose(sums.uv_square_sum, fresh.uv_square_sum, atol=1e-9)
 
 
@@ -101,7 +101,8 @@ def test_blocks_of_rows_and_points_do_not_matter(monkeypatch):
     monkeypatch.setattr(trial_sums, "ROWS", 5)
     monkeypatch.setattr(trial_sums, "POINTS", 4)
     pieces = sum_rows(VALUES, DATA, rows)
-    np.testing.assert_allclose(pieces.unit_sum, whole.unit_sum, atol=1e-6)
+    # A trial's phasors do not depend on the trials and points beside it.
+    np.testing.assert_allclose(pieces.unit_sum, whole.unit_sum, atol=1e-13)
     np.testing.assert_array_equal(pieces.n_phase, whole.n_phase)
     np.testing.assert_allclose(pieces.power_sum, whole.power_sum, rtol=1e-14)
 
