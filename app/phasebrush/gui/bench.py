@@ -6,6 +6,7 @@ from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QSplitter, QVBoxLayout, QWidget
 
+from phasebrush.core.sort_keys import KINDS
 from phasebrush.gui import theme
 from phasebrush.gui.colour_bar import number
 from phasebrush.gui.panel import Panel
@@ -118,7 +119,9 @@ class Bench(QWidget):
         if snapshot.stack is not None:
             self._scale.show_limit(snapshot.stack.limit_uv)
         key = snapshot.key
-        self._strip_panel.title_line.set_title(key.title if key is not None else "Key strip")
+        chosen = snapshot.state.key
+        words = chosen.column or KINDS[chosen.kind].title
+        self._strip_panel.title_line.set_title(words.capitalize() if key is not None else "Key")
 
     def show_legend(self, snapshot: Snapshot, look: Look) -> None:
         """Line styles and counts of the three sets."""

@@ -23,7 +23,7 @@ def decimals_for(step: float) -> int:
 
 def number(value: float, decimals: int) -> str:
     """A number with a true minus sign."""
-    return f"{value:.{decimals}f}".replace("-", "−")
+    return f"{round(value, decimals) + 0.0:.{decimals}f}".replace("-", "−")
 
 
 class ColourBar(QWidget):
@@ -71,7 +71,7 @@ class ColourBar(QWidget):
         step = next(s for s in (0.05, 0.1, 0.2, 0.25, 0.5, 1, 2, 5, 10, 20, 50, 1e9)
                     if span / s <= max(2, bar.height() / 28))  # fmt: skip
         places = decimals_for(step)
-        first = np.ceil(low / step - 1e-9) * step
+        first = float(np.ceil(low / step - 1e-9) * step)
         half = painter.fontMetrics().height() / 2
         for value in np.arange(first, high + step * 1e-6, step):
             y = bar.bottom() - (value - low) / span * bar.height()
@@ -83,6 +83,8 @@ class ColourBar(QWidget):
             painter.setPen(pen(self._look.text, width=2))
             painter.drawLine(round(bar.left()) - 4, y, round(bar.right()) + 2, y)
         painter.setPen(QColor(self._look.muted))
-        unit = QRectF(0, bar.bottom() + 4, WIDTH, 2 * half)
-        painter.drawText(unit, Qt.AlignmentFlag.AlignLeft, f" {self._unit}")
+        painter.translate(WIDTH - half - 1, bar.center().y())
+        painter.rotate(-90)
+        unit = QRectF(-bar.height() / 2, -half, bar.height(), 2 * half)
+        painter.drawText(unit, Qt.AlignmentFlag.AlignCenter, self._unit)
         painter.end()

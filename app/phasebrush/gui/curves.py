@@ -32,12 +32,13 @@ class Line(pg.PlotCurveItem):  # type: ignore[misc]
         super().__init__(skipFiniteCheck=True)
         self._name = name
         self.setZValue(LAYER[name])
-        self.setSegmentedLineMode("on")
+        # Segments would begin the dashes of B afresh at every point.
+        self.setSegmentedLineMode("off" if name == "B" else "on")
         self.set_look(LIGHT)
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
-        self.setPen(set_pen(self._name, look, width=2.0 if self._name == "B" else 2.0))
+        self.setPen(set_pen(self._name, look, width=2.0))
         self.opts["antialias"] = self._name != "all"
 
     def set_points(self, x: Floats, y: Floats) -> None:

@@ -123,7 +123,7 @@ class Docks:
         tall = height - 120
         shares = {
             self.recordings: 0.15, self.channel: 0.33, self.order: 0.26, self.subsets: 0.26,
-            self.itc: 0.37, self.power: 0.37, self.dial: 0.26,
+            self.itc: 0.36, self.power: 0.36, self.dial: 0.28,
         }  # fmt: skip
         window.resizeDocks(
             list(shares), [round(share * tall) for share in shares.values()],

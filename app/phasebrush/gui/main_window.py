@@ -70,6 +70,7 @@ class MainWindow(QMainWindow):
         self.setAcceptDrops(True)
         self.setDockNestingEnabled(True)
         self.setMinimumSize(900, 600)
+        self.setContentsMargins(theme.GRID, 0, theme.GRID, 0)
         self.workbench = workbench
         self.look = look
         self._settings = settings
@@ -190,6 +191,7 @@ class MainWindow(QMainWindow):
             self._arranged = True
             if not self._restore_arrangement():
                 self.docks.arrange()
+            self.bench.stack.setFocus()
         elif not open_now:
             for dock in self.docks.docks:
                 dock.hide()

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import QSize, Qt
+from PySide6.QtGui import QPainter, QPaintEvent, QPalette
 from PySide6.QtWidgets import (
     QBoxLayout,
     QDockWidget,
@@ -20,6 +21,31 @@ from phasebrush.gui.theme import GRID
 TITLE_HEIGHT = 26
 
 
+class ElidedLabel(QLabel):
+    """Words on one line, cut short with an ellipsis where room is scarce."""
+
+    def __init__(self, words: str, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._words = words
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+        self.setToolTip(words)
+
+    def set_words(self, words: str) -> None:
+        """Change the words."""
+        self._words = words
+        self.setToolTip(words)
+        self.update()
+
+    def paintEvent(self, _event: QPaintEvent) -> None:
+        """Write what fits."""
+        painter = QPainter(self)
+        painter.setPen(self.palette().color(QPalette.ColorRole.WindowText))
+        mode = Qt.TextElideMode.ElideRight
+        words = painter.fontMetrics().elidedText(self._words, mode, self.width())
+        painter.drawText(self.rect(), Qt.AlignmentFlag.AlignVCenter, words)
+        painter.end()
+
+
 class TitleLine(QFrame):
     """Muted title in words at the left, controls of the view at the right."""
 
@@ -27,16 +53,21 @@ class TitleLine(QFrame):
         super().__init__(parent)
         self.setObjectName("titleLine")
         self.setFixedHeight(TITLE_HEIGHT)
-        self._label = QLabel(title, self)
+        self._label = ElidedLabel(title, self)
         self._label.setObjectName("panelTitle")
-        self._label.setTextFormat(Qt.TextFormat.PlainText)
-        self._label.setMinimumWidth(0)
-        self._label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
         self._layout = QHBoxLayout(self)
         self._layout.setContentsMargins(GRID, 0, GRID // 2, 0)
         self._layout.setSpacing(2)
         self._layout.addWidget(self._label, 1)
         self._title = title
+
+    def sizeHint(self) -> QSize:
+        """As high as every title line: a dock asks for this, not for the fixed height."""
+        return QSize(self._layout.sizeHint().width(), TITLE_HEIGHT)
+
+    def minimumSizeHint(self) -> QSize:
+        """The controls; the words may be cut short."""
+        return QSize(self._layout.minimumSize().width(), TITLE_HEIGHT)
 
     @property
     def title(self) -> str:
@@ -47,8 +78,7 @@ class TitleLine(QFrame):
         """Change the words; does nothing when they are the same."""
         if title != self._title:
             self._title = title
-            self._label.setText(title)
-            self._label.setToolTip(title)
+            self._label.set_words(title)
 
     def add(self, control: QWidget) -> None:
         """Put a control at the right end."""

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from functools import lru_cache
+from pathlib import Path
 
-from PySide6.QtCore import QByteArray, Qt
+from PySide6.QtCore import QByteArray, QTemporaryDir, Qt
 from PySide6.QtGui import (
     QColor,
     QFont,
@@ -83,6 +84,7 @@ def style_sheet(look: Look) -> str:
     hover = mixed(look.panel, look.hairline, 0.5)
     pressed = mixed(look.panel, look.hairline, 0.9)
     faint = mixed(look.muted, look.panel, 0.5)
+    chevron, tick = (_icon_file(name, look) for name in ("chevron-down", "tick"))
     return f"""
     QMainWindow, QDialog {{ background: {look.ground}; }}
     QMainWindow::separator {{ background: {look.ground}; width: {GRID}px; height: {GRID}px; }}
@@ -117,6 +119,16 @@ def style_sheet(look: Look) -> str:
         border: 1px solid {look.hairline}; border-radius: 4px; padding: 2px 4px;
         min-height: 18px; color: {look.text};
         selection-background-color: {look.focus}; selection-color: {look.panel}; }}
+    QComboBox::drop-down {{ border: none; width: 16px; }}
+    QComboBox::down-arrow {{ image: url({chevron}); width: 10px; height: 10px; }}
+    QSpinBox::up-button, QSpinBox::down-button, QDoubleSpinBox::up-button,
+    QDoubleSpinBox::down-button {{ width: 0; height: 0; border: none; }}
+    QCheckBox::indicator, QListView::indicator {{ width: 12px; height: 12px;
+        border: 1px solid {look.muted}; border-radius: 3px; background: {look.panel}; }}
+    QCheckBox::indicator:checked, QListView::indicator:checked {{ image: url({tick}); }}
+    QGroupBox {{ border: 1px solid {look.hairline}; border-radius: 4px; margin-top: 16px;
+        padding-top: 4px; color: {look.muted}; }}
+    QGroupBox::title {{ subcontrol-origin: margin; left: 4px; }}
     QComboBox:focus, QLineEdit:focus, QSpinBox:focus, QDoubleSpinBox:focus {{
         border-color: {look.focus}; }}
     QComboBox QAbstractItemView {{ background: {look.panel}; color: {look.text};
@@ -148,6 +160,18 @@ def style_sheet(look: Look) -> str:
     """
 
 
+@lru_cache(maxsize=1)
+def _icon_folder() -> QTemporaryDir:
+    return QTemporaryDir()
+
+
+def _icon_file(name: str, look: Look) -> str:
+    """A tinted icon as a file: style sheets take no other."""
+    path = Path(_icon_folder().path()) / f"{name}-{look.name}.png"
+    _pixmap(name, look.muted, 20).save(str(path), "PNG")
+    return path.as_posix()
+
+
 def icon(name: str, look: Look) -> QIcon:
     """One of the program's own line icons in the text colour of a look."""
     return QIcon(_pixmap(name, look.text, 40))
@@ -168,3 +192,5 @@ def _pixmap(name: str, colour: str, pixels: int) -> QPixmap:
 def forget_pixmaps() -> None:
     """Drop cached pixmaps; they must not outlive the application."""
     _pixmap.cache_clear()
+    style_sheet.cache_clear()
+    _icon_folder.cache_clear()

@@ -54,6 +54,14 @@ class Pointer:
     pixel: QPointF
 
 
+class Axis(pg.AxisItem):  # type: ignore[misc]
+    """An axis whose numbers carry a true minus sign."""
+
+    def tickStrings(self, values: list[float], scale: float, spacing: float) -> list[str]:
+        """Tick labels."""
+        return [text.replace("-", "−") for text in super().tickStrings(values, scale, spacing)]
+
+
 class TimePlot(pg.PlotWidget):  # type: ignore[misc]
     """Base of every plot over time.
 
@@ -63,7 +71,8 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
     """
 
     def __init__(self, name: str, margins: Margins, parent: QWidget | None = None) -> None:
-        super().__init__(parent=parent, enableMenu=False)
+        axes = {"left": Axis("left"), "bottom": Axis("bottom")}
+        super().__init__(parent=parent, enableMenu=False, axisItems=axes)
         self.setObjectName(name)
         self.margins = margins
         self.look = LIGHT
@@ -74,7 +83,7 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         self.zoomed: Callable[[tuple[float, float] | None], None] | None = None
         self._down = False
         item = self.getPlotItem()
-        item.setMouseEnabled(False, False)
+        item.setMouseEnabled(x=False, y=False)
         item.hideButtons()
         item.vb.setDefaultPadding(0)
         item.vb.disableAutoRange()

@@ -55,13 +55,12 @@ def _polar(lightness: float, chroma: float, hue_degrees: float) -> NDArray[np.fl
     return np.array([lightness, chroma * np.cos(angle), chroma * np.sin(angle)])
 
 
-def _strongest(lightness: float, hue_degrees: float) -> NDArray[np.float64]:
-    """The CIELAB colour of this lightness and hue with the largest chroma that sRGB holds."""
+def _largest_chroma(lightness: float, hue_degrees: float) -> float:
+    """The largest chroma that sRGB holds at this lightness and hue."""
     chromas = np.linspace(0, 120, 481)
     colours = rgb_from_lab(np.stack([_polar(lightness, c, hue_degrees) for c in chromas]))
     inside = np.all((colours >= 0) & (colours <= 1), axis=1)
-    last = int(np.argmin(inside)) - 1 if not inside.all() else len(chromas) - 1
-    return _polar(lightness, float(chromas[last]), hue_degrees)
+    return float(chromas[int(np.argmin(inside)) - 1])
 
 
 def _table(lab: NDArray[np.float64]) -> NDArray[np.uint8]:
@@ -78,12 +77,13 @@ def _panel_lab(look: Look) -> NDArray[np.float64]:
 def signed(look: Look) -> NDArray[np.uint8]:
     """Green (negative) to purple (positive) through the panel colour, shape (256, 3).
 
-    Lightness is linear in magnitude, so that "nothing" looks like nothing and both
-    signs weigh the same.
+    Lightness and chroma are linear in magnitude and equal on both sides, so that
+    "nothing" looks like nothing and both signs weigh the same.
     """
-    end_lightness = 30.0 if look.name == "light" else 80.0
+    end_lightness = 35.0 if look.name == "light" else 80.0
     middle = _panel_lab(look)
-    ends = [_strongest(end_lightness, hue) for hue in (GREEN_HUE, PURPLE_HUE)]
+    chroma = min(_largest_chroma(end_lightness, hue) for hue in (GREEN_HUE, PURPLE_HUE))
+    ends = [_polar(end_lightness, chroma, hue) for hue in (GREEN_HUE, PURPLE_HUE)]
     position = np.linspace(-1, 1, STEPS)[:, None]
     strength = np.abs(position)
     lab = (1 - strength) * middle + strength * np.where(position < 0, ends[0], ends[1])

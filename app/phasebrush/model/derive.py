@@ -51,6 +51,9 @@ if TYPE_CHECKING:
     Floats = NDArray[np.float64]
 
 
+SOLID_N = 10
+
+
 def derive_key(state: State, work: ChannelWork) -> KeyValues:
     """The sort key of every trial; a key that cannot be had says why and leaves NaN."""
     trials = work.question.trials
@@ -116,11 +119,15 @@ def derive_averages(
 
 
 def average_limit(of: Mapping[SetName, Average]) -> tuple[float, float]:
-    """A voltage range that holds every average, with a little room."""
-    means = [item.mean_uv for item in of.values() if item.n > 0]
-    low = min(float(mean.min()) for mean in means)
-    high = max(float(mean.max()) for mean in means)
-    room = 0.12 * max(high - low, 1e-3)
+    """A voltage range that holds every average and, but for very small sets, its band."""
+    bands = [
+        (item.mean_uv, item.band_uv if item.n >= SOLID_N else 0.0)
+        for item in of.values()
+        if item.n > 0
+    ]
+    low = min(float((mean - band).min()) for mean, band in bands)
+    high = max(float((mean + band).max()) for mean, band in bands)
+    room = 0.05 * max(high - low, 1e-3)
     return low - room, high + room
 
 

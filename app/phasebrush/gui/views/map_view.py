@@ -43,7 +43,7 @@ class MapView(View):
         super().__init__(parent)
         self.setObjectName(name)
         self.plot = TimePlot(f"{name}_area", MAP_MARGINS, self)
-        self.bar = ColourBar(unit, MAP_MARGINS.top, MAP_MARGINS.bottom + 14, self)
+        self.bar = ColourBar(unit, MAP_MARGINS.top, MAP_MARGINS.bottom, self)
         layout = QHBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(0)

@@ -37,7 +37,6 @@ def number_box(
     box.setDecimals(decimals)
     box.setSuffix(f" {suffix}")
     box.setKeyboardTracking(False)
-    box.setButtonSymbols(QDoubleSpinBox.ButtonSymbols.NoButtons)
     box.setToolTip(tip)
     box.setAccessibleName(tip)
     box.setMinimumWidth(56)
@@ -45,13 +44,13 @@ def number_box(
 
 
 def pair_row(first: QWidget, second: QWidget) -> QWidget:
-    """Two fields with a dash between them."""
+    """Two fields, from and to."""
     row = QWidget()
     layout = QHBoxLayout(row)
     layout.setContentsMargins(0, 0, 0, 0)
     layout.setSpacing(4)
     layout.addWidget(first, 1)
-    layout.addWidget(QLabel("–"), 0)
+    layout.addWidget(QLabel("to"), 0)
     layout.addWidget(second, 1)
     return row
 

@@ -36,7 +36,7 @@ def p_words(p: float) -> str:
         exponent = math.floor(math.log10(p)) if p > 1e-99 else -99
         raised = str(exponent + 1).translate(str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"))
         return f"< 10{raised}"
-    return f"{p:.4f}" if p < 0.1 else f"{p:.2f}"
+    return f"{p:.4f}" if p < 0.001 else f"{p:.3f}"
 
 
 @dataclass(frozen=True)
@@ -152,7 +152,7 @@ class ReadoutView(View):
             painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, line.name)
         for column, (name, cells) in enumerate(table.items()):
             left = names + 4 + wide * column
-            point = left + wide * 0.5
+            point = left + wide * 0.44
             painter.setPen(QColor(self.look.subset(name)))
             head = QRectF(left, 2, wide, high)
             painter.drawText(head, Qt.AlignmentFlag.AlignCenter, MARKS[name])

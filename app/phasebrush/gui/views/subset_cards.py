@@ -45,6 +45,7 @@ class _Card(QWidget):
         self.clear.setAccessibleName(f"clear subset {letter}")
         top = QHBoxLayout()
         top.setContentsMargins(0, 0, 0, 0)
+        top.setSpacing(8)
         top.addWidget(self.head)
         top.addWidget(self.count, 1)
         top.addWidget(self.clear)
