@@ -2,13 +2,17 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from dataclasses import dataclass
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 import edfio
 import mne
 import numpy as np
 import pybv
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 RATE_HZ = 250
 SECONDS = 60
@@ -60,11 +64,7 @@ def write_edf(path: Path, made: Truth, *, bdf: bool = False, names: tuple = NAME
         edfio.EdfAnnotation(at, None, text)
         for at, text in zip(made.onsets_s, made.labels, strict=True)
     ]
-    import datetime
-
-    patient = edfio.Patient(
-        name=MARKER_NAME, code="P1", sex="F", birthdate=datetime.date(1931, 7, 31)
-    )
+    patient = edfio.Patient(name=MARKER_NAME, code="P1", sex="F", birthdate=dt.date(1931, 7, 31))
     whole = edfio.Bdf if bdf else edfio.Edf
     whole(signals, patient=patient, annotations=notes, data_record_duration=1).write(path)
     return path
@@ -89,7 +89,7 @@ def write_brainvision(folder: Path, stem: str, made: Truth, *, fmt: str = "binar
 
 def raw_of(made: Truth, *, types: str | list[str] = "eeg", first_samp: int = 0) -> mne.io.RawArray:
     info = mne.create_info(list(NAMES), RATE_HZ, types)
-    raw = mne.io.RawArray(made.volts, info, first_samp=first_samp, verbose="ERROR")
+    raw = mne.io.RawArray(made.volts.copy(), info, first_samp=first_samp, verbose="ERROR")
     raw.set_annotations(
         mne.Annotations(list(made.onsets_s), [0.0] * len(made.labels), list(made.labels))
     )

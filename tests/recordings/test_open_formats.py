@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
+import datetime as dt
 
 import mne
 import numpy as np
@@ -87,10 +88,8 @@ def test_fif_raw(tmp_path, made, first_samp):
 
 
 def test_fif_raw_with_a_date_and_a_late_start(tmp_path, made):
-    import datetime
-
     raw = raw_of(made, first_samp=500)
-    raw.set_meas_date(datetime.datetime(2020, 1, 1, tzinfo=datetime.UTC))
+    raw.set_meas_date(dt.datetime(2020, 1, 1, tzinfo=dt.UTC))
     raw.save(tmp_path / "a_raw.fif", fmt="double", verbose="ERROR")
     again = mne.io.read_raw_fif(tmp_path / "a_raw.fif", verbose="ERROR")
     wanted, _ = mne.events_from_annotations(again, verbose="ERROR")
@@ -176,9 +175,7 @@ def test_preview_agrees_with_the_cut(tmp_path, made):
     # Flashes at 2, 4 ... 56 s: 2.5 s either side leaves 4 to 56 s (57.5 s is past no 58.5).
     assert preview.n_trials == len(trials) == 27
     assert preview.n_dropped == 1
-    message = (
-        "1 of 28 events is too close to the start or end of the recording and was left out"
-    )
+    message = "1 of 28 events is too close to the start or end of the recording and was left out"
     assert preview.reasons == (message,)
     assert message in trials.warnings
     assert sum(preview.per_label.values()) == 27

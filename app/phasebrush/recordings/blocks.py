@@ -41,10 +41,11 @@ class Referencing:
         kept: NDArray[np.float64] = data[(*before, self._picks)]
         if self._n_references == 0:
             return kept
-        level: NDArray[np.float64] = data[(*before, self._references)].mean(
-            axis=axis, keepdims=True
-        )
-        return kept - level
+        with np.errstate(invalid="ignore"):  # infinities: their trials are left out later
+            level: NDArray[np.float64] = data[(*before, self._references)].mean(
+                axis=axis, keepdims=True
+            )
+            return kept - level
 
 
 def _as_slice(index: NDArray[np.intp]) -> slice | NDArray[np.intp]:
@@ -162,7 +163,9 @@ def _without_gaps(
 
     Returns the data, copied where anything changed, and which samples are numbers.
     """
-    if math.isfinite(data.sum()):  # one pass; a single NaN or infinity spoils a sum
+    with np.errstate(invalid="ignore"):
+        total = float(data.sum())  # one pass; a single NaN or infinity spoils a sum
+    if math.isfinite(total):
         return data, np.ones(data.shape[1], dtype=bool)
     bad = ~np.isfinite(data)
     data = data.copy()

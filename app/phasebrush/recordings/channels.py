@@ -13,7 +13,7 @@ if TYPE_CHECKING:
 # 114:1755-1761; EDF+ "standard texts").
 _PREFIX = re.compile(r"^(EEG|EOG|ECG|EKG|EMG|Resp|Temp|SaO2|Light|Sound|Event|Pos|Stim)\s+(?=\S)")
 _NOT_EEG = re.compile(
-    r"^(eog|heog|veog|e[ck]g|emg|resp|temp|sao2|spo2|pulse|pleth|gsr|eda|scl|light|sound|photo|"
+    r"^[hv]?eog|^(e[ck]g|emg|resp|temp|sao2|spo2|pulse|pleth|gsr|eda|scl|light|sound|photo|"
     r"status|trig|trigger|stim|sti|event|marker|counter|acc|pos|pupil|audio|mic|annotations?)"
     r"(?![a-z])|(?<![a-z])(eog|e[ck]g|emg)(?![a-z])|annotations$",
     re.IGNORECASE,

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Iterator, Mapping
+from contextlib import contextmanager
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -28,19 +29,33 @@ _READER = "FIF epochs"
 class FifTrials:
     """Trials of a FIF epochs file, read in groups when asked for."""
 
-    def __init__(self, epochs: Any, indices: NDArray[np.intp], path: Path) -> None:
-        self._epochs = epochs
+    def __init__(self, times_s: NDArray[np.float64], indices: NDArray[np.intp], path: Path) -> None:
+        self.times_s = times_s
         self._indices = indices
         self._path = path
-        self.times_s: NDArray[np.float64] = np.array(epochs.times, dtype=np.float64)
 
-    def read_uv(self, start: int, stop: int) -> NDArray[np.float64]:
-        """Trials of all EEG channels, shape (trials, channels, samples), microvolts."""
-        with faults_in_words(self._path, _READER):
-            group = self._epochs[start:stop]
-            data = np.array(group.get_data(picks=self._indices, verbose="ERROR"), dtype=np.float64)
-        data *= UV_PER_V
-        return data
+    def read_uv(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[np.float64]]:
+        """Yield groups of trials, shape (trials, channels, samples), microvolts."""
+        with faults_in_words(self._path, _READER), _opened(self._path) as epochs:
+            for start, stop in groups:
+                data = epochs[start:stop].get_data(picks=self._indices, verbose="ERROR")
+                yield np.asarray(data, dtype=np.float64) * UV_PER_V
+
+
+@contextmanager
+def _opened(path: Path) -> Iterator[Any]:
+    """Open epochs without their samples, and close the file for certain.
+
+    The library keeps the file open until its object is collected; meanwhile it could be
+    neither replaced nor removed on Windows.
+    """
+    with quietly():
+        epochs = library().read_epochs(path, proj=False, preload=False, verbose=False)
+    try:
+        yield epochs
+    finally:
+        for part in getattr(epochs, "_raw", ()):
+            part.fid.close()
 
 
 def open_fif_epochs(path: Path) -> Recording:
@@ -55,11 +70,11 @@ def open_fif_epochs(path: Path) -> Recording:
     InputError
         If it cannot be read, or holds no trial or no EEG channel.
     """
-    with faults_in_words(path, _READER), quietly() as said:
-        epochs = library().read_epochs(path, proj=False, preload=False, verbose=False)
+    with faults_in_words(path, _READER), quietly() as said, _opened(path) as epochs:
         types = epochs.get_channel_types()
-        n_trials = len(epochs)
-    if n_trials == 0:
+        events = _events(epochs)
+        times_s = np.array(epochs.times, dtype=np.float64)
+    if len(events) == 0:
         raise InputError("holds no trials", "export epochs with at least one trial", path)
     eeg = np.array([i for i, one in enumerate(types) if one == "eeg"], dtype=np.intp)
     if len(eeg) == 0:
@@ -68,8 +83,6 @@ def open_fif_epochs(path: Path) -> Recording:
         )
     names, warnings = unique_names([shown_name(name) for name in epochs.ch_names])
     eeg_names = tuple(names[i] for i in eeg)
-    with faults_in_words(path, _READER):
-        events = _events(epochs)
     bids = names_of(path)
     bads = epochs.info["bads"]
     bad_names = tuple(names[i] for i in eeg if epochs.ch_names[i] in bads)
@@ -77,12 +90,12 @@ def open_fif_epochs(path: Path) -> Recording:
         path=path,
         source=Source(str(path), bids.title, _READER, continuous=False),
         sfreq_hz=float(epochs.info["sfreq"]),
-        n_samples=len(epochs.times),
+        n_samples=len(times_s),
         eeg_names=eeg_names,
         other_names=tuple(n for n, one in zip(names, types, strict=True) if one != "eeg"),
         positions_m=positions_for(epochs.info, [int(i) for i in eeg], eeg_names),
         events=events,
-        ready=FifTrials(epochs, eeg, path),
+        ready=FifTrials(times_s, eeg, path),
         bad_names=bad_names,
         warnings=(*remarks(said), *warnings, *bad_warning(bad_names)),
         bids=bids.entities,

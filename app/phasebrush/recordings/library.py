@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import logging
 import re
 import threading
 import warnings
@@ -48,15 +49,23 @@ def quietly() -> Iterator[list[str]]:
     """
     said: list[str] = []
     mne = library()
+
+    def keep_quiet(record: logging.LogRecord) -> bool:
+        said.append(record.getMessage())
+        return False
+
+    log = logging.getLogger("mne")
     with (
         _capture_lock,
         warnings.catch_warnings(record=True) as caught,
         mne.use_log_level("WARNING"),  # at "ERROR" the library would not warn at all
     ):
         warnings.simplefilter("always")
+        log.addFilter(keep_quiet)
         try:
             yield said
         finally:
+            log.removeFilter(keep_quiet)
             said.extend(str(warning.message) for warning in caught)
 
 

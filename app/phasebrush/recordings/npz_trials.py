@@ -19,6 +19,7 @@ from phasebrush.recordings.positions import standard_positions
 from phasebrush.recordings.recording import Recording
 
 if TYPE_CHECKING:
+    from collections.abc import Iterable, Iterator
     from pathlib import Path
 
     from numpy.typing import NDArray
@@ -58,23 +59,29 @@ class NpzTrials:
         self._data = data
         self.times_s = times_s
 
-    def read_uv(self, start: int, stop: int) -> NDArray[np.float64]:
-        """Trials of all channels, shape (trials, channels, samples), microvolts."""
+    def read_uv(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[np.float64]]:
+        """Yield groups of trials, shape (trials, channels, samples), microvolts."""
+        rows = self._whole if self._data.fortran else self._streamed
         with faults_in_words(self._path, _READER):
-            if self._data.fortran:
-                with np.load(self._path, allow_pickle=False) as archive:
-                    values = archive["data"][start:stop]
-            else:
-                values = self._rows(start, stop)
-        return np.asarray(values, dtype=np.float64) * UV_PER_V
+            for values in rows(groups):
+                yield np.asarray(values, dtype=np.float64) * UV_PER_V
 
-    def _rows(self, start: int, stop: int) -> NDArray[Any]:
+    def _whole(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[Any]]:
+        """Trials of an array whose trials do not lie one behind the other."""
+        with np.load(self._path, allow_pickle=False) as archive:
+            data = archive["data"]
+        for start, stop in groups:
+            yield data[start:stop]
+
+    def _streamed(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[Any]]:
         _, n_channels, n_samples = self._data.shape
         row_bytes = n_channels * n_samples * self._data.dtype.itemsize
         with zipfile.ZipFile(self._path) as archive, archive.open("data.npy") as stream:
-            stream.seek(self._data.header_bytes + start * row_bytes)
-            raw = stream.read((stop - start) * row_bytes)
-        return np.frombuffer(raw, self._data.dtype).reshape(stop - start, n_channels, n_samples)
+            for start, stop in groups:
+                stream.seek(self._data.header_bytes + start * row_bytes)
+                raw = stream.read((stop - start) * row_bytes)
+                trials = np.frombuffer(raw, self._data.dtype)
+                yield trials.reshape(stop - start, n_channels, n_samples)
 
 
 def open_npz(path: Path) -> Recording:

@@ -228,4 +228,5 @@ def _response_times(
     first_s = np.append(responses_s, np.inf)[following]
     next_s = np.append(starts_s, np.inf)[np.searchsorted(starts_s, onsets_s, side="right")]
     delay_s = first_s - onsets_s
-    return np.where((delay_s <= cut.response_limit_s) & (first_s < next_s), delay_s, np.nan)
+    in_time = delay_s <= cut.response_limit_s + 1e-6  # rounding of seconds is no lateness
+    return np.where(in_time & (first_s < next_s), delay_s, np.nan)

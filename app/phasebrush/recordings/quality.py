@@ -16,7 +16,9 @@ if TYPE_CHECKING:
 # Common practice, no source: scalp EEG spans some 10 to 200 microvolts in a trial.
 SMALLEST_UV = 0.05
 LARGEST_UV = 5_000.0
-_FLAT_UV = 1e-3
+# A channel is flat when it spans less than this part of what the others span: an absolute
+# limit would call every channel flat where only the unit is wrong.
+_FLAT_PART = 1e-4
 
 
 def data_warnings(
@@ -39,7 +41,9 @@ def data_warnings(
         Warnings.
     """
     span_uv = data_uv.max(axis=2) - data_uv.min(axis=2)
-    flat = (span_uv < _FLAT_UV).mean(axis=0) > 0.5
+    per_channel_uv = np.median(span_uv, axis=0)
+    alive = per_channel_uv[per_channel_uv > 0]
+    flat = per_channel_uv <= (_FLAT_PART * np.median(alive) if len(alive) else 0.0)
     said = []
     named = [name for name, one in zip(names, flat, strict=True) if one and name not in ignore]
     if named:

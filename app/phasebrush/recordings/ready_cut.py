@@ -10,7 +10,7 @@ from phasebrush.errors import JobStopped
 from phasebrush.recordings.blocks import Referencing
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Iterator
 
     from numpy.typing import NDArray
 
@@ -59,15 +59,11 @@ def fill_from_ready(
     at_once = max(1, _GROUP_NUMBERS // (n_channels * len(ready.times_s)))
     done = 0
     last = int(plan.rows[-1]) + 1
-    for first in range(int(plan.rows[0]), last, at_once):
-        if stop():
-            raise JobStopped
-        until = min(first + at_once, last)
+    spans = [(at, min(at + at_once, last)) for at in range(int(plan.rows[0]), last, at_once)]
+    groups = [(a, b) for a, b in spans if ((plan.rows >= a) & (plan.rows < b)).any()]
+    for (first, until), group in zip(groups, ready.read_uv(_unless(stop, groups)), strict=True):
         wanted = plan.rows[(plan.rows >= first) & (plan.rows < until)]
-        if len(wanted) == 0:
-            continue
-        group = ready.read_uv(first, until)[wanted - first][:, referencing.needed]
-        values = referencing(group, axis=1)
+        values = referencing(group[wanted - first][:, referencing.needed], axis=1)
         here = slice(done, done + len(wanted))
         finite[here] = np.isfinite(values).all(axis=(1, 2))
         if not finite[here].all():
@@ -76,6 +72,14 @@ def fill_from_ready(
         done += len(wanted)
         tell(0.99 * done / len(plan.rows))
     return finite
+
+
+def _unless(stop: Callable[[], bool], groups: list[tuple[int, int]]) -> Iterator[tuple[int, int]]:
+    """Hand out groups until somebody wants to stop."""
+    for group in groups:
+        if stop():
+            raise JobStopped
+        yield group
 
 
 def _continued(values: NDArray[np.float64], plan: Plan) -> NDArray[np.float64]:

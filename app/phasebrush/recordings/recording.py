@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Protocol
 import numpy as np
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Iterable, Iterator, Mapping
     from pathlib import Path
 
     from numpy.typing import NDArray
@@ -30,8 +30,11 @@ class ReadyTrials(Protocol):
 
     times_s: NDArray[np.float64]
 
-    def read_uv(self, start: int, stop: int) -> NDArray[np.float64]:
-        """Read trials, all EEG channels: shape (trials, channels, samples), uV."""
+    def read_uv(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[np.float64]]:
+        """Open the file once and yield groups of trials (first and one-past-last, rising).
+
+        Each has all EEG channels: shape (trials, channels, samples), uV.
+        """
         ...
 
 

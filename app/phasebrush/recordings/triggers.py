@@ -43,6 +43,8 @@ def code_onsets(
     samples, values : ndarray of int64, shape (events,)
         Where each code begins, and the code.
     """
+    if len(codes) == 0:
+        return np.zeros(0, dtype=np.int64), np.zeros(0, dtype=np.int64)
     starts = np.flatnonzero(np.diff(codes)) + 1
     bounds = np.concatenate([[0], starts, [len(codes)]])
     values = codes[bounds[:-1]]
@@ -54,7 +56,8 @@ def code_onsets(
     wanted[0] = False
     # A passing state between two runs of the same code is a glitch inside that code.
     for index in np.flatnonzero(passing[:-1]):
-        if index and values[index - 1] == values[index + 1]:
+        inside = index and not passing[index - 1]
+        if inside and values[index - 1] == values[index + 1]:
             wanted[index + 1] = False
     return bounds[:-1][wanted].astype(np.int64), values[wanted]
 

@@ -26,9 +26,9 @@ V_PER_UV = 1e-6
 TAG_HEAD = struct.Struct(">iiii")
 BLOCK_END, EVENTS_BLOCK, METADATA_BLOCK = 105, 361, 3811
 _INT, _STRING, _DESCRIPTION = 3, 10, 206
-# An identity is version, two words of a machine's network address, and a time. The address
-# names a computer, so it is blanked.
-_BLANK_ID = struct.pack(">iiiii", 0x00010004, 0, 0, 0, 0)
+# An identity is version, two words of a machine's network address, and a time in seconds and
+# microseconds. The address names a computer, so it is blanked; the time is "none".
+_BLANK_ID = struct.pack(">iiiii", 0x00010003, 0, 0, 0, 2**31 - 1)
 
 
 def write_fif(trials: Trials, path: str | Path) -> None:
