@@ -93,15 +93,14 @@ def test_the_cost_follows_the_change():
     assert not sums.uv_sum.any()
 
 
-def test_blocks_of_rows_and_points_do_not_matter(monkeypatch):
+def test_blocks_of_trials_do_not_matter(monkeypatch):
     from phasebrush.core import trial_sums
 
     rows = np.arange(N_TRIALS)
     whole = sum_rows(VALUES, DATA, rows)
-    monkeypatch.setattr(trial_sums, "ROWS", 5)
-    monkeypatch.setattr(trial_sums, "POINTS", 4)
+    monkeypatch.setattr(trial_sums, "BLOCK_POINTS", 5 * 3 * 7)
     pieces = sum_rows(VALUES, DATA, rows)
-    # A trial's phasors do not depend on the trials and points beside it.
+    # A trial's phasors do not depend on the trials beside it.
     np.testing.assert_allclose(pieces.unit_sum, whole.unit_sum, atol=1e-13)
     np.testing.assert_array_equal(pieces.n_phase, whole.n_phase)
     np.testing.assert_allclose(pieces.power_sum, whole.power_sum, rtol=1e-14)
@@ -141,7 +140,7 @@ def test_the_mask_may_be_changed_afterwards():
 def test_stopping_leaves_the_sums_as_they_were(monkeypatch):
     from phasebrush.core import trial_sums
 
-    monkeypatch.setattr(trial_sums, "ROWS", 4)
+    monkeypatch.setattr(trial_sums, "BLOCK_POINTS", 4 * 3 * 7)
     sums = RunningSums(VALUES, DATA)
     mask = np.arange(N_TRIALS) < 8
     sums.set_members(mask)

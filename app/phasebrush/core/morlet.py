@@ -28,8 +28,9 @@ if TYPE_CHECKING:
 
 __all__ = ["BLOCK_BYTES", "Coefficients", "TransformSettings", "bytes_needed", "transform"]
 
-BLOCK_BYTES = 4_000_000
-"""Bytes of short spectra that are worked on at a time: a few milliseconds of work."""
+BLOCK_BYTES = 8_000_000
+"""Bytes of short spectra that are worked on at a time: about 10 ms of work. In smaller blocks a
+thread beside a busy window would wait for the interpreter more than it works."""
 
 
 def transform(

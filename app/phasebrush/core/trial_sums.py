@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import threading
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
@@ -15,9 +16,12 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
-ROWS = 20
-POINTS = 4096
-"""Trials and points taken at a time: scratch of about a megabyte stays in the cache."""
+    Singles = NDArray[np.float32]
+    Doubles = NDArray[np.float64]
+
+BLOCK_POINTS = 200_000
+"""Coefficients taken at a time. Large enough that a thread beside a busy window waits for the
+interpreter seldom, small enough to stay in the cache."""
 
 SMALLEST_SAFE = 1e-30
 LARGEST_SAFE = 1e30
@@ -120,22 +124,24 @@ def sum_rows(
     n_freqs, n_times = values.shape[1:]
     n_points = n_freqs * n_times
     floats = values.view(np.float32).reshape(values.shape[0], 2 * n_points)
+    n_rows = max(1, min(BLOCK_POINTS // n_points, values.shape[0]))
+    scratch = _scratch_of_thread(n_rows, n_points)
     unit, coef, squares = np.zeros((3, 2 * n_points))
     zeros = np.zeros(n_points, np.int64)
     uv_sum, uv_square_sum = np.zeros(data_uv.shape[1]), np.zeros(data_uv.shape[1])
-    for start in range(0, rows.size, ROWS):
+    for start in range(0, rows.size, n_rows):
         if stopped is not None and stopped():
             raise JobStopped
-        block = rows[start : start + ROWS]
-        for left in range(0, n_points, POINTS):
-            right = min(left + POINTS, n_points)
-            here = slice(2 * left, 2 * right)
-            pairs = floats[block, here]
-            phasors = _phasors(pairs.view(np.complex64), zeros[left:right])
-            unit[here] += phasors.view(np.float32).sum(axis=0, dtype=np.float64)
-            exact = pairs.astype(np.float64)
-            coef[here] += exact.sum(axis=0)
-            squares[here] += np.square(exact, out=exact).sum(axis=0)
+        block = rows[start : start + n_rows]
+        pairs, phasors, scale = (array[: block.size] for array in scratch[:3])
+        double = scratch[3][: block.size]
+        np.take(floats, block, axis=0, out=pairs, mode="clip")
+        _form_phasors(pairs, phasors, scale, zeros)
+        np.copyto(double, phasors)
+        unit += double.sum(axis=0)
+        np.copyto(double, pairs)
+        coef += double.sum(axis=0)
+        squares += np.square(double, out=double).sum(axis=0)
         voltages = data_uv[block].astype(np.float64)
         uv_sum += voltages.sum(axis=0)
         uv_square_sum += np.square(voltages, out=voltages).sum(axis=0)
@@ -153,16 +159,19 @@ def sum_rows(
     )
 
 
-def _phasors(values: NDArray[np.complex64], zeros: NDArray[np.int64]) -> NDArray[np.complex64]:
-    """Form unit phasors of some trials at some points, and count zeros into ``zeros``.
+def _form_phasors(
+    pairs: Singles, phasors: Singles, scale: Singles, zeros: NDArray[np.int64]
+) -> None:
+    """Write unit phasors, as pairs of floats, and count zeros into ``zeros``.
 
     Squares and one reciprocal root are several times faster than the absolute value of a
     complex number, which guards against overflow at every point. Here only points whose square
     would lose digits are done that way; all others come out the same whatever is beside them.
     """
+    values = pairs.view(np.complex64)
     with np.errstate(over="ignore", under="ignore"):
-        squares = np.square(values.view(np.float32))
-        scale = squares[:, 0::2] + squares[:, 1::2]
+        np.square(pairs, out=phasors)
+        np.add(phasors[:, 0::2], phasors[:, 1::2], out=scale)
     special = None
     if scale.min() < SMALLEST_SAFE or scale.max() > LARGEST_SAFE:
         zeros += np.count_nonzero(values == 0.0, axis=0)
@@ -170,7 +179,21 @@ def _phasors(values: NDArray[np.complex64], zeros: NDArray[np.int64]) -> NDArray
         scale[special] = 1.0
     np.sqrt(scale, out=scale)
     np.reciprocal(scale, out=scale)
-    phasors: NDArray[np.complex64] = values * scale
+    units = phasors.view(np.complex64)
+    np.multiply(values, scale, out=units)
     if special is not None:
-        phasors[special] = unit_phasors(values[special])
-    return phasors
+        units[special] = unit_phasors(values[special])
+
+
+_of_thread = threading.local()
+
+
+def _scratch_of_thread(n_rows: int, n_points: int) -> tuple[Singles, Singles, Singles, Doubles]:
+    """Give this thread's working memory; fresh memory at each step of a brush costs a quarter."""
+    scratch: tuple[Singles, Singles, Singles, Doubles] | None = getattr(_of_thread, "kept", None)
+    if scratch is None or scratch[2].shape != (n_rows, n_points):
+        pairs, phasors = np.empty((2, n_rows, 2 * n_points), np.float32)
+        scale = np.empty((n_rows, n_points), np.float32)
+        scratch = (pairs, phasors, scale, np.empty((n_rows, 2 * n_points)))
+        _of_thread.kept = scratch
+    return scratch
