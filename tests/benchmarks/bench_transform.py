@@ -11,6 +11,7 @@ processors. Ours keeps the coefficients in single precision, the library in doub
 from __future__ import annotations
 
 import argparse
+import importlib.util
 import sys
 import time
 from dataclasses import dataclass
@@ -157,6 +158,8 @@ def main() -> None:
     parser = argparse.ArgumentParser(description="Time the transform against two yardsticks.")
     parser.add_argument("--repetitions", type=int, default=5)
     repetitions = parser.parse_args().repetitions
+    if importlib.util.find_spec("joblib") is None:
+        print("Without joblib the library does all its work in one job: install it to be fair.")
     for case in CASES:
         compare(case, repetitions)
     brush(max(20, repetitions))

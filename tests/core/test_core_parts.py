@@ -6,7 +6,7 @@ import itertools
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from phasebrush.core.parts import PARTS, part_mask, part_rows
@@ -37,6 +37,7 @@ def test_parts_of_ten_trials():
     assert set(np.flatnonzero(part_mask(values, ("rows", 0.2, 0.5)))) == {7, 6, 5}
 
 
+@settings(deadline=None)
 @given(values_with_gaps)
 def test_opposite_parts_are_of_one_size_share_nothing_and_are_in_order(values):
     for low_part, high_part in PAIRS:
@@ -50,6 +51,7 @@ def test_opposite_parts_are_of_one_size_share_nothing_and_are_in_order(values):
             assert not (values[~high] > values[high].min()).any()
 
 
+@settings(deadline=None)
 @given(values_with_gaps, st.lists(st.floats(0, 1), min_size=1, max_size=5, unique=True))
 def test_ranges_of_rows_that_meet_share_nothing_and_leave_nothing_out(values, cuts):
     edges = sorted({0.0, 1.0, *cuts})

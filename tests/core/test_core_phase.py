@@ -9,7 +9,7 @@ import pytest
 import scipy.integrate
 import scipy.optimize
 import scipy.special
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from phasebrush.core.phase import (
@@ -224,6 +224,7 @@ def test_perfect_alignment_never_exceeds_one():
     np.testing.assert_allclose(itc(values), 1.0, atol=1e-15)
 
 
+@settings(deadline=None)
 @given(st.lists(st.floats(-np.pi, np.pi), min_size=2, max_size=40))
 def test_ppc_is_the_mean_cosine_over_all_pairs(angles):
     # Vinck et al. 2010, NeuroImage 51:112-122: the definition, by brute force.

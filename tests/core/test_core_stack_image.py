@@ -54,6 +54,7 @@ def test_one_row_is_no_smoothing_and_less_is_refused(rng):
         smooth_rows(rows, 0)
 
 
+@settings(deadline=None)
 @given(st.integers(1, 300), st.integers(1, 120))
 def test_pixel_rows_cover_every_trial_once_and_evenly(n_rows, height_px):
     edges = row_edges(n_rows, height_px)
