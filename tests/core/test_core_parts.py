@@ -64,6 +64,11 @@ def test_equal_values_are_taken_in_the_order_of_the_recording():
     assert np.flatnonzero(part_mask(np.zeros(6), "highest-third")).tolist() == [4, 5]
 
 
+def test_half_a_trial_counts_as_one():
+    assert part_rows(("rows", 0.0, 0.5), 5) == (0, 3)
+    assert part_rows(("rows", 0.5, 1.0), 5) == (3, 5)
+
+
 def test_nothing_known_gives_an_empty_part():
     assert not part_mask(np.full(5, np.nan), "upper-half").any()
     assert part_rows("lowest-third", 2) == (0, 0)

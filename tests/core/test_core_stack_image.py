@@ -107,6 +107,12 @@ def test_the_colour_limit_of_a_large_image_is_close_to_the_whole_ones(rng):
     assert symmetric_limit(image) == pytest.approx(np.percentile(np.abs(image), 98), rel=0.01)
 
 
+def test_the_colour_limit_of_a_large_image_looks_at_every_column():
+    image = np.ones((2000, 500), np.float32)
+    image[:, ::5] = 50.0  # a fifth of the columns, as a plain stride would meet them
+    assert symmetric_limit(image, percentile=70) == 1.0
+
+
 def test_the_colour_limit_of_nothing_is_one():
     assert symmetric_limit(np.zeros((3, 4))) == 1.0
     assert symmetric_limit(np.full((3, 4), np.nan)) == 1.0
