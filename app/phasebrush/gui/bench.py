@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QSplitter, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QSplitter, QVBoxLayout, QWidget
 
 from phasebrush.core.sort_keys import KINDS
 from phasebrush.gui import theme
@@ -14,6 +14,7 @@ from phasebrush.gui.views.average_view import AverageView
 from phasebrush.gui.views.key_strip import KeyStrip
 from phasebrush.gui.views.pick_corner import PickCorner
 from phasebrush.gui.views.stack_view import StackView
+from phasebrush.gui.words import Legend
 from phasebrush.look import colour_maps
 from phasebrush.look.tokens import LIGHT, Look
 from phasebrush.model.results import Snapshot
@@ -71,8 +72,10 @@ class Bench(QWidget):
         self.strip, self.corner = KeyStrip(), PickCorner()
         self._average_panel = Panel("Average", self)
         self._average_panel.body.box.addWidget(self.average)
-        self._legend = QLabel(self)
-        self._legend.setTextFormat(Qt.TextFormat.RichText)
+        self._legend = Legend(230, self)
+        self._legend.setToolTip(
+            "Line styles: all trials thin, A solid, B dashed; the numbers are trials"
+        )
         self._average_panel.title_line.add(self._legend)
         self._corner_panel = Panel("Pick", self)
         self._corner_panel.body.box.addWidget(self.corner)
@@ -125,11 +128,9 @@ class Bench(QWidget):
 
     def show_legend(self, snapshot: Snapshot, look: Look) -> None:
         """Line styles and counts of the three sets."""
-        parts = [f'<span style="color:{look.text}">— all {snapshot.n_trials}</span>']
+        parts = [(f"— all {snapshot.n_trials}", look.text)]
         for letter, mark in (("A", "■ A"), ("B", "● B")):
             n = snapshot.state.subset(letter).n  # type: ignore[arg-type]
             if n:
-                parts.append(f'<span style="color:{look.subset(letter)}">{mark} {n}</span>')
-        words = "&nbsp;&nbsp;&nbsp;".join(parts) + "&nbsp;"
-        if words != self._legend.text():
-            self._legend.setText(words)
+                parts.append((f"{mark} {n}", look.subset(letter)))
+        self._legend.set_parts(tuple(parts))

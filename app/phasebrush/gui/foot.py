@@ -10,12 +10,12 @@ from PySide6.QtWidgets import (
     QHBoxLayout,
     QLabel,
     QProgressBar,
-    QSizePolicy,
     QStatusBar,
     QToolButton,
     QWidget,
 )
 
+from phasebrush.gui.words import ElidedLabel
 from phasebrush.model.jobs import Progress
 from phasebrush.model.results import Snapshot
 
@@ -86,8 +86,7 @@ class Foot(QStatusBar):
         super().__init__(parent)
         self.setSizeGripEnabled(False)
         self._running, self._stop, self._again = running, stop, again
-        self._counts, self._hint, self._work = QLabel(), QLabel(), QLabel()
-        self._hint.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+        self._counts, self._hint, self._work = ElidedLabel(), ElidedLabel(), QLabel()
         self._bar = QProgressBar()
         self._bar.setRange(0, 1000)
         self._bar.setTextVisible(False)
@@ -95,8 +94,8 @@ class Foot(QStatusBar):
         self._button = QToolButton()
         self._button.clicked.connect(self._pressed)
         self._outdated = False
-        self.addWidget(self._counts)
-        self.addWidget(self._hint, 1)
+        self.addWidget(self._counts, 2)
+        self.addWidget(self._hint, 5)
         for widget in (self._work, self._bar, self._button):
             self.addPermanentWidget(widget)
         self._timer = QTimer(self)
@@ -110,16 +109,14 @@ class Foot(QStatusBar):
         words = ""
         if snapshot.trials is not None:
             words = f"  {snapshot.n_trials} trials · A {state.a.n} · B {state.b.n}"
-        if words != self._counts.text():
-            self._counts.setText(words)
+        self._counts.set_words(words)
         self._outdated = bool(snapshot.outdated) and snapshot.trials is not None
         if self._outdated or self._button.isVisible():
             self.show_jobs()
 
     def hint(self, words: str) -> None:
         """Say what lies under the pointer."""
-        if words != self._hint.text():
-            self._hint.setText(words)
+        self._hint.set_words(words)
 
     def show_jobs(self) -> None:
         """Show what runs and how far it is."""

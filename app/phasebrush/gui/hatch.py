@@ -10,8 +10,16 @@ from phasebrush.look.tokens import Look, rgb
 SPACING = 7
 
 
+CLEAR, VEIL, LINE = 0, 1, 2
+
+
+def hatch_colours(look: Look) -> NDArray[np.uint8]:
+    """Red, green, blue and opacity of nothing, the veil between the lines, and the lines."""
+    return np.array([(0, 0, 0, 0), (*rgb(look.panel), 120), (*rgb(look.muted), 210)], np.uint8)
+
+
 def hatching(
-    where: NDArray[np.bool_], size: tuple[int, int], look: Look, ratio: float = 1.0
+    where: NDArray[np.bool_], size: tuple[int, int], ratio: float = 1.0
 ) -> NDArray[np.uint8]:
     """A picture of fine diagonal lines over the points that are True.
 
@@ -21,15 +29,13 @@ def hatching(
         What to hatch.
     size : tuple of int
         Height and width of the plot area in device pixels.
-    look : Look
-        Theme.
     ratio : float
         Device pixels to a pixel.
 
     Returns
     -------
-    ndarray of uint8, shape (height, width, 4)
-        Red, green, blue and opacity.
+    ndarray of uint8, shape (height, width)
+        Numbers into `hatch_colours`.
     """
     height, width = size
     down = (np.arange(height) * where.shape[0] // height).astype(int)
@@ -37,10 +43,4 @@ def hatching(
     covered = where[down][:, across]
     spacing, thick = max(3, round(SPACING * ratio)), max(1, round(ratio))
     lines = (np.arange(height)[:, None] + np.arange(width)[None, :]) % spacing < thick
-    picture = np.zeros((height, width, 4), dtype=np.uint8)
-    picture[covered, :3] = rgb(look.panel)
-    picture[covered, 3] = 120
-    drawn = covered & lines
-    picture[drawn, :3] = rgb(look.muted)
-    picture[drawn, 3] = 210
-    return picture
+    return np.where(covered, np.where(lines, LINE, VEIL), CLEAR).astype(np.uint8)

@@ -2,48 +2,21 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QSize, Qt
-from PySide6.QtGui import QPainter, QPaintEvent, QPalette
+from PySide6.QtCore import QSize
 from PySide6.QtWidgets import (
     QBoxLayout,
     QDockWidget,
     QFrame,
     QHBoxLayout,
-    QLabel,
-    QSizePolicy,
     QToolButton,
     QVBoxLayout,
     QWidget,
 )
 
 from phasebrush.gui.theme import GRID
+from phasebrush.gui.words import ElidedLabel
 
 TITLE_HEIGHT = 26
-
-
-class ElidedLabel(QLabel):
-    """Words on one line, cut short with an ellipsis where room is scarce."""
-
-    def __init__(self, words: str, parent: QWidget | None = None) -> None:
-        super().__init__(parent)
-        self._words = words
-        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
-        self.setToolTip(words)
-
-    def set_words(self, words: str) -> None:
-        """Change the words."""
-        self._words = words
-        self.setToolTip(words)
-        self.update()
-
-    def paintEvent(self, _event: QPaintEvent) -> None:
-        """Write what fits."""
-        painter = QPainter(self)
-        painter.setPen(self.palette().color(QPalette.ColorRole.WindowText))
-        mode = Qt.TextElideMode.ElideRight
-        words = painter.fontMetrics().elidedText(self._words, mode, self.width())
-        painter.drawText(self.rect(), Qt.AlignmentFlag.AlignVCenter, words)
-        painter.end()
 
 
 class TitleLine(QFrame):

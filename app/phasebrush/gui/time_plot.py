@@ -161,6 +161,12 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         view_box = self.getPlotItem().vb
         return QRectF(self.mapFromScene(view_box.sceneBoundingRect()).boundingRect())
 
+    def device_pixels(self) -> tuple[int, int]:
+        """Height and width of the plot area in device pixels, at least 1."""
+        area = self.plot_area()
+        ratio = self.devicePixelRatioF()
+        return max(1, round(area.height() * ratio)), max(1, round(area.width() * ratio))
+
     def to_pixel(self, x: float, y: float) -> QPointF:
         """Widget pixel of a point given in the plot's units."""
         scene = self.getPlotItem().vb.mapViewToScene(QPointF(x, y))

@@ -107,6 +107,7 @@ def cyclic(look: Look) -> NDArray[np.uint8]:
     return _table(np.stack([_polar(lightness, 32.0, hue) for hue in hues]))
 
 
+@lru_cache(maxsize=256)
 def mixed(colour: str, other: str, share: float) -> str:
     """A colour between two, in CIELAB: ``share`` 0 gives ``colour``, 1 gives ``other``."""
     pair = lab_from_rgb(np.array([rgb(colour), rgb(other)]) / 255)

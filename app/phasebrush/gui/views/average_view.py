@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, ClassVar
 
+from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
-from phasebrush.gui.curves import Band, Line
+from phasebrush.gui.curves import IN_A, IN_B, Bands, Line, PlotArea
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
 from phasebrush.gui.view import View
 from phasebrush.model.intents import move_cursor, zoom_time
@@ -34,8 +35,8 @@ class AverageView(View):
         layout.addWidget(self.plot)
         self.plot.name_axes("voltage (µV)", "")
         self.lines = {name: Line(name) for name in SET_NAMES}
-        self.bands = {name: Band(name) for name in ("A", "B")}
-        self.plot.add(*self.bands.values(), *self.lines.values())
+        self.bands = Bands()
+        self.plot.add(self.bands, *self.lines.values())
         self.plot.zoomed = self._zoomed
         self.plot.pressed = self.plot.dragged = self._moved
         self.plot.hovered = self._hovered
@@ -51,6 +52,7 @@ class AverageView(View):
         trials = snapshot.trials
         if changed & {Result.TRIALS, Result.SHOWN} and trials is not None:
             self.plot.set_time_range(*(snapshot.state.shown_s or trials.window_s))
+            self._draw()
         if changed & {Result.CURSOR, Result.SPOT}:
             self.plot.set_cursor_time(snapshot.state.cursor_s)
         if self._averages is not snapshot.averages:
@@ -64,8 +66,9 @@ class AverageView(View):
     def _draw(self) -> None:
         averages = self._averages
         if averages is None:
-            for item in (*self.lines.values(), *self.bands.values()):
-                item.clear_points()
+            for line in self.lines.values():
+                line.clear_points()
+            self.bands.hide()
             return
         if self.plot.getPlotItem().vb.viewRange()[1] != list(averages.limit_uv):
             self.plot.set_value_range(*averages.limit_uv)
@@ -75,20 +78,35 @@ class AverageView(View):
                 line.clear_points()
             else:
                 line.set_points(averages.times_s, average.mean_uv)
-        for name, band in self.bands.items():
+        self._draw_bands()
+
+    def _draw_bands(self) -> None:
+        averages = self._averages
+        if averages is None:
+            return
+        edges = {}
+        for number, name in ((IN_A, "A"), (IN_B, "B")):
             average = averages.of.get(name)  # type: ignore[call-overload]
-            if average is None or average.n < 2:
-                band.clear_points()
-            else:
+            if average is not None and average.n >= 2:
                 mean, half = average.mean_uv, average.band_uv
-                band.set_edges(averages.times_s, mean - half, mean + half)
+                edges[number] = (mean - half, mean + half)
+        height, width = self.plot.device_pixels()
+        x_range, y_range = self.plot.getPlotItem().vb.viewRange()
+        area = PlotArea((x_range[0], x_range[1]), (y_range[0], y_range[1]), width, height)
+        self.bands.set_bands(edges, averages.times_s, area)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Bands at the new pixels."""
+        super().resizeEvent(event)
+        self._draw()
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
         super().set_look(look)
         self.plot.set_look(look)
-        for item in (*self.lines.values(), *self.bands.values()):
-            item.set_look(look)
+        for line in self.lines.values():
+            line.set_look(look)
+        self.bands.set_look(look)
 
     def _moved(self, pointer: Pointer) -> None:
         self.ways.do(move_cursor(pointer.x))

@@ -5,10 +5,10 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
-import pyqtgraph as pg
 from PySide6.QtCore import QRectF
 
 from phasebrush.core.stack_image import reduce_rows
+from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import Margins, Pointer
 from phasebrush.gui.views.row_view import RowView
 from phasebrush.look import colour_maps
@@ -37,7 +37,12 @@ class KeyStrip(RowView):
         super().__init__("key_strip", Margins(left=4, right=8), parent)
         self._key: KeyValues | None = None
         self._by_row: NDArray[np.float64] = np.zeros(0)
-        self._image = pg.ImageItem(axisOrder="row-major")
+        self._row_of_line: NDArray[np.intp] = np.zeros(0, dtype=np.intp)
+        self._blank: NDArray[np.uint8] | None = None
+        self._gutter = GUTTER
+        self._extent = QRectF()
+        self._colours = packed(self._table())
+        self._image = PixelImage()
         self.plot.add(self._image)
         self.plot.zero_line.hide()
         self.plot.cursor_line.hide()
@@ -60,11 +65,10 @@ class KeyStrip(RowView):
                     f"(solid) and B (dashed). {rows.n_missing} trials have no value."
                 )
                 self.plot.set_value_range(0, self.brush.n_rows)
-        self.draw_again()
-
-    def draw_marks(self) -> None:
-        """Membership is part of the picture."""
-        self.draw_again()
+            self._colours = packed(self._table())
+            self.draw_again()
+        elif not self.brush.active:
+            self.draw_marks()
 
     def _scale(self) -> tuple[float, float]:
         key = self._key
@@ -79,7 +83,7 @@ class KeyStrip(RowView):
         return low - 0.04 * (high - low), high
 
     def draw_again(self) -> None:
-        """Paint the strip at the plot area's own pixels."""
+        """Measure out the strip at the plot area's own pixels, and paint it."""
         self._image.setVisible(self._key is not None)
         if self._key is None:
             return
@@ -88,35 +92,40 @@ class KeyStrip(RowView):
         gutter = round(GUTTER * self.devicePixelRatioF())
         low, high = self._scale()
         bars = max(1, width - gutter)
-        values = np.nan_to_num(self._by_row, nan=low).astype(np.float32)[:, None]
-        lines = reduce_rows(values, height)[:, 0]
+        values = np.nan_to_num(self._by_row, nan=low).astype(np.float32)
         row_of_line = (np.arange(height) + 0.5) / height * self.brush.n_rows
-        row_of_line = np.minimum(row_of_line.astype(int), self.brush.n_rows - 1)
-        if len(lines) < height:
-            lines = values[row_of_line, 0]
-        in_a, in_b = (self.brush.picked.rows[x] for x in ("A", "B"))
-        colour = self._member(in_a, in_b)[row_of_line]
-        picture = np.zeros((height, width), dtype=np.uint8)
+        self._row_of_line = np.minimum(row_of_line.astype(int), self.brush.n_rows - 1)
+        few = self.brush.n_rows < height
+        lines = values[self._row_of_line] if few else reduce_rows(values[:, None], height)[:, 0]
         reach = (lines - low) / (high - low) * bars
+        across = np.arange(bars)[None, :]
+        picture = np.zeros((height, width), dtype=np.uint8)
         if self._key.is_angle:
             cell = np.clip(CYCLE + (lines + np.pi) / (2 * np.pi) * 239, CYCLE, 255)
             picture[:, gutter:] = cell.astype(np.uint8)[:, None]
-            here = np.abs(np.arange(bars)[None, :] - reach[:, None]) <= 1.0
-            picture[:, gutter:][here] = REST
+            picture[:, gutter:][np.abs(across - reach[:, None]) <= 1.0] = REST
         else:
-            filled = np.arange(bars)[None, :] < np.maximum(reach, 1.0)[:, None]
-            picture[:, gutter:] = np.where(filled, colour[:, None], EMPTY)
-        missing = np.isnan(self._by_row)[row_of_line]
-        picture[missing, gutter:] = EMPTY
-        self._bracket(picture, in_a[row_of_line], IN_A, 2, solid=True)
-        self._bracket(picture, in_b[row_of_line], IN_B, 7, solid=False)
-        self._image.setImage(picture, levels=(0, 255), autoLevels=False, lut=self._table())
+            picture[:, gutter:][across < np.maximum(reach, 1.0)[:, None]] = REST
+        picture[np.isnan(self._by_row)[self._row_of_line], gutter:] = EMPTY
+        self._blank, self._gutter = picture, gutter
         unit = (high - low) / bars
         self.plot.set_time_range(low - gutter * unit, high)
-        self._image.setRect(
-            QRectF(low - gutter * unit, 0, high - low + gutter * unit, self.brush.n_rows)
-        )
+        self._extent = QRectF(low - gutter * unit, 0, high - low + gutter * unit, self.brush.n_rows)
         self._tick_angles()
+        self.draw_marks()
+
+    def draw_marks(self) -> None:
+        """Paint who is in A and B: bars in their colours, brackets in the gutter."""
+        if self._key is None or self._blank is None:
+            return
+        in_a, in_b = (self.brush.picked.rows[x][self._row_of_line] for x in ("A", "B"))
+        picture = self._blank.copy()
+        if not self._key.is_angle:
+            bars = picture[:, self._gutter :]
+            bars *= self._member(in_a, in_b)[:, None]
+        self._bracket(picture, in_a, IN_A, 2, solid=True)
+        self._bracket(picture, in_b, IN_B, 7, solid=False)
+        self._image.show_cells(picture, self._colours, self._extent)
 
     def _tick_angles(self) -> None:
         axis = self.plot.getPlotItem().getAxis("bottom")
@@ -166,6 +175,7 @@ class KeyStrip(RowView):
         """Take the colours of a theme."""
         super().set_look(look)
         self.plot.set_look(look)
+        self._colours = packed(self._table())
         self.draw_again()
 
     def hover_at(self, pointer: Pointer | None) -> None:

@@ -5,14 +5,14 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
-import pyqtgraph as pg
 from PySide6.QtCore import QRectF, Qt
 from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QGraphicsRectItem, QHBoxLayout, QWidget
 
 from phasebrush.core.spot import Spot
 from phasebrush.gui.colour_bar import ColourBar
-from phasebrush.gui.hatch import hatching
+from phasebrush.gui.hatch import hatch_colours, hatching
+from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot, pen
 from phasebrush.gui.view import View
 from phasebrush.look import colour_maps
@@ -51,10 +51,8 @@ class MapView(View):
         layout.addWidget(self.bar, 0)
         self.plot.name_axes("frequency (Hz)", "")
         self.plot.hide_bottom_ticks()
-        self._image = pg.ImageItem(axisOrder="row-major")
-        self._image.setZValue(-10)
-        self._hatch = pg.ImageItem(axisOrder="row-major")
-        self._hatch.setZValue(-5)
+        self._image, self._hatch = PixelImage(), PixelImage(layer=-5)
+        self._extent = QRectF()
         self._halo, self._box = QGraphicsRectItem(), QGraphicsRectItem()
         self._halo.setZValue(60)
         self._box.setZValue(61)
@@ -137,9 +135,7 @@ class MapView(View):
         cells = np.rint((self.values(maps) - low) * (255 / (high - low)))
         cells = np.clip(np.nan_to_num(cells, nan=127.0), 0, 255).astype(np.uint8)
         table = self.table(maps)
-        self._image.setImage(cells, levels=(0, 255), autoLevels=False, lut=table)
-        self._image.setRect(self._extent)
-        self._image.show()
+        self._image.show_cells(cells, packed(table), self._extent)
         self.bar.show_scale(low, high, table, self.look, self.chance(maps))
 
     def _draw_hatch(self) -> None:
@@ -147,17 +143,16 @@ class MapView(View):
         maps = self._maps
         if maps is None:
             return
-        area = self.plot.plot_area()
+        size = self.plot.device_pixels()
         ratio = self.devicePixelRatioF()
-        size = (max(1, round(area.height() * ratio)), max(1, round(area.width() * ratio)))
         what = (id(maps.valid), size, self.look)
         if what == self._hatched_for:
             return
         self._hatched_for = what
         self._hatch.setVisible(not maps.valid.all())
         if not maps.valid.all():
-            self._hatch.setImage(hatching(~maps.valid, size, self.look, ratio), autoLevels=False)
-            self._hatch.setRect(self._extent)
+            cells = hatching(~maps.valid, size, ratio)
+            self._hatch.show_cells(cells, packed(hatch_colours(self.look)), self._extent)
 
     def _row(self, hz: float) -> float:
         """Place of a frequency on the axis: log-spaced rows, 0 at the lowest."""

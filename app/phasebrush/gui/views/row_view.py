@@ -69,9 +69,7 @@ class RowView(View):
 
     def pixels(self) -> tuple[int, int]:
         """Height and width of the plot area in device pixels, at least 1."""
-        area = self.plot.plot_area()
-        ratio = self.devicePixelRatioF()
-        return max(1, round(area.height() * ratio)), max(1, round(area.width() * ratio))
+        return self.plot.device_pixels()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Reduce to the new pixels."""

@@ -10,6 +10,7 @@ from PySide6.QtCore import QRectF
 
 from phasebrush.core.stack_image import reduce_columns, reduce_rows
 from phasebrush.gui.brush import runs
+from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import Margins, Pointer, pen
 from phasebrush.gui.views.row_view import RowView
 from phasebrush.look import colour_maps
@@ -46,8 +47,8 @@ class StackView(RowView):
         super().__init__("trial_stack", Margins(), parent)
         self._stack: Stack | None = None
         self._span = (-0.5, 1.0)
-        self._image = pg.ImageItem(axisOrder="row-major")
-        self._image.setZValue(-10)
+        self._image = PixelImage()
+        self._colours = packed(self._table())
         self.plot.add(self._image)
         self._edges = {letter: pg.PlotCurveItem(connect="pairs") for letter in LETTERS}
         self.plot.add(*self._edges.values())
@@ -108,8 +109,8 @@ class StackView(RowView):
         start_s = float(stack.times_s[seen[0]]) - step_s / 2
         end_s = float(stack.times_s[seen[-1]]) + step_s / 2
         cells = self._with_responses(cells, stack, (start_s, end_s), (height, width))
-        self._image.setImage(cells, levels=(0, 255), autoLevels=False, lut=self._table())
-        self._image.setRect(QRectF(start_s, 0, end_s - start_s, stack.image_uv.shape[0]))
+        rect = QRectF(start_s, 0, end_s - start_s, stack.image_uv.shape[0])
+        self._image.show_cells(cells, self._colours, rect)
 
     def _with_responses(
         self,
@@ -156,6 +157,7 @@ class StackView(RowView):
         """Take the colours of a theme."""
         super().set_look(look)
         self.plot.set_look(look)
+        self._colours = packed(self._table())
         self._edges["A"].setPen(pen(look.subset_a, width=2))
         self._edges["B"].setPen(pen(look.subset_b, width=2, dashed=True))
         self.draw_again()

@@ -9,6 +9,7 @@ from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QPushButton, QVB
 
 from phasebrush.gui import theme
 from phasebrush.gui.view import View
+from phasebrush.gui.words import ElidedLabel
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS, Letter
@@ -35,10 +36,9 @@ class _Card(QWidget):
         self.letter = letter
         self.head = QLabel(self)
         self.head.setFont(theme.font(9.0, bold=True))
-        self.count = QLabel(self)
-        self.words = QLabel(self)
+        self.count = ElidedLabel(parent=self)
+        self.words = ElidedLabel(parent=self)
         self.words.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
-        self.words.setWordWrap(True)
         self.clear = QPushButton("clear", self)
         self.clear.setObjectName("quiet")
         self.clear.setToolTip(f"Empty subset {letter}")
@@ -68,9 +68,8 @@ class SubsetCards(View):
         self._swap = QPushButton("swap A and B", self)
         self._swap.setObjectName("quiet")
         self._swap.setToolTip("A becomes B and B becomes A (X)")
-        self._caution = QLabel(self)
+        self._caution = ElidedLabel(parent=self)
         self._caution.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
-        self._caution.setWordWrap(True)
         grid = QGridLayout(self)
         grid.setContentsMargins(0, 0, 0, 4)
         grid.setVerticalSpacing(4)
@@ -89,12 +88,11 @@ class SubsetCards(View):
         for letter, card in self._cards.items():
             subset = snapshot.state.subset(letter)
             sizes[letter] = subset.n
-            card.count.setText(f"{subset.n} of {snapshot.n_trials}")
-            card.words.setText(rule_words(subset))
+            card.count.set_words(f"{subset.n} of {snapshot.n_trials}")
+            card.words.set_words(rule_words(subset))
             card.clear.setEnabled(subset.n > 0)
         self._swap.setEnabled(any(sizes.values()))
-        self._caution.setText(self._cautions(snapshot, sizes))
-        self._caution.setVisible(bool(self._caution.text()))
+        self._caution.set_words(self._cautions(snapshot, sizes))
 
     @staticmethod
     def _cautions(snapshot: Snapshot, sizes: dict[Letter, int]) -> str:

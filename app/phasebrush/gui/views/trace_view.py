@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, ClassVar
 
+import numpy as np
 import pyqtgraph as pg
 from PySide6.QtGui import QColor
 from PySide6.QtWidgets import QHBoxLayout, QWidget
@@ -18,7 +19,6 @@ from phasebrush.model.results import SET_NAMES
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
-    import numpy as np
     from numpy.typing import NDArray
 
     from phasebrush.look.tokens import Look
@@ -77,7 +77,8 @@ class TraceView(View):
             if traces is None or trace is None:
                 line.clear_points()
             else:
-                line.set_points(traces.times_s[traces.valid], self.values(trace)[traces.valid])
+                values = np.where(traces.valid, self.values(trace), np.nan)
+                line.set_points(traces.times_s, values)
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""

@@ -1,0 +1,96 @@
+"""A picture in a plot, painted at the screen's own pixels in one plain copy."""
+
+from __future__ import annotations
+
+import numpy as np
+import pyqtgraph as pg
+from numpy.typing import NDArray
+from PySide6.QtCore import QRectF
+from PySide6.QtGui import QImage, QPainter
+from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+
+
+def packed(table: NDArray[np.uint8]) -> NDArray[np.uint32]:
+    """A colour table as one number a colour, opacity multiplied in.
+
+    Parameters
+    ----------
+    table : ndarray of uint8, shape (colours, 3 or 4)
+        Red, green, blue, and opacity where there is a fourth column.
+    """
+    wide = table.astype(np.uint32)
+    if table.shape[1] == 3:
+        return (0xFF000000 | (wide[:, 0] << 16) | (wide[:, 1] << 8) | wide[:, 2]).astype(np.uint32)
+    alpha = wide[:, 3]
+    red, green, blue = ((wide[:, i] * alpha + 127) // 255 for i in range(3))
+    return ((alpha << 24) | (red << 16) | (green << 8) | blue).astype(np.uint32)
+
+
+class PixelImage(pg.GraphicsObject):  # type: ignore[misc]
+    """An image over a rectangle of the plot.
+
+    The library's own image item converts and scales at every repaint (about 1 ms a picture);
+    here that is done once, when the picture changes.
+    """
+
+    def __init__(self, layer: float = -10.0) -> None:
+        super().__init__()
+        self._image = QImage()
+        self._held: NDArray[np.uint32] = np.zeros((0, 0), dtype=np.uint32)
+        self._cells: NDArray[np.uint8] = np.zeros((0, 0), dtype=np.uint8)
+        self._rect = QRectF()
+        self.setZValue(layer)
+
+    @property
+    def cells(self) -> NDArray[np.uint8]:
+        """What is drawn, as numbers of colours; row 0 is at the foot."""
+        return self._cells
+
+    def show_cells(
+        self, cells: NDArray[np.uint8], colours: NDArray[np.uint32], rect: QRectF
+    ) -> None:
+        """Draw cells.
+
+        Parameters
+        ----------
+        cells : ndarray of uint8, shape (height, width)
+            Number of the colour of each cell; row 0 is at the foot.
+        colours : ndarray of uint32
+            Colours as `packed` gives them.
+        rect : QRectF
+            Where, in the plot's units.
+        """
+        if rect != self._rect:
+            self.prepareGeometryChange()
+            self._rect = QRectF(rect)
+        self._cells = cells
+        self._held = colours[cells[::-1]]
+        height, width = cells.shape
+        self._image = QImage(
+            self._held.data, width, height, 4 * width, QImage.Format.Format_ARGB32_Premultiplied
+        )
+        self.show()
+        self.update()
+
+    def boundingRect(self) -> QRectF:
+        """Where it is, in the plot's units."""
+        return self._rect
+
+    def paint(
+        self,
+        painter: QPainter,
+        _option: QStyleOptionGraphicsItem,
+        _widget: QWidget | None = None,
+    ) -> None:
+        """Copy the picture to its place, without smoothing."""
+        if self._image.isNull():
+            return
+        place = painter.worldTransform().mapRect(self._rect)
+        painter.save()
+        painter.resetTransform()
+        painter.setRenderHint(QPainter.RenderHint.SmoothPixmapTransform, on=False)
+        # Whole pixels: a picture of the plot area's own size is then copied, not scaled.
+        left, top = round(place.left()), round(place.top())
+        whole = QRectF(left, top, round(place.right()) - left, round(place.bottom()) - top)
+        painter.drawImage(whole, self._image)
+        painter.restore()
