@@ -113,21 +113,22 @@ def run(wish: Wish) -> int:
 
 
 def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
-    said: list[str] = []
     bench = window.workbench
     if wish.path:
-        bench.listeners.message = said.append
-        bench.listeners.recording_read = None
+        failures: list[Exception] = []
+        bench.listeners.failed = failures.append
         window.open_path(wish.path)
         _wait(app, window)
-        if bench.snapshot.trials is None:
-            raise InputError(*_split(said), wish.path)
-        bench.listeners.message = window.message_bar.say
-    if wish.channel:
-        if bench.snapshot.trials and wish.channel not in bench.snapshot.trials.ch_names:
-            names = ", ".join(bench.snapshot.trials.ch_names)
-            raise InputError(f"there is no channel {wish.channel}", f"choose one of {names}",
-                             wish.path)  # fmt: skip
+        if failures:
+            raise failures[0]
+    trials = bench.snapshot.trials
+    if wish.channel and trials is not None:
+        if wish.channel not in trials.ch_names:
+            raise InputError(
+                f"there is no channel {wish.channel}",
+                f"choose one of {', '.join(trials.ch_names)}",
+                wish.path,
+            )
         bench.do(intents.show_channel(wish.channel))
         _wait(app, window)
     if wish.parts:
@@ -139,13 +140,6 @@ def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
         beside.unlink(missing_ok=True)
         raise InputError("could not be written", "choose a folder that can be written", target)
     beside.replace(target)
-
-
-def _split(said: list[str]) -> tuple[str, str]:
-    """Fault and remedy of the last message, without the file's name before them."""
-    line = said[-1] if said else "could not be opened; try another file"
-    wrong, _semicolon, remedy = line.partition("; ")
-    return wrong.split(": ", 1)[-1], remedy or "try another file"
 
 
 def _wait(app: QApplication, window: MainWindow) -> None:

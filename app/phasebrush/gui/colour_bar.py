@@ -68,7 +68,7 @@ class ColourBar(QWidget):
         painter.drawRect(bar)
         painter.setPen(QColor(self._look.muted))
         span = high - low
-        step = next(s for s in (0.05, 0.1, 0.2, 0.25, 0.5, 1, 2, 5, 10, 20, 50, 1e9)
+        step = next(s for s in (0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 1e9)
                     if span / s <= max(2, bar.height() / 28))  # fmt: skip
         places = decimals_for(step)
         first = float(np.ceil(low / step - 1e-9) * step)

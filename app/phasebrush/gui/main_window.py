@@ -19,6 +19,7 @@ from PySide6.QtWidgets import (
 )
 
 from phasebrush.core.trials import Cut
+from phasebrush.errors import PersonError
 from phasebrush.gui import theme
 from phasebrush.gui.actions import Actions
 from phasebrush.gui.bench import Bench
@@ -30,15 +31,15 @@ from phasebrush.gui.foot import Foot, MessageBar
 from phasebrush.gui.frame_clock import FrameClock
 from phasebrush.gui.view import Ways
 from phasebrush.gui.view_board import ViewBoard
-from phasebrush.gui.welcome import Welcome
+from phasebrush.gui.welcome import SAMPLES, Welcome
 from phasebrush.look.tokens import DARK, LIGHT, Look
 from phasebrush.model import intents
 from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result
-from phasebrush.model.state import MapsShow
+from phasebrush.model.state import MapsShow, Shelved
 from phasebrush.model.workbench import Workbench
 from phasebrush.recordings import Recording
-from phasebrush.sample_files import sample_recordings, samples_folder
+from phasebrush.sample_files import default_sample, sample_recordings
 
 FILES = "Recordings (*.fif *.fif.gz *.edf *.bdf *.vhdr *.npz);;All files (*)"
 NARROW = 1180
@@ -137,7 +138,7 @@ class MainWindow(QMainWindow):
         listeners.dirty = self.clock.request
         listeners.jobs = self.foot.show_jobs
         listeners.message = self.message_bar.say
-        listeners.fault = self._tell_fault
+        listeners.failed = self._tell_fault
         listeners.recording_read = self._ask_cut
         for view in self.board.views:
             view.ways = Ways(
@@ -200,8 +201,12 @@ class MainWindow(QMainWindow):
     # -- recordings come in -------------------------------------------------------------------
 
     def open_path(self, path: str, *, ask: bool = False) -> None:
-        """Open a file or folder."""
+        """Open a file or folder; a sample session brings the other ones along on the list."""
         self.message_bar.clear()
+        samples = [str(sample) for sample in sample_recordings()]
+        if path in samples:
+            names = zip(samples, SAMPLES, strict=True)
+            self.workbench.do(intents.shelve(tuple(Shelved(*line) for line in names)))
         self.workbench.open(path, ask=ask)
 
     def _choose_file(self) -> None:
@@ -215,7 +220,7 @@ class MainWindow(QMainWindow):
             self.open_path(path)
 
     def _open_samples(self) -> None:
-        self.open_path(str(samples_folder()))
+        self.open_path(str(default_sample()))
 
     def _ask_cut(self, recording: Recording, how: Cut) -> None:
         dialog = CutDialog(recording, how, self)
@@ -254,6 +259,9 @@ class MainWindow(QMainWindow):
             self._open_dialogs.remove(dialog)
 
     def _tell_fault(self, error: Exception) -> None:
+        if isinstance(error, PersonError):
+            self.message_bar.say(error.line)
+            return
         self.message_bar.say(
             f"this did not work ({type(error).__name__}); what was open stays as it was"
         )

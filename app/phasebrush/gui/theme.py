@@ -136,9 +136,9 @@ def style_sheet(look: Look) -> str:
         selection-color: {look.text}; }}
     QListView, QTreeView, QTableView, QScrollArea {{ background: {look.panel}; border: none;
         outline: none; }}
-    QListView::item {{ padding: 2px 6px; border-radius: 3px; color: {look.text}; }}
-    QListView::item:hover {{ background: {hover}; }}
-    QListView::item:selected {{ background: {pressed}; color: {look.text}; }}
+    QListView::item, QTreeView::item {{ padding: 2px 6px; border-radius: 3px; color: {look.text}; }}
+    QListView::item:hover, QTreeView::item:hover {{ background: {hover}; }}
+    QListView::item:selected, QTreeView::item:selected {{ background: {pressed}; color: {look.text}; }}
     QMenu {{ background: {look.panel}; border: 1px solid {look.hairline}; color: {look.text};
         padding: 4px; }}
     QMenu::item {{ padding: 4px 20px 4px 20px; border-radius: 3px; }}

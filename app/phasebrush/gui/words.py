@@ -8,11 +8,20 @@ from PySide6.QtWidgets import QLabel, QSizePolicy, QWidget
 
 
 class ElidedLabel(QLabel):
-    """Words on one line, cut short with an ellipsis where room is scarce."""
+    """Words cut short with an ellipsis where room is scarce.
 
-    def __init__(self, words: str = "", parent: QWidget | None = None) -> None:
+    Parameters
+    ----------
+    words : str
+        To begin with.
+    lines : int
+        Lines of room; more than one wraps.
+    """
+
+    def __init__(self, words: str = "", parent: QWidget | None = None, lines: int = 1) -> None:
         super().__init__(parent)
         self._words = words
+        self._lines = lines
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
         self.setToolTip(words)
 
@@ -22,8 +31,12 @@ class ElidedLabel(QLabel):
         return self._words
 
     def sizeHint(self) -> QSize:
-        """One line; the width is up to the layout."""
-        return QSize(20, self.fontMetrics().height() + 2)
+        """Its lines; the width is up to the layout."""
+        return QSize(20, self._lines * self.fontMetrics().height() + 2)
+
+    def minimumSizeHint(self) -> QSize:
+        """As high as it is."""
+        return QSize(0, self.sizeHint().height())
 
     def set_words(self, words: str) -> None:
         """Change the words."""
@@ -38,8 +51,15 @@ class ElidedLabel(QLabel):
         painter = QPainter(self)
         painter.setPen(self.palette().color(QPalette.ColorRole.WindowText))
         mode = Qt.TextElideMode.ElideRight
-        words = painter.fontMetrics().elidedText(self._words, mode, self.width())
-        painter.drawText(self.rect(), Qt.AlignmentFlag.AlignVCenter, words)
+        if self._lines > 1:
+            # Wrapped words end a line early now and then: a tenth is kept back for that.
+            room = round(self._lines * self.width() * 0.9)
+            words = painter.fontMetrics().elidedText(self._words, mode, room)
+            flags = Qt.AlignmentFlag.AlignTop | Qt.TextFlag.TextWordWrap
+            painter.drawText(self.rect(), flags, words)
+        else:
+            words = painter.fontMetrics().elidedText(self._words, mode, self.width())
+            painter.drawText(self.rect(), Qt.AlignmentFlag.AlignVCenter, words)
         painter.end()
 
 

@@ -16,6 +16,7 @@ class History:
     def __init__(self) -> None:
         self._earlier: list[tuple[str, State]] = []
         self._undone: list[tuple[str, State]] = []
+        self._dropped: list[tuple[str, State]] = []
 
     @property
     def undo_name(self) -> str:
@@ -31,12 +32,13 @@ class History:
         """Remember the record as it was before a step."""
         self._earlier.append((name, before))
         del self._earlier[:-LONGEST]
-        self._undone.clear()
+        self._dropped, self._undone = self._undone, []
 
     def forget_last(self) -> None:
         """Drop the newest entry: the gesture came back to where it began."""
         if self._earlier:
             self._earlier.pop()
+            self._undone, self._dropped = self._dropped, []
 
     def undo(self, now: State) -> State | None:
         """The record before the last step, or None."""

@@ -241,19 +241,19 @@ def shelve(lines: tuple[Shelved, ...]) -> Intent:
     return Intent("list recordings", change, fleeting=True)
 
 
-def take_trials(trials: Trials) -> Intent:
-    """Lay freshly cut trials on the table.
+def take_trials(trials: Trials, before: Trials | None) -> Intent:
+    """Lay freshly cut trials on the table; ``before`` are those that lie there now.
 
     The recording that lay there keeps its decisions on its desk. Of a recording that was
     cut anew, A and B keep their trials, found again by onset sample and label.
     """
 
-    def change(state: State, snapshot: Snapshot) -> State:
+    def change(state: State, _snapshot: Snapshot) -> State:
         path = trials.source.path
         a, b, channel = NOBODY, NOBODY, state.channel
         desks = state.desks
-        if state.recording == path and snapshot.trials is not None:
-            a, b = (_found_again(x, snapshot.trials, trials) for x in (state.a, state.b))
+        if state.recording == path and before is not None:
+            a, b = (_found_again(x, before, trials) for x in (state.a, state.b))
         elif state.recording and state.cut is not None:
             left = Desk(state.recording, state.cut, state.channel, state.a, state.b)
             desks = (*(desk for desk in desks if desk.recording != left.recording), left)

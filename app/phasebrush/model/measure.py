@@ -93,7 +93,7 @@ def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     """
     bench = Workbench()
     bench.listeners.message = say
-    bench.listeners.fault = _raise
+    bench.listeners.failed = _raise
     recording = recordings.open_recording(question.path)
     trials = recordings.cut_trials(recording, _cut(question, recording))
     if question.channel not in trials.ch_names:

@@ -7,7 +7,6 @@ from dataclasses import dataclass, replace
 from functools import partial
 from typing import TYPE_CHECKING
 
-from phasebrush.errors import PersonError
 from phasebrush.model import intents, opening
 from phasebrush.model.channel_work import ChannelQuestion, ChannelWork, transform_channel
 from phasebrush.model.deriver import Deriver
@@ -56,7 +55,7 @@ class Listeners:
     dirty: Callable[[], None] = _nothing
     jobs: Callable[[], None] = _nothing
     message: Callable[[str], None] = _nothing
-    fault: Callable[[Exception], None] = _nothing
+    failed: Callable[[Exception], None] = _nothing
     recording_read: Callable[[Recording, Cut], None] | None = None
 
 
@@ -101,17 +100,28 @@ class Workbench:
 
     def do(self, intent: Intent) -> None:
         """Carry out an intent. Within one gesture each move starts from where the drag began."""
-        in_gesture = intent.gesture != 0 and intent.gesture == self._gesture
-        if not in_gesture:
+        if intent.fleeting:
+            self._do_fleeting(intent)
+            return
+        if intent.gesture != self._gesture:
+            self.end_gesture()
             self._gesture, self._origin = intent.gesture, self._state
-            self._gesture_kept = False
-        wished = intent.change(self._origin, self.snapshot)
+        origin = self._origin if intent.gesture else self._state
+        wished = intent.change(origin, self.snapshot)
         if wished == self._state:
             return
-        if not intent.fleeting and not self._gesture_kept:
-            self._history.keep(intent.name, self._origin)
+        if not self._gesture_kept:
+            self._history.keep(intent.name, origin)
             self._gesture_kept = intent.gesture != 0
         self._swap(wished, intent.source)
+
+    def _do_fleeting(self, intent: Intent) -> None:
+        """Cursor, zoom: not in the undo list, and no end to a drag that is under way."""
+        wished = intent.change(self._state, self.snapshot)
+        if self._gesture:
+            self._origin = intent.change(self._origin, self.snapshot)
+        if wished != self._state:
+            self._swap(wished, intent.source)
 
     def end_gesture(self) -> None:
         """The drag ended: colour scales may follow now."""
@@ -253,11 +263,11 @@ class Workbench:
             self.cut(opened.recording, how)
 
     def _take(self, trials: Trials) -> None:
-        new = self._find_trials(self._state) is not trials
+        before = self._find_trials(self._state)
         self._shelf.put(trials)
-        self.do(intents.take_trials(trials))
+        self.do(intents.take_trials(trials, before))
         self._mark({Result.TRIALS}, "")
-        if new:
+        if before is not trials:
             for warning in trials.warnings:
                 self.listeners.message(warning)
 
@@ -296,7 +306,7 @@ class Workbench:
                 f"transforming {question.channel}",
                 partial(transform_channel, question, masks),
                 self._transformed,
-                self._failed,
+                self._transform_failed,
             )
         )
 
@@ -316,12 +326,12 @@ class Workbench:
         self._deriver.forget_question()
         self._mark({Result.TRIALS}, "")
 
-    def _failed(self, error: Exception) -> None:
+    def _transform_failed(self, error: Exception) -> None:
         self._deriver.forget_question()
-        if isinstance(error, PersonError):
-            self.listeners.message(error.line)
-        else:
-            self.listeners.fault(error)
+        self._failed(error)
+
+    def _failed(self, error: Exception) -> None:
+        self.listeners.failed(error)
 
     def close(self) -> None:
         """Stop the jobs and let go of the data."""

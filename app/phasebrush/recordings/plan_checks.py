@@ -29,7 +29,10 @@ def whole_window(recording: Recording, cut: Cut) -> tuple[float, float]:
     """
     there = recording.window_s
     if there is None:
-        return cut.window_s[0] - cut.margin_s, cut.window_s[1] + cut.margin_s
+        # Ends are rounded inwards to whole samples; a margin must not come out shorter for it.
+        rate_hz = cut.resample_hz or recording.sfreq_hz
+        margin_s = cut.margin_s + 1 / rate_hz if cut.margin_s > 0 else 0.0
+        return cut.window_s[0] - margin_s, cut.window_s[1] + margin_s
     half_s = 0.5 / recording.sfreq_hz
     if cut.window_s[0] < there[0] - half_s or cut.window_s[1] > there[1] + half_s:
         raise InputError(

@@ -26,7 +26,7 @@ if TYPE_CHECKING:
     from phasebrush.model.results import Maps, Snapshot
 
 MAP_MARGINS = Margins(left=46, right=0, bottom=6)
-NICE_HZ = (1, 2, 3, 4, 6, 8, 10, 13, 16, 20, 25, 30, 40, 50, 60, 80, 100, 120, 150, 200)
+NICE_HZ = (1, 1.6, 2.5, 4, 6, 10, 16, 25, 40, 60, 100, 160, 250)
 TINY_DRAG_PIXELS = 4.0
 SHARED_NEEDS = frozenset(
     {Result.TRIALS, Result.MAPS, Result.SPOT, Result.CURSOR, Result.SHOWN, Result.SUBSETS}

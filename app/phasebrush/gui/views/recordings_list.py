@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtCore import QItemSelectionModel, QModelIndex, Qt
 from PySide6.QtGui import QStandardItem, QStandardItemModel
-from PySide6.QtWidgets import QListView, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHeaderView, QTreeView, QVBoxLayout, QWidget
 
 from phasebrush.gui.view import View
 from phasebrush.model.stale import Result
@@ -30,9 +30,14 @@ class RecordingsList(View):
         self.open_listed: Callable[[str], None] | None = None
         self._lines: tuple[Shelved, ...] = ()
         self._model = QStandardItemModel(self)
-        self._list = QListView(self)
+        self._list = QTreeView(self)
         self._list.setModel(self._model)
-        self._list.setEditTriggers(QListView.EditTrigger.NoEditTriggers)
+        self._list.setRootIsDecorated(False)
+        self._list.setHeaderHidden(True)
+        self._list.setUniformRowHeights(True)
+        self._list.setAllColumnsShowFocus(True)
+        self._list.setEditTriggers(QTreeView.EditTrigger.NoEditTriggers)
+        self._list.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self._list.setTextElideMode(Qt.TextElideMode.ElideMiddle)
         self._list.setToolTip("Recordings; click one to lay it on the table")
         self._list.setAccessibleName("recordings")
@@ -49,15 +54,22 @@ class RecordingsList(View):
             self._lines = state.shelf
             self._model.clear()
             for line in state.shelf:
-                count = f"   {line.n_trials} trials" if line.n_trials is not None else ""
-                item = QStandardItem(f"{line.title}{count}")
-                item.setData(line.path, PATH)
-                item.setToolTip(line.title)
-                self._model.appendRow(item)
+                count = f"{line.n_trials} trials" if line.n_trials is not None else ""
+                items = [QStandardItem(line.title), QStandardItem(count)]
+                for item in items:
+                    item.setData(line.path, PATH)
+                    item.setToolTip(f"{line.title} {count}".strip())
+                self._model.appendRow(items)
+            header = self._list.header()
+            if state.shelf:
+                header.setStretchLastSection(False)
+                header.setSectionResizeMode(0, QHeaderView.ResizeMode.Stretch)
+                header.setSectionResizeMode(1, QHeaderView.ResizeMode.ResizeToContents)
         selection = self._list.selectionModel()
         for row, line in enumerate(state.shelf):
             if line.path == state.recording:
-                flag = QItemSelectionModel.SelectionFlag.ClearAndSelect
+                select = QItemSelectionModel.SelectionFlag
+                flag = select.ClearAndSelect | select.Rows
                 selection.setCurrentIndex(self._model.index(row, 0), flag)
                 return
         selection.clearSelection()

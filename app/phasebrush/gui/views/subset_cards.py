@@ -37,7 +37,7 @@ class _Card(QWidget):
         self.head = QLabel(self)
         self.head.setFont(theme.font(9.0, bold=True))
         self.count = ElidedLabel(parent=self)
-        self.words = ElidedLabel(parent=self)
+        self.words = ElidedLabel(parent=self, lines=2)
         self.words.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
         self.clear = QPushButton("clear", self)
         self.clear.setObjectName("quiet")
@@ -68,7 +68,7 @@ class SubsetCards(View):
         self._swap = QPushButton("swap A and B", self)
         self._swap.setObjectName("quiet")
         self._swap.setToolTip("A becomes B and B becomes A (X)")
-        self._caution = ElidedLabel(parent=self)
+        self._caution = ElidedLabel(parent=self, lines=2)
         self._caution.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
         grid = QGridLayout(self)
         grid.setContentsMargins(0, 0, 0, 4)
