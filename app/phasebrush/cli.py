@@ -5,7 +5,6 @@ from __future__ import annotations
 import argparse
 import re
 import sys
-from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, NoReturn
@@ -19,6 +18,8 @@ from phasebrush.core.transform_settings import TransformSettings
 from phasebrush.errors import InputError, PersonError
 
 if TYPE_CHECKING:
+    from collections.abc import Callable, Sequence
+
     from phasebrush.core.parts import Part
 
 CAUTION = (
@@ -38,7 +39,7 @@ class _Parser(argparse.ArgumentParser):
     def error(self, message: str) -> NoReturn:
         """Say what is wrong with the call and end with status 2."""
         line = f"phasebrush: {message}; see '{self.prog} --help'"
-        print(line, file=sys.stderr)  # noqa: T201 - the command line's own voice
+        print(line, file=sys.stderr)  # noqa: T201
         raise SystemExit(USAGE)
 
 
@@ -58,19 +59,37 @@ def _size(text: str) -> tuple[int, int]:
 
 
 def _open_arguments(parser: argparse.ArgumentParser) -> None:
-    parser.add_argument("path", nargs="?", default="", metavar="PATH",
-                        help="a recording, or a folder of recordings")  # fmt: skip
-    parser.add_argument("--picture", metavar="OUT.png", default="",
-                        help="save what the window shows and end; works without a display")  # fmt: skip
-    parser.add_argument("--size", type=_size, default=(1600, 1000), metavar="WIDTHxHEIGHT",
-                        help="size of the window (default 1600x1000)")  # fmt: skip
-    parser.add_argument("--look", choices=("light", "dark", "system"), default="system",
-                        help="colours (default: as the system, or as last time)")  # fmt: skip
+    parser.add_argument(
+        "path", nargs="?", default="", metavar="PATH", help="a recording, or a folder of recordings"
+    )
+    parser.add_argument(
+        "--picture",
+        metavar="OUT.png",
+        default="",
+        help="save what the window shows and end; works without a display",
+    )
+    parser.add_argument(
+        "--size",
+        type=_size,
+        default=(1600, 1000),
+        metavar="WIDTHxHEIGHT",
+        help="size of the window (default 1600x1000)",
+    )
+    parser.add_argument(
+        "--look",
+        choices=("light", "dark", "system"),
+        default="system",
+        help="colours (default: as the system, or as last time)",
+    )
     parser.add_argument("--channel", metavar="NAME", default="", help="channel of the picture")
     for letter in ("A", "B"):
-        parser.add_argument(f"--{letter.lower()}", choices=PARTS, metavar="PART", default="",
-                            help=f"part of the sort key to pick as {letter} for the picture: "
-                            + ", ".join(PARTS))  # fmt: skip
+        parser.add_argument(
+            f"--{letter.lower()}",
+            choices=PARTS,
+            metavar="PART",
+            default="",
+            help=f"part of the sort key to pick as {letter} for the picture: " + ", ".join(PARTS),
+        )
 
 
 def _run_open(arguments: argparse.Namespace) -> int:
@@ -94,28 +113,72 @@ def _measure_arguments(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
     add("recording", metavar="RECORDING")
     add("--channel", metavar="NAME", required=True, help="channel to measure")
-    add("--event", metavar="LABEL", action="append", default=[],
-        help="event label that makes a trial; may be repeated (default: the usual ones)")  # fmt: skip
+    add(
+        "--event",
+        metavar="LABEL",
+        action="append",
+        default=[],
+        help="event label that makes a trial; may be repeated (default: the usual ones)",
+    )
     add("--window", **pair, help="window, seconds from the event")  # type: ignore[arg-type]
-    add("--baseline", **pair,  # type: ignore[arg-type]
-        help="baseline of the dB scale, seconds (default -0.5 -0.1)")  # fmt: skip
-    add("--voltage-baseline", **pair,  # type: ignore[arg-type]
-        help="window whose mean voltage is taken off each trial, seconds (default -0.2 0)")  # fmt: skip
-    add("--freqs", nargs=3, metavar=("LOW", "HIGH", "COUNT"), default=("3", "40", "40"),
-        help="log-spaced frequencies, Hz (default 3 40 40)")  # fmt: skip
-    add("--cycles", nargs=2, type=float, metavar=("LOW", "HIGH"), default=(3.0, 8.0),
-        help="cycles at the lowest and the highest frequency (default 3 8)")  # fmt: skip
-    add("--by", metavar="KEY", default="",
-        help="sort key: " + ", ".join("column:NAME" if k == "column" else k for k in KINDS))  # fmt: skip
-    add("--part", metavar="PART", nargs="+",
-        help="part of the sort key: " + ", ".join(PARTS) + ", or: rows FROM TO (fractions)")  # fmt: skip
-    add("--key-band", nargs=2, type=float, metavar=("LOW", "HIGH"), default=(8.0, 13.0),
-        help="band of the sort key, Hz (default 8 13)")  # fmt: skip
-    add("--key-window", **{**pair, "default": (-0.5, 0.0)},  # type: ignore[arg-type]
-        help="window of the sort key, seconds (default -0.5 0)")  # fmt: skip
-    add("--spot", nargs=4, type=float, metavar=("LOW", "HIGH", "START", "END"),
+    add(
+        "--baseline",
+        **pair,  # type: ignore[arg-type]
+        help="baseline of the dB scale, seconds (default -0.5 -0.1)",
+    )
+    add(
+        "--voltage-baseline",
+        **pair,  # type: ignore[arg-type]
+        help="window whose mean voltage is taken off each trial, seconds (default -0.2 0)",
+    )
+    add(
+        "--freqs",
+        nargs=3,
+        metavar=("LOW", "HIGH", "COUNT"),
+        default=("3", "40", "40"),
+        help="log-spaced frequencies, Hz (default 3 40 40)",
+    )
+    add(
+        "--cycles",
+        nargs=2,
+        type=float,
+        metavar=("LOW", "HIGH"),
+        default=(3.0, 8.0),
+        help="cycles at the lowest and the highest frequency (default 3 8)",
+    )
+    add(
+        "--by",
+        metavar="KEY",
+        default="",
+        help="sort key: " + ", ".join("column:NAME" if k == "column" else k for k in KINDS),
+    )
+    add(
+        "--part",
+        metavar="PART",
+        nargs="+",
+        help="part of the sort key: " + ", ".join(PARTS) + ", or: rows FROM TO (fractions)",
+    )
+    add(
+        "--key-band",
+        nargs=2,
+        type=float,
+        metavar=("LOW", "HIGH"),
+        default=(8.0, 13.0),
+        help="band of the sort key, Hz (default 8 13)",
+    )
+    add(
+        "--key-window",
+        **{**pair, "default": (-0.5, 0.0)},  # type: ignore[arg-type]
+        help="window of the sort key, seconds (default -0.5 0)",
+    )
+    add(
+        "--spot",
+        nargs=4,
+        type=float,
+        metavar=("LOW", "HIGH", "START", "END"),
         default=(8.0, 13.0, 0.2, 0.4),
-        help="spot of the sort key, Hz and seconds (default 8 13 0.2 0.4)")  # fmt: skip
+        help="spot of the sort key, Hz and seconds (default 8 13 0.2 0.4)",
+    )
     add("--out", metavar="FILE", required=True, help="file to write: .npz or .csv")
 
 
@@ -186,10 +249,18 @@ def _synth_arguments(parser: argparse.ArgumentParser) -> None:
     from phasebrush.synth.scenario import SESSIONS
 
     parser.add_argument("folder", metavar="FOLDER", help="folder to write into")
-    parser.add_argument("--session", choices=tuple(SESSIONS), metavar="NAME",
-                        help="one of " + ", ".join(SESSIONS) + " (default: all)")  # fmt: skip
-    parser.add_argument("--seed", type=int, default=None,
-                        help="seed of the random numbers (default: the one it ships with)")  # fmt: skip
+    parser.add_argument(
+        "--session",
+        choices=tuple(SESSIONS),
+        metavar="NAME",
+        help="one of " + ", ".join(SESSIONS) + " (default: all)",
+    )
+    parser.add_argument(
+        "--seed",
+        type=int,
+        default=None,
+        help="seed of the random numbers (default: the one it ships with)",
+    )
 
 
 def _run_synth(arguments: argparse.Namespace) -> int:
@@ -206,20 +277,24 @@ def _run_synth(arguments: argparse.Namespace) -> int:
                 "choose a folder that can be written",
                 arguments.folder,
             ) from error
-        print(written)  # noqa: T201 - the command's own result
+        print(written)  # noqa: T201
     return 0
 
 
 def _warn(line: str) -> None:
-    print(f"phasebrush: note: {line}", file=sys.stderr)  # noqa: T201 - the command line's own voice
+    print(f"phasebrush: note: {line}", file=sys.stderr)  # noqa: T201
 
 
 COMMANDS = (
     _Command("open", "open the window", _open_arguments, _run_open),
-    _Command("measure", "write ITC, PPC, power and average of one channel to a file",
-             _measure_arguments, _run_measure),
+    _Command(
+        "measure",
+        "write ITC, PPC, power and average of one channel to a file",
+        _measure_arguments,
+        _run_measure,
+    ),
     _Command("synth", "make the invented sample sessions", _synth_arguments, _run_synth),
-)  # fmt: skip
+)
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -233,9 +308,11 @@ def _parser() -> argparse.ArgumentParser:
     commands = parser.add_subparsers(title="commands", metavar="COMMAND", parser_class=_Parser)
     for command in COMMANDS:
         made = commands.add_parser(
-            command.name, help=command.words, description=f"{command.words.capitalize()}.",
+            command.name,
+            help=command.words,
+            description=f"{command.words.capitalize()}.",
             epilog=CAUTION,
-        )  # fmt: skip
+        )
         command.arguments(made)
         made.set_defaults(run=command.run)
     return parser
@@ -250,7 +327,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
             parsed = _parser().parse_args(["open"])
         return int(parsed.run(parsed))
     except PersonError as error:
-        print(f"phasebrush: {error.line}", file=sys.stderr)  # noqa: T201 - the command line's own voice
+        print(f"phasebrush: {error.line}", file=sys.stderr)  # noqa: T201
         return USAGE
 
 

@@ -82,7 +82,7 @@ def test_arithmetic_needs_numpy_and_scipy_only(room: str) -> None:
     assert set(done.stdout.split()).isdisjoint({"mne", "mne_bids", "edfio", "pandas", "matplotlib"})
 
 
-@pytest.mark.parametrize("command", [(), ("measure",), ("synth",), ("draw",)])
+@pytest.mark.parametrize("command", [(), ("measure",), ("synth",), ("open",)])
 def test_the_command_line_helps_without_windows(command: tuple[str, ...]) -> None:
     code = (
         "import sys\nfrom phasebrush.cli import main\n"

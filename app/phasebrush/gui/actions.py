@@ -2,15 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QAction, QKeySequence
 from PySide6.QtWidgets import QMainWindow, QSizePolicy, QToolBar, QToolButton, QWidget
 
 from phasebrush.gui import theme
-from phasebrush.look.tokens import Look
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from phasebrush.look.tokens import Look
 
 
 @dataclass(frozen=True)

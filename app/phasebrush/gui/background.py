@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, Qt, QThreadPool, Signal, Slot
 
-from phasebrush.model.jobs import Outcome
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from phasebrush.model.jobs import Outcome
 
 THREADS = 2
 LONGEST_WAIT_MS = 5000

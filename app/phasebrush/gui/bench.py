@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
 from PySide6.QtWidgets import QHBoxLayout, QSplitter, QVBoxLayout, QWidget
@@ -17,7 +19,9 @@ from phasebrush.gui.views.stack_view import StackView
 from phasebrush.gui.words import Legend
 from phasebrush.look import colour_maps
 from phasebrush.look.tokens import LIGHT, Look
-from phasebrush.model.results import Snapshot
+
+if TYPE_CHECKING:
+    from phasebrush.model.results import Snapshot
 
 SIDE_WIDTH = 148
 

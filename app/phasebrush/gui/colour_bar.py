@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
-from numpy.typing import NDArray
 from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
@@ -11,6 +12,9 @@ from PySide6.QtWidgets import QWidget
 from phasebrush.gui import theme
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.tokens import LIGHT, Look
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
 
 WIDTH = 64
 BAR_LEFT, BAR_WIDTH = 8, 10

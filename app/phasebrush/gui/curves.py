@@ -3,19 +3,22 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
+from pyqtgraph.Qt.internals import PrimitiveArray
 from PySide6.QtCore import QLineF, QRectF, Qt
 from PySide6.QtGui import QPainter
-from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
-from pyqtgraph.Qt.internals import PrimitiveArray
 
 from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.colour_maps import mixed
 from phasebrush.look.tokens import LIGHT, Look, rgb
+
+if TYPE_CHECKING:
+    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 Floats = NDArray[np.float64]
 LAYER = {"all": 5, "B": 6, "A": 7}
@@ -129,9 +132,7 @@ class Bands(PixelImage):
         table[IN_A | IN_B] = (*rgb(both), round(1.6 * OPACITY))
         self._colours = packed(table)
 
-    def set_bands(
-        self, edges: dict[int, tuple[Floats, Floats]], x: Floats, area: PlotArea
-    ) -> None:
+    def set_bands(self, edges: dict[int, tuple[Floats, Floats]], x: Floats, area: PlotArea) -> None:
         """Draw bands between lower and upper edges.
 
         Parameters

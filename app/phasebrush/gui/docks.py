@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QHBoxLayout, QMainWindow, QMenu, QToolButton, QWidget
 
 from phasebrush.gui.panel import PanelDock
-from phasebrush.gui.view import View
 from phasebrush.gui.views.channel_list import ChannelList
 from phasebrush.gui.views.head_map import HeadMap
 from phasebrush.gui.views.map_view import ItcMap, PowerMap
@@ -18,8 +18,11 @@ from phasebrush.gui.views.readout import ReadoutView
 from phasebrush.gui.views.recordings_list import RecordingsList
 from phasebrush.gui.views.subset_cards import SubsetCards
 from phasebrush.gui.views.trace_view import ItcTrace, PowerTrace
-from phasebrush.model.results import Snapshot
-from phasebrush.model.state import MapsShow
+
+if TYPE_CHECKING:
+    from phasebrush.gui.view import View
+    from phasebrush.model.results import Snapshot
+    from phasebrush.model.state import MapsShow
 
 LEFT = Qt.DockWidgetArea.LeftDockWidgetArea
 RIGHT = Qt.DockWidgetArea.RightDockWidgetArea
@@ -82,9 +85,7 @@ class Docks:
         self.power = self._dock("power", "Power", RIGHT, views.power_map, views.power_trace)
         self.dial = self._dock("dial", "Phase at the spot", RIGHT, views.dial)
         self.readout = self._dock("readout", "At the spot", RIGHT, views.readout)
-        self.map_buttons = {
-            which: self._map_button(words, tip) for which, words, tip in MAPS_SHOW
-        }
+        self.map_buttons = {which: self._map_button(words, tip) for which, words, tip in MAPS_SHOW}
 
     @property
     def docks(self) -> tuple[PanelDock, ...]:
@@ -94,9 +95,7 @@ class Docks:
             self.dial, self.readout,
         )  # fmt: skip
 
-    def _dock(
-        self, name: str, title: str, area: Qt.DockWidgetArea, *parts: QWidget
-    ) -> PanelDock:
+    def _dock(self, name: str, title: str, area: Qt.DockWidgetArea, *parts: QWidget) -> PanelDock:
         dock = PanelDock(name, title, self._window)
         for number, part in enumerate(parts):
             dock.body.box.addWidget(part, 3 - number)
@@ -147,7 +146,9 @@ class Docks:
     def show_titles(self, snapshot: Snapshot) -> None:
         """Say what is drawn in each panel."""
         state, maps, dial = snapshot.state, snapshot.maps, snapshot.dial
-        self.channel.title_line.set_title(f"Channel · {state.channel}" if state.channel else "Channel")
+        self.channel.title_line.set_title(
+            f"Channel · {state.channel}" if state.channel else "Channel"
+        )
         if maps is not None:
             words = SET_WORDS[maps.shown]
             n = f", n {maps.of[maps.shown].n}" if maps.shown in maps.of else ""  # type: ignore[index]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt, QTimer
 from PySide6.QtWidgets import (
@@ -16,8 +16,12 @@ from PySide6.QtWidgets import (
 )
 
 from phasebrush.gui.words import ElidedLabel
-from phasebrush.model.jobs import Progress
-from phasebrush.model.results import Snapshot
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from phasebrush.model.jobs import Progress
+    from phasebrush.model.results import Snapshot
 
 POLL_MS = 100
 

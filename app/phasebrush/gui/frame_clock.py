@@ -3,9 +3,12 @@
 from __future__ import annotations
 
 import time
-from collections.abc import Callable
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, Qt, QTimer
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
 
 FRAME_S = 0.012
 

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
-from numpy.typing import NDArray
 
 from phasebrush.look.tokens import Look, rgb
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
 
 SPACING = 7
 

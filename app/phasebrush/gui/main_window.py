@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from functools import partial
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
-from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QApplication,
     QDialog,
@@ -18,7 +18,6 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from phasebrush.core.trials import Cut
 from phasebrush.errors import PersonError
 from phasebrush.gui import theme
 from phasebrush.gui.actions import Actions
@@ -34,12 +33,19 @@ from phasebrush.gui.view_board import ViewBoard
 from phasebrush.gui.welcome import SAMPLES, Welcome
 from phasebrush.look.tokens import DARK, LIGHT, Look
 from phasebrush.model import intents
-from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result
 from phasebrush.model.state import MapsShow, Shelved
-from phasebrush.model.workbench import Workbench
-from phasebrush.recordings import Recording
 from phasebrush.sample_files import default_sample, sample_recordings
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
+
+    from phasebrush.core.trials import Cut
+    from phasebrush.model.results import Snapshot
+    from phasebrush.model.workbench import Workbench
+    from phasebrush.recordings import Recording
 
 FILES = "Recordings (*.fif *.fif.gz *.edf *.bdf *.vhdr *.npz);;All files (*)"
 NARROW = 1180
@@ -62,9 +68,7 @@ class MainWindow(QMainWindow):
         Where the arrangement is remembered; not at all where none is given.
     """
 
-    def __init__(
-        self, workbench: Workbench, look: Look, settings: QSettings | None = None
-    ) -> None:
+    def __init__(self, workbench: Workbench, look: Look, settings: QSettings | None = None) -> None:
         super().__init__()
         self.setObjectName("phasebrush")
         self.setWindowTitle("Phasebrush")
@@ -106,9 +110,14 @@ class MainWindow(QMainWindow):
         self._show_page(open_now=False)
         self.clock.request()
 
-    def _slots(self) -> dict[str, object]:
-        show = {"show_all": "all", "show_a": "A", "show_b": "B", "show_difference": "A-B"}
-        slots: dict[str, object] = {
+    def _slots(self) -> dict[str, Callable[[], object]]:
+        show: dict[str, MapsShow] = {
+            "show_all": "all",
+            "show_a": "A",
+            "show_b": "B",
+            "show_difference": "A-B",
+        }
+        slots: dict[str, Callable[[], object]] = {
             name: partial(self._maps_show, which) for name, which in show.items()
         }
         return slots | {

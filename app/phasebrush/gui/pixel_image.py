@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 import pyqtgraph as pg
-from numpy.typing import NDArray
 from PySide6.QtCore import QRectF
 from PySide6.QtGui import QImage, QPainter
-from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 
 def packed(table: NDArray[np.uint8]) -> NDArray[np.uint32]:

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from functools import lru_cache
 from pathlib import Path
+from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QByteArray, QTemporaryDir, Qt
+from PySide6.QtCore import QByteArray, Qt, QTemporaryDir
 from PySide6.QtGui import (
     QColor,
     QFont,
@@ -17,11 +18,13 @@ from PySide6.QtGui import (
     QPixmap,
 )
 from PySide6.QtSvg import QSvgRenderer
-from PySide6.QtWidgets import QApplication
 
 from phasebrush.look.colour_maps import mixed
 from phasebrush.look.tokens import DARK, LIGHT, LOOKS, Look
 from phasebrush.sample_files import icons_folder
+
+if TYPE_CHECKING:
+    from PySide6.QtWidgets import QApplication
 
 GRID = 8
 ICON_INK = "#22262B"
@@ -137,8 +140,10 @@ def style_sheet(look: Look) -> str:
     QListView, QTreeView, QTableView, QScrollArea {{ background: {look.panel}; border: none;
         outline: none; }}
     QListView::item, QTreeView::item {{ padding: 2px 6px; border-radius: 3px; color: {look.text}; }}
-    QListView::item:hover, QTreeView::item:hover {{ background: {hover}; }}
-    QListView::item:selected, QTreeView::item:selected {{ background: {pressed}; color: {look.text}; }}
+    QListView::item:hover,
+    QTreeView::item:hover {{ background: {hover}; }}
+    QListView::item:selected,
+    QTreeView::item:selected {{ background: {pressed}; color: {look.text}; }}
     QMenu {{ background: {look.panel}; border: 1px solid {look.hairline}; color: {look.text};
         padding: 4px; }}
     QMenu::item {{ padding: 4px 20px 4px 20px; border-radius: 3px; }}

@@ -3,17 +3,20 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QMouseEvent, QPen, QWheelEvent
-from PySide6.QtWidgets import QWidget
 
 from phasebrush.gui import theme
 from phasebrush.look.tokens import LIGHT, Look
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from PySide6.QtWidgets import QWidget
 
 AXIS_HEIGHT = 34
 LEFT_WIDTH = 52

@@ -2,17 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
-from typing import ClassVar
+from typing import TYPE_CHECKING, ClassVar
 
-from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import QWidget
 
 from phasebrush.look.tokens import LIGHT, Look
-from phasebrush.model.intents import Intent
-from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from PySide6.QtGui import QShowEvent
+
+    from phasebrush.model.intents import Intent
+    from phasebrush.model.results import Snapshot
 
 
 def _no_intent(_intent: Intent) -> None:

@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from typing import TYPE_CHECKING
 
-from phasebrush.gui.view import View
 from phasebrush.model.results import Snapshot
-from phasebrush.model.stale import Result
-from phasebrush.model.workbench import Frame
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable
+
+    from phasebrush.gui.view import View
+    from phasebrush.model.stale import Result
+    from phasebrush.model.workbench import Frame
 
 
 class ViewBoard:

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from functools import partial
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
 
 from phasebrush.gui import theme
 from phasebrush.gui.dialogs.words import CAUTION
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+    from pathlib import Path
 
 SAMPLES = {
     "keeper-01": "a fixed response, and alpha whose phase partly aligns to the flash",
@@ -36,7 +39,7 @@ class Welcome(QWidget):
         head.setFont(theme.font(16))
         head.setAlignment(Qt.AlignmentFlag.AlignHCenter)
         what = QLabel("FIF, EDF, BDF, BrainVision, NumPy npz, or a BIDS folder")
-        what.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+        what.setProperty("muted", True)
         what.setAlignment(Qt.AlignmentFlag.AlignHCenter)
         open_button = QPushButton("Open…")
         open_button.setToolTip("Choose a recording (Ctrl+O)")
@@ -58,14 +61,14 @@ class Welcome(QWidget):
             line.addStretch(1)
             line.addWidget(button)
             label = QLabel(words)
-            label.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+            label.setProperty("muted", True)
             label.setMinimumWidth(420)
             line.addWidget(label)
             line.addStretch(1)
             layout.addLayout(line)
         layout.addStretch(3)
         caution = QLabel(CAUTION)
-        caution.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+        caution.setProperty("muted", True)
         caution.setWordWrap(True)
         caution.setAlignment(Qt.AlignmentFlag.AlignHCenter)
         layout.addWidget(caution)

@@ -40,14 +40,14 @@ def lab_from_rgb(colours: NDArray[np.float64]) -> NDArray[np.float64]:
 
 
 def rgb_from_lab(lab: NDArray[np.float64]) -> NDArray[np.float64]:
-    """sRGB of CIELAB colours, shape (..., 3); may leave 0 to 1 outside the gamut."""
+    """Colours in sRGB of CIELAB colours, shape (..., 3); may leave 0 to 1 outside the gamut."""
     lab = np.asarray(lab, dtype=np.float64)
     fy = (lab[..., 0] + 16) / 116
     f = np.stack([fy + lab[..., 1] / 500, fy, fy - lab[..., 2] / 200], axis=-1)
     xyz = np.where(f > 6 / 29, f**3, 3 * (6 / 29) ** 2 * (f - 4 / 29)) * WHITE_D65
     linear = xyz @ np.linalg.inv(XYZ_FROM_RGB).T
     bent = 1.055 * np.maximum(linear, 0.0031308) ** (1 / 2.4) - 0.055
-    return np.where(linear <= 0.0031308, 12.92 * linear, bent)
+    return np.asarray(np.where(linear <= 0.0031308, 12.92 * linear, bent))
 
 
 def _polar(lightness: float, chroma: float, hue_degrees: float) -> NDArray[np.float64]:

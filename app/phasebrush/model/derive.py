@@ -154,17 +154,25 @@ def shown_set(state: State, of: Mapping[SetName, SetMaps]) -> str:
     return state.maps_show if state.maps_show in of else "all"
 
 
-def map_limits(of: Mapping[SetName, SetMaps], valid: NDArray[np.bool_]) -> tuple[float, float]:
-    """Common colour scales of the maps: the largest ITC, and a robust largest dB."""
+def map_limits(
+    shown: str, of: Mapping[SetName, SetMaps], valid: NDArray[np.bool_]
+) -> tuple[float, float]:
+    """Colour scales of the maps: the largest ITC, and a robust largest dB.
+
+    One scale for all sets, so that they can be compared; a difference has its own.
+    """
     if not valid.any():
         return 1.0, 3.0
-    itc = max(float(maps.itc[valid].max()) for maps in of.values())
-    db = [maps.power_db[valid] for maps in of.values()]
-    finite = [values[np.isfinite(values)] for values in db]
-    largest = max(
-        (float(np.percentile(np.abs(values), 99)) for values in finite if values.size), default=3.0
-    )
-    return min(1.0, np.ceil(itc * 10) / 10), max(1.0, float(np.ceil(largest)))
+    if shown == "A-B":
+        itc = float(np.abs(of["A"].itc - of["B"].itc)[valid].max())
+        db = [(of["A"].power_db - of["B"].power_db)[valid]]
+    else:
+        itc = max(float(maps.itc[valid].max()) for maps in of.values())
+        db = [maps.power_db[valid] for maps in of.values()]
+    finite = [np.abs(values[np.isfinite(values)]) for values in db]
+    largest = max((float(np.percentile(x, 99)) for x in finite if x.size), default=3.0)
+    itc_limit = min(1.0, max(0.1, float(np.ceil(itc * 10)) / 10))
+    return itc_limit, max(1.0, float(np.ceil(largest)))
 
 
 def derive_maps(
@@ -212,10 +220,10 @@ def _band_rows(freqs_hz: Floats, spot: Spot) -> NDArray[np.bool_]:
     return inside
 
 
-def derive_traces(state: State, maps: Maps) -> Traces:
+def derive_traces(state: State, maps: Maps, limits: tuple[float, float]) -> Traces:
     """Mean of the maps over the spot's band, at each time."""
     band = _band_rows(maps.freqs_hz, state.spot)
-    valid = maps.valid[band].all(axis=0)
+    valid = np.logical_and.reduce(maps.valid[band], axis=0)
     of = {
         name: Trace(
             n=item.n,
@@ -231,7 +239,8 @@ def derive_traces(state: State, maps: Maps) -> Traces:
         valid=valid,
         band_hz=(float(freqs[0]), float(freqs[-1])),
         of=of,
-        db_limit=(-maps.db_limit, maps.db_limit),
+        itc_limit=limits[0],
+        db_limit=limits[1],
     )
 
 
@@ -261,7 +270,7 @@ def derive_dial(state: State, work: ChannelWork) -> Dial:
         freq_hz=float(coefficients.freqs_hz[row]),
         time_s=float(coefficients.times_s[column]),
         valid=bool(coefficients.valid[row, column]),
-        of=of,  # type: ignore[arg-type]
+        of=of,
         phase_of_trial=angles,
     )
 

@@ -43,7 +43,7 @@ class Deriver:
         self._baseline_s: tuple[float, float] | None = None
         self._averages: dict[SetName, Average] = {}
         self._maps: dict[SetName, SetMaps] = {}
-        self._map_limits = (1.0, 3.0)
+        self._map_limits = self._trace_limits = (1.0, 3.0)
         self._average_limit = (-1.0, 1.0)
         self._steps: dict[Result, Callable[[State], bool]] = {
             Result.TRIALS: self._trials,
@@ -199,7 +199,10 @@ class Deriver:
                     work.sums[name], work.coefficients, state.baseline_s
                 )
         if not self._keep_scales:
-            self._map_limits = derive.map_limits(self._maps, work.coefficients.valid)
+            shown = derive.shown_set(state, self._maps)
+            valid = work.coefficients.valid
+            self._map_limits = derive.map_limits(shown, self._maps, valid)
+            self._trace_limits = derive.map_limits("all", self._maps, valid)
         maps = derive.derive_maps(state, work.coefficients, self._maps, self._map_limits)
         self.snapshot = replace(self.snapshot, maps=maps)
         return True
@@ -208,7 +211,9 @@ class Deriver:
         maps = self.snapshot.maps
         if self._work is None or maps is None:
             return False
-        self.snapshot = replace(self.snapshot, traces=derive.derive_traces(state, maps))
+        self.snapshot = replace(
+            self.snapshot, traces=derive.derive_traces(state, maps, self._trace_limits)
+        )
         return True
 
     def _dial(self, state: State) -> bool:

@@ -12,18 +12,18 @@ from phasebrush import recordings
 from phasebrush.core import phase
 from phasebrush.core.parts import part_mask
 from phasebrush.core.sort_keys import SortKey
-from phasebrush.core.spot import Spot
-from phasebrush.core.transform_settings import TransformSettings
 from phasebrush.errors import InputError
 from phasebrush.model import intents
 from phasebrush.model.intents import Intent
-from phasebrush.model.state import Subset
+from phasebrush.model.state import DEFAULT_SPOT, DEFAULT_TRANSFORM, Subset
 from phasebrush.model.workbench import Workbench
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from phasebrush.core.parts import Part
+    from phasebrush.core.spot import Spot
+    from phasebrush.core.transform_settings import TransformSettings
     from phasebrush.core.trials import Cut
     from phasebrush.model.results import SetName, Snapshot
     from phasebrush.model.state import State
@@ -63,10 +63,10 @@ class Question:
     window_s: tuple[float, float] | None = None
     baseline_s: tuple[float, float] | None = None
     voltage_baseline_s: tuple[float, float] | None = None
-    settings: TransformSettings = TransformSettings()
+    settings: TransformSettings = DEFAULT_TRANSFORM
     key: SortKey | None = None
     part: Part | None = None
-    spot: Spot = Spot()
+    spot: Spot = DEFAULT_SPOT
 
 
 def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:

@@ -54,9 +54,7 @@ def open_recording(path: str, progress: Progress) -> Recording:
 
 def cut(recording: Recording, how: Cut, progress: Progress) -> Trials:
     """Cut trials; reports progress and looks up to be stopped."""
-    return recordings.cut_trials(
-        recording, how, progress=progress.report, stopped=progress.stopped
-    )
+    return recordings.cut_trials(recording, how, progress=progress.report, stopped=progress.stopped)
 
 
 def cut_for(recording: Recording, earlier: Cut | None, margin_s: float) -> Cut:

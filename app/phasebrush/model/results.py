@@ -192,13 +192,14 @@ class Trace:
 
 @dataclass(frozen=True, eq=False)
 class Traces:
-    """Band traces of all trials and the subsets."""
+    """Band traces of all trials and the subsets, with scales that are common to all."""
 
     times_s: Floats
     valid: NDArray[np.bool_]
     band_hz: tuple[float, float]
     of: Mapping[SetName, Trace]
-    db_limit: tuple[float, float]
+    itc_limit: float
+    db_limit: float
 
 
 @dataclass(frozen=True, eq=False)

@@ -95,9 +95,7 @@ FROM_RESULT: dict[Result, tuple[tuple[Result, Condition], ...]] = {
 
 def stale_after(old: State, new: State) -> frozenset[Result]:
     """Results that a change of the record makes stale, with all that follows from them."""
-    first = {
-        result for name in changed_fields(old, new) for result in FROM_FIELD[name]
-    }
+    first = {result for name in changed_fields(old, new) for result in FROM_FIELD[name]}
     return with_followers(first, new)
 
 

@@ -20,6 +20,7 @@ if TYPE_CHECKING:
 
 Letter = Literal["A", "B"]
 MapsShow = Literal["all", "A", "B", "A-B"]
+DEFAULT_TRANSFORM, DEFAULT_KEY, DEFAULT_SPOT = TransformSettings(), SortKey(), Spot()
 LETTERS: tuple[Letter, ...] = ("A", "B")
 
 
@@ -135,14 +136,14 @@ class State:
     recording: str = ""
     cut: Cut | None = None
     channel: str = ""
-    transform: TransformSettings = TransformSettings()
+    transform: TransformSettings = DEFAULT_TRANSFORM
     baseline_s: tuple[float, float] = (-0.5, -0.1)
-    key: SortKey = SortKey()
+    key: SortKey = DEFAULT_KEY
     descending: bool = False
     smoothing: int = 3
     a: Subset = NOBODY
     b: Subset = NOBODY
-    spot: Spot = Spot()
+    spot: Spot = DEFAULT_SPOT
     maps_show: MapsShow = "A"
     cursor_s: float = 0.3
     shown_s: tuple[float, float] | None = None

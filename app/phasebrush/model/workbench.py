@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass, replace
 from functools import partial
 from typing import TYPE_CHECKING
@@ -17,6 +16,8 @@ from phasebrush.model.state import State, changed_fields
 from phasebrush.model.trials_shelf import TrialsShelf
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from phasebrush.core.trials import Cut, Trials
     from phasebrush.model.intents import Intent
     from phasebrush.model.results import Snapshot
@@ -70,7 +71,7 @@ class Workbench:
 
     def __init__(self, runner: Runner | None = None) -> None:
         self.listeners = Listeners()
-        self.jobs = JobBoard(runner or InlineRunner(), lambda: self.listeners.jobs())
+        self.jobs = JobBoard(runner or InlineRunner(), self._jobs_changed)
         self._state = State()
         self._history = History()
         self._shelf = TrialsShelf()
@@ -80,6 +81,9 @@ class Workbench:
         self._gesture = 0
         self._origin = self._state
         self._gesture_kept = False
+
+    def _jobs_changed(self) -> None:
+        self.listeners.jobs()
 
     # -- the record ---------------------------------------------------------------------------
 
@@ -104,7 +108,7 @@ class Workbench:
             self._do_fleeting(intent)
             return
         if intent.gesture != self._gesture:
-            self.end_gesture()
+            self._close_gesture()
             self._gesture, self._origin = intent.gesture, self._state
         origin = self._origin if intent.gesture else self._state
         wished = intent.change(origin, self.snapshot)
@@ -124,7 +128,15 @@ class Workbench:
             self._swap(wished, intent.source)
 
     def end_gesture(self) -> None:
-        """The drag ended: colour scales may follow now."""
+        """The drag ended: colour scales may follow now.
+
+        The view that was dragged takes A and B afresh from the record: something else may
+        have changed them in mid-drag.
+        """
+        self._close_gesture()
+        self._mark({Result.SUBSETS}, "")
+
+    def _close_gesture(self) -> None:
         if self._gesture == 0:
             return
         if self._gesture_kept and self._state == self._origin:
@@ -136,18 +148,18 @@ class Workbench:
         """The drag was called off: back to where it began."""
         if self._gesture != 0:
             self._swap(self._origin, "")
-            self.end_gesture()
+        self.end_gesture()
 
     def undo(self) -> None:
         """Go back one step."""
-        self.end_gesture()
+        self._close_gesture()
         state = self._history.undo(self._state)
         if state is not None:
             self._swap(state, "")
 
     def redo(self) -> None:
         """Go forward one undone step."""
-        self.end_gesture()
+        self._close_gesture()
         state = self._history.redo(self._state)
         if state is not None:
             self._swap(state, "")
@@ -244,9 +256,7 @@ class Workbench:
 
     def _read(self, work: Callable[[Progress], opening.Opened], *, ask: bool) -> None:
         self.jobs.drop("cut")
-        self.jobs.start(
-            Job("read", "opening", work, partial(self._opened, ask=ask), self._failed)
-        )
+        self.jobs.start(Job("read", "opening", work, partial(self._opened, ask=ask), self._failed))
 
     def _opened(self, opened: opening.Opened, *, ask: bool) -> None:
         if len(opened.lines) > 1:

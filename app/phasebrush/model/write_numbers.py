@@ -5,7 +5,6 @@ from __future__ import annotations
 import csv
 import os
 import tempfile
-from collections.abc import Callable
 from pathlib import Path
 from typing import IO, TYPE_CHECKING, Any
 
@@ -14,6 +13,8 @@ import numpy as np
 from phasebrush.errors import InputError
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from numpy.typing import NDArray
 
 MAPS = ("itc", "ppc", "power_uv2", "power_db")
@@ -67,7 +68,7 @@ def _swap_in(target: Path, write: Callable[[IO[bytes]], None]) -> None:
 
 
 def _write_npz(stream: IO[bytes], numbers: dict[str, NDArray[Any]]) -> None:
-    np.savez_compressed(stream, allow_pickle=False, **numbers)  # type: ignore[arg-type]
+    np.savez_compressed(stream, allow_pickle=False, **numbers)
 
 
 def _write_csv(stream: IO[bytes], numbers: dict[str, NDArray[Any]]) -> None:

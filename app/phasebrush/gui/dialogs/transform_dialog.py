@@ -6,7 +6,6 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import (
     QDialog,
     QDialogButtonBox,
-    QDoubleSpinBox,
     QGridLayout,
     QLabel,
     QSpinBox,
@@ -53,7 +52,7 @@ class TransformDialog(QDialog):
         self._base_start = number_box(-100, 100, 0.1, 2, "s", "start of the power baseline, s")
         self._base_end = number_box(-100, 100, 0.1, 2, "s", "end of the power baseline, s")
         self._fault = QLabel()
-        self._fault.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
+        self._fault.setProperty("caution", True)
         self._fault.setWordWrap(True)
         self._cells = [[QLabel() for _head in HEADS] for _row in range(3)]
         self._buttons = QDialogButtonBox(
@@ -89,7 +88,7 @@ class TransformDialog(QDialog):
         table.setVerticalSpacing(4)
         for column, head in enumerate(HEADS):
             label = QLabel(head)
-            label.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+            label.setProperty("muted", True)
             table.addWidget(label, 0, column)
         for row, cells in enumerate(self._cells):
             for column, cell in enumerate(cells):
@@ -100,7 +99,7 @@ class TransformDialog(QDialog):
             "maximum of the wavelet's amplitude (Cohen 2019)."
         )
         note.setWordWrap(True)
-        note.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+        note.setProperty("muted", True)
         layout = QVBoxLayout(self)
         layout.setSpacing(12)
         layout.addLayout(grid)

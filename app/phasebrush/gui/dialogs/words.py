@@ -56,7 +56,7 @@ def keys_dialog(parent: QWidget | None) -> QDialog:
     for row, (keys, meaning) in enumerate(KEYS):
         grid.addWidget(QLabel(keys), row, 0)
         words = QLabel(meaning)
-        words.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+        words.setProperty("muted", True)
         grid.addWidget(words, row, 1)
     layout.addLayout(grid)
     layout.addWidget(_close_button(dialog))
@@ -76,7 +76,7 @@ def about_dialog(parent: QWidget | None) -> QDialog:
     what.setMinimumWidth(380)
     caution = QLabel(CAUTION)
     caution.setWordWrap(True)
-    caution.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
+    caution.setProperty("caution", True)
     layout.addWidget(what)
     layout.addWidget(caution)
     layout.addWidget(_close_button(dialog))

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, ClassVar
 
-from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
 from phasebrush.gui.curves import IN_A, IN_B, Bands, Line, PlotArea
@@ -15,6 +14,8 @@ from phasebrush.model.results import SET_NAMES
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
+    from PySide6.QtGui import QResizeEvent
+
     from phasebrush.look.tokens import Look
     from phasebrush.model.results import Averages, Snapshot
 

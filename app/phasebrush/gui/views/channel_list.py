@@ -4,7 +4,13 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, ClassVar
 
-from PySide6.QtCore import QItemSelectionModel, QModelIndex, QSortFilterProxyModel, QStringListModel, Qt
+from PySide6.QtCore import (
+    QItemSelectionModel,
+    QModelIndex,
+    QSortFilterProxyModel,
+    QStringListModel,
+    Qt,
+)
 from PySide6.QtWidgets import QLineEdit, QListView, QVBoxLayout, QWidget
 
 from phasebrush.gui.view import View

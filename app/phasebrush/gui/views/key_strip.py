@@ -130,7 +130,7 @@ class KeyStrip(RowView):
     def _tick_angles(self) -> None:
         axis = self.plot.getPlotItem().getAxis("bottom")
         angle = self._key is not None and self._key.is_angle
-        axis.setTicks([[(-np.pi, "−π"), (0.0, "0"), (np.pi, "π")]] if angle else None)
+        axis.setTicks([[(-np.pi / 2, "−π/2"), (0.0, "0"), (np.pi / 2, "π/2")]] if angle else None)
 
     @staticmethod
     def _member(in_a: NDArray[np.bool_], in_b: NDArray[np.bool_]) -> NDArray[np.uint8]:

@@ -6,7 +6,6 @@ from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
 from PySide6.QtCore import QRectF, Qt
-from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QGraphicsRectItem, QHBoxLayout, QWidget
 
 from phasebrush.core.spot import Spot
@@ -21,6 +20,7 @@ from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
+    from PySide6.QtGui import QKeyEvent, QResizeEvent
 
     from phasebrush.look.tokens import Look
     from phasebrush.model.results import Maps, Snapshot
@@ -286,9 +286,7 @@ class ItcMap(MapView):
 
     def table(self, maps: Maps) -> NDArray[np.uint8]:
         """Ink, or signed for a difference."""
-        return (
-            colour_maps.signed(self.look) if maps.shown == "A-B" else colour_maps.ink(self.look)
-        )
+        return colour_maps.signed(self.look) if maps.shown == "A-B" else colour_maps.ink(self.look)
 
     def chance(self, maps: Maps) -> float:
         """ITC that chance exceeds with probability 0.05 at the n shown."""

@@ -87,7 +87,7 @@ class OrderPanel(View):
         )
         self._smooth.setAccessibleName("smoothing, in trials")
         self._fault = QLabel(self)
-        self._fault.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
+        self._fault.setProperty("caution", True)
         self._fault.setWordWrap(True)
         self._fault.hide()
         self._labels: dict[str, QLabel] = {}
@@ -114,7 +114,7 @@ class OrderPanel(View):
         )
         for number, (name, field) in enumerate(rows):
             label = QLabel(name)
-            label.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+            label.setProperty("muted", True)
             self._labels[name] = label
             grid.addWidget(label, number, 0)
             grid.addWidget(field, number, 1)

@@ -8,17 +8,18 @@ from typing import TYPE_CHECKING, ClassVar
 import numpy as np
 from PySide6.QtCore import QLineF, QPointF, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QWidget
 
 from phasebrush.gui import theme
 from phasebrush.gui.time_plot import pen
 from phasebrush.gui.view import View
 from phasebrush.model.intents import How, pick_sector
 from phasebrush.model.stale import Result
-from phasebrush.model.state import Letter
 
 if TYPE_CHECKING:
+    from PySide6.QtWidgets import QWidget
+
     from phasebrush.model.results import Dial, Phasors, SetName, Snapshot
+    from phasebrush.model.state import Letter
 
 BINS = 720
 DOT = 4.0
@@ -155,9 +156,7 @@ class PhaseDial(View):
 
     @staticmethod
     def _at(centre: QPointF, radius: float, angle: float) -> QPointF:
-        return QPointF(
-            centre.x() + radius * math.cos(angle), centre.y() - radius * math.sin(angle)
-        )
+        return QPointF(centre.x() + radius * math.cos(angle), centre.y() - radius * math.sin(angle))
 
     def _angle(self, place: QPointF) -> float:
         centre, _radius = self._circle()

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtCore import QItemSelectionModel, QModelIndex, Qt
@@ -13,6 +12,8 @@ from phasebrush.gui.view import View
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from phasebrush.model.results import Snapshot
     from phasebrush.model.state import Shelved
 

@@ -5,19 +5,19 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
 from phasebrush.gui.brush import BrushGesture, Picked
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
 from phasebrush.gui.view import View
-from phasebrush.model.intents import Intent
-from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
-    from phasebrush.model.results import Rows
+    from PySide6.QtGui import QKeyEvent, QResizeEvent
+
+    from phasebrush.model.intents import Intent
+    from phasebrush.model.results import Rows, Snapshot
     from phasebrush.model.state import State
 
 

@@ -38,7 +38,7 @@ class _Card(QWidget):
         self.head.setFont(theme.font(9.0, bold=True))
         self.count = ElidedLabel(parent=self)
         self.words = ElidedLabel(parent=self, lines=2)
-        self.words.setProperty("muted", True)  # noqa: FBT003 - Qt's own signature
+        self.words.setProperty("muted", True)
         self.clear = QPushButton("clear", self)
         self.clear.setObjectName("quiet")
         self.clear.setToolTip(f"Empty subset {letter}")
@@ -69,7 +69,7 @@ class SubsetCards(View):
         self._swap.setObjectName("quiet")
         self._swap.setToolTip("A becomes B and B becomes A (X)")
         self._caution = ElidedLabel(parent=self, lines=2)
-        self._caution.setProperty("caution", True)  # noqa: FBT003 - Qt's own signature
+        self._caution.setProperty("caution", True)
         grid = QGridLayout(self)
         grid.setContentsMargins(0, 0, 0, 4)
         grid.setVerticalSpacing(4)

@@ -106,9 +106,7 @@ class ItcTrace(TraceView):
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__("itc_trace", "ITC", parent)
-        self._chances = {
-            name: pg.InfiniteLine(0.0, angle=0, movable=False) for name in SET_NAMES
-        }
+        self._chances = {name: pg.InfiniteLine(0.0, angle=0, movable=False) for name in SET_NAMES}
         self.plot.add(*self._chances.values())
         self._label = pg.TextItem("", anchor=(0, 1))
         self._label.setFont(theme.font(7.5))
@@ -124,17 +122,17 @@ class ItcTrace(TraceView):
         return trace.itc
 
     def set_scale(self, snapshot: Snapshot) -> None:
-        """From 0 to the map's limit; move the chance levels."""
-        maps, traces = snapshot.maps, snapshot.traces
-        if maps is not None:
-            self.plot.set_value_range(0.0, maps.itc_limit * 1.04)
+        """From 0 to the largest ITC; move the chance levels."""
+        traces = snapshot.traces
+        if traces is not None:
+            self.plot.set_value_range(0.0, traces.itc_limit * 1.04)
         of = traces.of if traces is not None else {}
         for name, line in self._chances.items():
             trace = of.get(name)
             line.setVisible(trace is not None and 0 < trace.chance_itc < 1)
             if trace is not None:
                 line.setValue(trace.chance_itc)
-        drawn = next((of[name] for name in ("A", "B", "all") if name in of), None)  # type: ignore[index]
+        drawn = next((of[name] for name in ("A", "B", "all") if name in of), None)
         self._label.setVisible(drawn is not None)
         if drawn is not None and traces is not None:
             self._label.setText(f"chance 5 %, n {drawn.n}", color=QColor(self.look.muted))
@@ -167,10 +165,10 @@ class PowerTrace(TraceView):
         return trace.power_db
 
     def set_scale(self, snapshot: Snapshot) -> None:
-        """As wide as the map's scale."""
+        """Symmetric around 0, as wide as the maps of the sets."""
         if snapshot.traces is not None:
-            low, high = snapshot.traces.db_limit
-            self.plot.set_value_range(low * 1.04, high * 1.04)
+            limit = snapshot.traces.db_limit * 1.04
+            self.plot.set_value_range(-limit, limit)
 
     def words(self, value: float) -> str:
         """Power in words."""
