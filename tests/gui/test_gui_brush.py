@@ -1,0 +1,317 @@
+"""The brush on trial stack and key strip, with a real pointer."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+from PySide6.QtCore import QPointF, Qt
+from window_tools import (
+    ALT,
+    CTRL,
+    SHIFT,
+    click,
+    drag,
+    drag_rows,
+    key,
+    move,
+    press,
+    release,
+    row_at,
+    rows_drawn,
+    rows_meant,
+    seen,
+    settle,
+    trials_of,
+    trials_of_rows,
+)
+
+from phasebrush.model import intents
+
+
+@pytest.fixture(params=["trial_stack", "key_strip"])
+def view(request, window):
+    """The stack, then the strip: both take the same gestures."""
+    return {"trial_stack": window.bench.stack, "key_strip": window.bench.strip}[request.param]
+
+
+def agree(window) -> None:
+    """Both views draw the rows at which the record's trials lie."""
+    settle(window)
+    for view in (window.bench.stack, window.bench.strip):
+        for letter in ("A", "B"):
+            assert rows_drawn(view, letter) == rows_meant(window, letter), view.objectName()
+
+
+@pytest.mark.parametrize(("first", "last"), [(10, 24), (24, 10), (0, 59), (33, 33)])
+def test_a_drag_picks_exactly_its_rows(window, view, first, last):
+    drag_rows(view, first, last)
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, min(first, last), max(first, last))
+    assert trials_of(window, "B") == []
+    agree(window)
+
+
+def test_a_click_picks_one_row(window, view):
+    click(view.plot.viewport(), row_at(view, 7))
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, 7, 7)
+
+
+def test_a_drag_beyond_the_plot_ends_at_the_last_row(window, view):
+    top = view.plot.plot_area().top()
+    start = row_at(view, 50)
+    drag(view.plot.viewport(), start, QPointF(start.x(), top - 3))
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, 50, 59)
+
+
+def test_shift_picks_b_and_leaves_a(window, view):
+    drag_rows(view, 40, 50)
+    settle(window)
+    a = trials_of(window, "A")
+    drag_rows(view, 5, 12, held=SHIFT)
+    settle(window)
+    assert trials_of(window, "A") == a
+    assert trials_of(window, "B") == trials_of_rows(window, 5, 12)
+    agree(window)
+
+
+def test_ctrl_adds_and_alt_takes_away(window, view):
+    drag_rows(view, 10, 20)
+    settle(window)
+    drag_rows(view, 30, 35, held=CTRL)
+    settle(window)
+    both = sorted(trials_of_rows(window, 10, 20) + trials_of_rows(window, 30, 35))
+    assert trials_of(window, "A") == both
+    drag_rows(view, 15, 32, held=ALT)
+    settle(window)
+    left = sorted(trials_of_rows(window, 10, 14) + trials_of_rows(window, 33, 35))
+    assert trials_of(window, "A") == left
+    agree(window)
+
+
+def test_ctrl_and_shift_add_to_b(window, view):
+    drag_rows(view, 10, 12, held=SHIFT)
+    settle(window)
+    drag_rows(view, 20, 22, held=SHIFT | CTRL)
+    settle(window)
+    assert trials_of(window, "A") == []
+    both = sorted(trials_of_rows(window, 10, 12) + trials_of_rows(window, 20, 22))
+    assert trials_of(window, "B") == both
+
+
+def test_an_adding_drag_that_shrinks_gives_rows_back(window, view):
+    drag_rows(view, 0, 4)
+    settle(window)
+    drag(view.plot.viewport(), row_at(view, 20), row_at(view, 40), row_at(view, 22), held=CTRL)
+    settle(window)
+    expected = sorted(trials_of_rows(window, 0, 4) + trials_of_rows(window, 20, 22))
+    assert trials_of(window, "A") == expected
+    agree(window)
+
+
+def test_taking_everything_away_empties_the_subset(window, view):
+    drag_rows(view, 10, 20)
+    settle(window)
+    drag_rows(view, 0, 59, held=ALT)
+    settle(window)
+    assert window.workbench.state.a.n == 0
+    agree(window)
+
+
+def test_a_drag_inside_a_block_moves_it(window, view):
+    drag_rows(view, 10, 24)
+    settle(window)
+    drag_rows(view, 17, 31)
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, 24, 38)
+    agree(window)
+
+
+def test_a_moved_block_keeps_its_size_at_the_end(window, view):
+    drag_rows(view, 30, 49)
+    settle(window)
+    drag_rows(view, 40, 59)
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, 40, 59)
+    drag_rows(view, 50, 0)
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, 0, 19)
+
+
+@pytest.mark.parametrize(
+    ("grip", "to", "expected"), [(25, 35, (10, 35)), (10, 4, (4, 24)), (25, 5, (5, 10))]
+)
+def test_a_drag_at_an_edge_resizes_the_block(window, view, grip, to, expected):
+    drag_rows(view, 10, 24)
+    settle(window)
+    edge = row_at(view, grip - 0.5)  # the line between row grip - 1 and row grip
+    drag(view.plot.viewport(), edge, row_at(view, to))
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, *expected)
+    agree(window)
+
+
+def test_a_block_of_b_is_moved_without_shift(window, view):
+    drag_rows(view, 10, 24, held=SHIFT)
+    settle(window)
+    drag_rows(view, 15, 20)
+    settle(window)
+    assert trials_of(window, "A") == []
+    assert trials_of(window, "B") == trials_of_rows(window, 15, 29)
+
+
+def test_escape_during_a_drag_restores_what_was_there(window, view):
+    drag_rows(view, 10, 24)
+    settle(window)
+    before = window.workbench.state
+    steps = window.workbench.history.undo_name
+    canvas = view.plot.viewport()
+    press(canvas, row_at(view, 40))
+    move(canvas, row_at(view, 50))
+    settle(window)
+    assert window.workbench.state != before, "the drag did nothing, so there is nothing to test"
+    key(window, Qt.Key.Key_Escape)
+    settle(window)
+    assert window.workbench.state == before
+    agree(window)
+    move(canvas, row_at(view, 55))
+    release(canvas, row_at(view, 58))
+    settle(window)
+    assert window.workbench.state == before
+    assert window.workbench.history.undo_name == steps
+    agree(window)
+
+
+def test_escape_after_a_drag_empties_both_and_can_be_undone(window, view):
+    drag_rows(view, 40, 50)
+    settle(window)
+    drag_rows(view, 5, 12, held=SHIFT)
+    settle(window)
+    before = window.workbench.state
+    key(window, Qt.Key.Key_Escape)
+    settle(window)
+    assert (window.workbench.state.a.n, window.workbench.state.b.n) == (0, 0)
+    agree(window)
+    key(window, Qt.Key.Key_Z, CTRL)
+    settle(window)
+    assert window.workbench.state == before
+    agree(window)
+
+
+def test_a_drag_is_one_undo_entry(window, view):
+    start = window.workbench.state
+    drag_rows(view, 10, 24)
+    settle(window)
+    picked = window.workbench.state
+    key(window, Qt.Key.Key_Z, CTRL)
+    settle(window)
+    assert window.workbench.state == start
+    agree(window)
+    key(window, Qt.Key.Key_Z, CTRL | SHIFT)
+    settle(window)
+    assert window.workbench.state == picked
+    agree(window)
+
+
+def test_a_drag_back_to_its_beginning_leaves_no_undo_entry(window, view):
+    drag_rows(view, 10, 24)
+    settle(window)
+    name, state = window.workbench.history.undo_name, window.workbench.state
+    drag(view.plot.viewport(), row_at(view, 17), row_at(view, 30), row_at(view, 17))
+    settle(window)
+    assert window.workbench.state == state
+    key(window, Qt.Key.Key_Z, CTRL)
+    settle(window)
+    assert window.workbench.state.a.n == 0, f"{name} was not the last entry"
+
+
+def test_a_called_off_drag_leaves_redo_alone(window, view):
+    drag_rows(view, 10, 24)
+    settle(window)
+    picked = window.workbench.state
+    key(window, Qt.Key.Key_Z, CTRL)
+    settle(window)
+    canvas = view.plot.viewport()
+    press(canvas, row_at(view, 40))
+    move(canvas, row_at(view, 50))
+    key(window, Qt.Key.Key_Escape)
+    release(canvas, row_at(view, 50))
+    settle(window)
+    key(window, Qt.Key.Key_Z, CTRL | SHIFT)
+    settle(window)
+    assert window.workbench.state == picked
+
+
+def test_another_channel_during_a_drag_leaves_screen_and_record_together(window, view):
+    canvas = view.plot.viewport()
+    press(canvas, row_at(view, 10))
+    move(canvas, row_at(view, 24))
+    settle(window)
+    picked = trials_of(window, "A")
+    key(window, Qt.Key.Key_Period)
+    settle(window)
+    assert window.workbench.state.channel == "Pz"
+    release(canvas, row_at(view, 24))
+    settle(window)
+    assert trials_of(window, "A") in (picked, trials_of_rows(window, 10, 24))
+    agree(window)
+
+
+def test_undo_during_a_drag_leaves_screen_and_record_together(window, view):
+    canvas = view.plot.viewport()
+    press(canvas, row_at(view, 10))
+    move(canvas, row_at(view, 24))
+    settle(window)
+    key(window, Qt.Key.Key_Z, CTRL)
+    settle(window)
+    assert window.workbench.state.a.n == 0
+    release(canvas, row_at(view, 24))
+    agree(window)
+
+
+def test_a_resized_window_during_a_drag_counts_the_new_pixels(window, view):
+    canvas = view.plot.viewport()
+    press(canvas, row_at(view, 10))
+    move(canvas, row_at(view, 20))
+    settle(window)
+    window.resize(1400, 820)
+    settle(window)
+    move(canvas, row_at(view, 30))
+    release(canvas, row_at(view, 35))
+    settle(window)
+    assert trials_of(window, "A") == trials_of_rows(window, 10, 35)
+    agree(window)
+
+
+def test_the_right_button_picks_nothing(window, view):
+    place = row_at(view, 10)
+    press(view.plot.viewport(), place, button=Qt.MouseButton.RightButton)
+    release(view.plot.viewport(), place, button=Qt.MouseButton.RightButton)
+    settle(window)
+    assert window.workbench.state.a.n == 0
+
+
+def test_the_pick_follows_the_trials_into_another_order(window, view):
+    drag_rows(view, 10, 24)
+    settle(window)
+    picked = trials_of(window, "A")
+    window.workbench.do(intents.turn_order(descending=True))
+    settle(window)
+    assert trials_of(window, "A") == picked
+    assert rows_drawn(view, "A") == list(range(35, 50))
+    agree(window)
+
+
+def test_the_marked_rows_on_screen_are_the_picked_ones(window):
+    """The bracket of A stands at the picked rows of the strip, to the pixel of a row."""
+    strip = window.bench.strip
+    drag_rows(strip, 20, 39)
+    settle(window)
+    colours = seen(strip.plot)
+    blue = int(window.look.subset_a.removeprefix("#"), 16)
+    lines = np.flatnonzero((colours[:, :12] == blue).any(axis=1))
+    height = colours.shape[0]
+    assert lines.size
+    assert lines.min() == pytest.approx(height * (1 - 40 / 60), abs=3)
+    assert lines.max() == pytest.approx(height * (1 - 20 / 60), abs=3)
