@@ -240,7 +240,9 @@ def _run_measure(arguments: argparse.Namespace) -> int:
         )
         snapshot, chosen = measure(question, _warn)
     except ValueError as error:
-        raise InputError(str(error), "see 'phasebrush measure --help'") from error
+        raise InputError(
+            str(error), "see 'phasebrush measure --help'", arguments.recording
+        ) from error
     write_numbers(arguments.out, numbers(snapshot, chosen))
     return 0
 

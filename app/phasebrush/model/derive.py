@@ -165,7 +165,8 @@ def map_limits(
         return 1.0, 3.0
     if shown == "A-B":
         itc = float(np.abs(of["A"].itc - of["B"].itc)[valid].max())
-        db = [(of["A"].power_db - of["B"].power_db)[valid]]
+        with np.errstate(invalid="ignore"):
+            db = [(of["A"].power_db - of["B"].power_db)[valid]]
     else:
         itc = max(float(maps.itc[valid].max()) for maps in of.values())
         db = [maps.power_db[valid] for maps in of.values()]
@@ -185,7 +186,8 @@ def derive_maps(
     shown = shown_set(state, of)
     if shown == "A-B":
         itc = of["A"].itc - of["B"].itc
-        power_db = of["A"].power_db - of["B"].power_db
+        with np.errstate(invalid="ignore"):  # a flat channel: minus infinity in both
+            power_db = of["A"].power_db - of["B"].power_db
         chance = float("nan")
     else:
         chosen = of[shown]  # type: ignore[index]

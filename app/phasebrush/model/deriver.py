@@ -168,7 +168,10 @@ class Deriver:
         if self._work is None:
             return False
         for name, mask in self.masks(state, len(self._work.question.trials)).items():
-            if self._work.sums[name].set_members(mask):
+            sums = self._work.sums[name]
+            before = sums.frozen()
+            sums.set_members(mask)
+            if sums.frozen() is not before:
                 self._averages.pop(name, None)
                 self._maps.pop(name, None)
         return True

@@ -209,8 +209,11 @@ def show_in_maps(which: MapsShow) -> Intent:
 def move_cursor(time_s: float, *, source: str = "") -> Intent:
     """Move the time cursor."""
 
-    def change(state: State, _snapshot: Snapshot) -> State:
-        return replace(state, cursor_s=time_s)
+    def change(state: State, snapshot: Snapshot) -> State:
+        if snapshot.trials is None:
+            return state
+        start, end = state.shown_s or snapshot.trials.window_s
+        return replace(state, cursor_s=min(max(time_s, start), end))
 
     return Intent("cursor", change, source, fleeting=True)
 
@@ -241,7 +244,7 @@ def shelve(lines: tuple[Shelved, ...]) -> Intent:
     return Intent("list recordings", change, fleeting=True)
 
 
-def take_trials(trials: Trials, before: Trials | None) -> Intent:
+def take_trials(trials: Trials, before: Trials | None, *, fleeting: bool = False) -> Intent:
     """Lay freshly cut trials on the table; ``before`` are those that lie there now.
 
     The recording that lay there keeps its decisions on its desk. Of a recording that was
@@ -276,7 +279,7 @@ def take_trials(trials: Trials, before: Trials | None) -> Intent:
             desks=desks,
         )
 
-    return Intent(f"open {trials.source.title}", change)
+    return Intent(f"open {trials.source.title}", change, fleeting=fleeting)
 
 
 def _found_again(subset: Subset, old: Trials, new: Trials) -> Subset:

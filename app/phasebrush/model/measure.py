@@ -91,6 +91,15 @@ def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     InputError
         If the recording or the question cannot be used.
     """
+    try:
+        return _measured(question, say)
+    except InputError as error:
+        if error.file:
+            raise
+        raise InputError(error.wrong, error.remedy, question.path) from error
+
+
+def _measured(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     bench = Workbench()
     bench.listeners.message = say
     bench.listeners.failed = _raise
@@ -100,7 +109,6 @@ def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
         raise InputError(
             f"there is no channel {question.channel}",
             f"choose one of {', '.join(trials.ch_names)}",
-            question.path,
         )
     bench.do(_settings(question))
     bench.take_trials(trials)
@@ -108,7 +116,7 @@ def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     bench.do(intents.show_channel(question.channel))
     snapshot = bench.flush().snapshot
     if snapshot.key is not None and snapshot.key.fault:
-        raise InputError(*_halves(snapshot.key.fault), question.path)
+        raise InputError(*_halves(snapshot.key.fault))
     if question.part is None:
         return snapshot, "all"
     bench.do(_pick(question.part))
@@ -117,7 +125,6 @@ def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
         raise InputError(
             "the part holds no trial: the sort key has too few values",
             "choose another key or a larger part",
-            question.path,
         )
     return snapshot, "A"
 

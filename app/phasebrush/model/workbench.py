@@ -255,7 +255,6 @@ class Workbench:
         self._take(trials)
 
     def _read(self, work: Callable[[Progress], opening.Opened], *, ask: bool) -> None:
-        self.jobs.drop("cut")
         self.jobs.start(Job("read", "opening", work, partial(self._opened, ask=ask), self._failed))
 
     def _opened(self, opened: opening.Opened, *, ask: bool) -> None:
@@ -272,14 +271,15 @@ class Workbench:
         else:
             self.cut(opened.recording, how)
 
-    def _take(self, trials: Trials) -> None:
+    def _take(self, trials: Trials, *, fleeting: bool = False) -> None:
         before = self._find_trials(self._state)
         self._shelf.put(trials)
-        self.do(intents.take_trials(trials, before))
+        self.do(intents.take_trials(trials, before, fleeting=fleeting))
         self._mark({Result.TRIALS}, "")
-        if before is not trials:
+        if before is not trials and not fleeting:
             for warning in trials.warnings:
                 self.listeners.message(warning)
+        self._widen_margin()
 
     def _margin_s(self) -> float:
         """Margin for the lowest wavelet, in whole tenths so that small changes re-use the cut."""
@@ -291,7 +291,11 @@ class Workbench:
         need_s = self._margin_s()
         if trials is None or not trials.source.continuous or trials.cut.margin_s >= need_s - 1e-9:
             return
-        self._cut_again(replace(trials.cut, margin_s=need_s), self._take)
+        self._cut_again(replace(trials.cut, margin_s=need_s), self._take_wider)
+
+    def _take_wider(self, trials: Trials) -> None:
+        """Lay the same trials with longer margins: no step of its own in the undo list."""
+        self._take(trials, fleeting=True)
 
     def _lay_again(self, trials: Trials) -> None:
         self._shelf.put(trials)
