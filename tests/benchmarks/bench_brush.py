@@ -43,11 +43,11 @@ def invented_trials(n_trials: int, n_channels: int = 1) -> Trials:
     rng = np.random.default_rng(1)
     times_s = np.arange(-600, 1050) / SFREQ_HZ
     data = np.empty((n_trials, n_channels, len(times_s)), dtype=np.float32)
-    for trial in data:
+    response = 4 * np.exp(-(((times_s - 0.15) / 0.04) ** 2))
+    for number in range(n_trials):
         phase = rng.uniform(0, 2 * np.pi, (n_channels, 1))
-        trial[:] = rng.lognormal(1.5, 0.6) * np.cos(2 * np.pi * 10 * times_s + phase)
-        trial += 4 * np.exp(-(((times_s - 0.15) / 0.04) ** 2))
-        trial += rng.normal(0, 6, trial.shape)
+        rhythm = rng.lognormal(1.5, 0.6) * np.cos(2 * np.pi * 10 * times_s + phase)
+        data[number] = rhythm + response + rng.normal(0, 6, rhythm.shape)
     return Trials(
         data_uv=data,
         times_s=times_s,
@@ -101,10 +101,10 @@ class Bench:
         def place(row: float) -> QPoint:
             return stack.plot.to_pixel(0.2, row + 0.5).toPoint()
 
-        QTest.mousePress(viewport, Qt.MouseButton.LeftButton, pos=place(middle - 100))
+        QTest.mousePress(viewport, Qt.MouseButton.LeftButton, pos=place(middle - n_trials // 6))
         self.settle()
         seconds = []
-        rows = middle + 40
+        rows = middle + n_trials // 6
         for step in range(STEPS):
             rows += STEP_ROWS if step // 10 % 2 == 0 else -STEP_ROWS
             time.sleep(REST_S)

@@ -41,6 +41,7 @@ class ColourBar(QWidget):
         self._chance = float("nan")
         self._look = LIGHT
         self.setFixedWidth(WIDTH)
+        self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self.setFont(theme.font(8.0))
 
     def sizeHint(self) -> QSize:
@@ -62,6 +63,7 @@ class ColourBar(QWidget):
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Draw the bar, its ticks and the unit."""
         painter = QPainter(self)
+        painter.fillRect(self.rect(), QColor(self._look.panel))
         painter.setFont(self.font())
         low, high = self._range
         bar = QRectF(BAR_LEFT, self._top, BAR_WIDTH, self.height() - self._top - self._bottom)

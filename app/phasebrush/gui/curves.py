@@ -55,7 +55,8 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
         self._pen = pen(look.subset(self._name), width=1.0 if self._name == "all" else 2.0)
-        self._pen.setCapStyle(Qt.PenCapStyle.FlatCap if self._dashed else Qt.PenCapStyle.RoundCap)
+        # Round caps take five times as long.
+        self._pen.setCapStyle(Qt.PenCapStyle.FlatCap if self._dashed else Qt.PenCapStyle.SquareCap)
         self.update()
 
     def set_points(self, x: Floats, y: Floats) -> None:

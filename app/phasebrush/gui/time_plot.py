@@ -93,6 +93,9 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         self.setMouseTracking(True)
         self.viewport().setMouseTracking(True)
         self.setFrameShape(self.Shape.NoFrame)
+        # The plot paints its whole ground: what lies under it need not be painted first.
+        self.viewport().setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
+        self.setOptimizationFlags(self.OptimizationFlag.DontAdjustForAntialiasing)
         self._shape_axes()
         self.zero_line = pg.InfiniteLine(0.0, angle=90, movable=False)
         self.cursor_line = pg.InfiniteLine(0.0, angle=90, movable=False)
@@ -111,6 +114,7 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
             axis.setStyle(tickLength=4, tickTextOffset=4, autoExpandTextSpace=False,
                           hideOverlappingLabels=True)  # fmt: skip
             axis.setTickFont(theme.font(8.0))
+            axis.setCacheMode(axis.CacheMode.DeviceCoordinateCache)
         item.getAxis("left").setWidth(self.margins.left)
         item.getAxis("bottom").setHeight(self.margins.bottom)
 

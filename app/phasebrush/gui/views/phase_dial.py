@@ -50,6 +50,7 @@ class PhaseDial(View):
         self.setFont(theme.font(8.0))
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMouseTracking(True)
+        self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self._dial: Dial | None = None
         self._rims: dict[str, np.ndarray] = {}
         self._faded = False
@@ -83,6 +84,7 @@ class PhaseDial(View):
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Draw circle, rim, resultants and the sector being dragged."""
         painter = QPainter(self)
+        painter.fillRect(self.rect(), QColor(self.look.panel))
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         centre, radius = self._circle()
         self._draw_frame(painter, centre, radius)

@@ -35,6 +35,7 @@ class Histogram(QWidget):
         self._ends = ("", "")
         self._unit = ""
         self.setMinimumHeight(48)
+        self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self.setFont(theme.font(7.5))
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
         self.setAccessibleName("histogram of the sort key")
@@ -66,6 +67,7 @@ class Histogram(QWidget):
         """Draw the bars and the two ends of the scale."""
         painter = QPainter(self)
         look = self.look
+        painter.fillRect(self.rect(), QColor(look.panel))
         painter.setFont(self.font())
         high = painter.fontMetrics().height()
         area = QRectF(4, 4, self.width() - 8, self.height() - 2 * high - 6)

@@ -101,6 +101,7 @@ class ReadoutView(View):
         self.setObjectName("readout")
         self.setFont(theme.font(9.0))
         self.setMinimumSize(190, 110)
+        self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self._readout: Readout | None = None
         self._faded = False
         self.setAccessibleName("readout at the spot")
@@ -133,6 +134,7 @@ class ReadoutView(View):
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Write the table."""
         painter = QPainter(self)
+        painter.fillRect(self.rect(), QColor(self.look.panel))
         table = self.table()
         if not table:
             painter.end()

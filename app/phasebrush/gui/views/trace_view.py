@@ -130,12 +130,14 @@ class ItcTrace(TraceView):
         for name, line in self._chances.items():
             trace = of.get(name)
             line.setVisible(trace is not None and 0 < trace.chance_itc < 1)
-            if trace is not None:
+            if trace is not None and line.value() != trace.chance_itc:
                 line.setValue(trace.chance_itc)
         drawn = next((of[name] for name in ("A", "B", "all") if name in of), None)
         self._label.setVisible(drawn is not None)
         if drawn is not None and traces is not None:
-            self._label.setText(f"chance 5 %, n {drawn.n}", color=QColor(self.look.muted))
+            words = f"chance 5 %, n {drawn.n}"
+            if words != self._label.toPlainText():
+                self._label.setText(words, color=QColor(self.look.muted))
             start = self.plot.getPlotItem().vb.viewRange()[0][0]
             self._label.setPos(start, drawn.chance_itc)
 
