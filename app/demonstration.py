@@ -43,7 +43,10 @@ def show() -> int:
     environment.say("There is no display here, so the window is saved as a picture instead ...")
     picture = Path.cwd() / PICTURE
     status = environment.run(
-        ["-m", "phasebrush", "open", str(RECORDING), "--picture", str(picture)]
+        [
+            *("-m", "phasebrush", "open", str(RECORDING), "--picture", str(picture)),
+            *("--a", "highest-third", "--b", "lowest-third"),
+        ]
     )
     if status:
         return status

@@ -238,13 +238,23 @@ def _run_measure(arguments: argparse.Namespace) -> int:
             part=_part(arguments.part),
             spot=Spot(*arguments.spot),
         )
-        snapshot, chosen = measure(question, _warn)
+        notes: list[str] = []
+        snapshot, chosen = measure(question, notes.append)
     except ValueError as error:
         raise InputError(
             str(error), "see 'phasebrush measure --help'", arguments.recording
         ) from error
     write_numbers(arguments.out, numbers(snapshot, chosen))
+    # Only now: a call that fails says one line, its fault.
+    for note in notes:
+        _warn(note)
     return 0
+
+
+def _seed(text: str) -> int:
+    if not text.isdecimal():
+        raise argparse.ArgumentTypeError(f"{text!r} is no seed; write a whole number from 0 up")
+    return int(text)
 
 
 def _synth_arguments(parser: argparse.ArgumentParser) -> None:
@@ -259,7 +269,7 @@ def _synth_arguments(parser: argparse.ArgumentParser) -> None:
     )
     parser.add_argument(
         "--seed",
-        type=int,
+        type=_seed,
         default=None,
         help="seed of the random numbers (default: the one it ships with)",
     )

@@ -223,7 +223,8 @@ def test_without_a_display_a_picture_and_a_measurement_are_made(
     monkeypatch.setattr(environment, "run", run)
     assert demonstration.show() == 0
     picture = tmp_path / "phasebrush-picture.png"
-    assert calls[0][2:] == ["open", str(demonstration.RECORDING), "--picture", str(picture)]
+    opening = ["open", str(demonstration.RECORDING), "--picture", str(picture)]
+    assert calls[0][2:] == [*opening, "--a", "highest-third", "--b", "lowest-third"]
     assert calls[1][2:4] == ["measure", str(demonstration.RECORDING)]
     assert demonstration.RECORDING.is_file()
     printed = capsys.readouterr().out

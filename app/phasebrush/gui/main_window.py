@@ -213,7 +213,9 @@ class MainWindow(QMainWindow):
         """Open a file or folder; a sample session brings the other ones along on the list."""
         self.message_bar.clear()
         samples = [str(sample) for sample in sample_recordings()]
-        if path in samples:
+        whole = str(Path(path).resolve())
+        if whole in samples:
+            path = whole
             names = zip(samples, SAMPLES, strict=True)
             self.workbench.do(intents.shelve(tuple(Shelved(*line) for line in names)))
         self.workbench.open(path, ask=ask)

@@ -80,7 +80,9 @@ def signed(look: Look) -> NDArray[np.uint8]:
     Lightness and chroma are linear in magnitude and equal on both sides, so that
     "nothing" looks like nothing and both signs weigh the same.
     """
-    end_lightness = 35.0 if look.name == "light" else 80.0
+    # Darker (or, on a dark ground, lighter) ends would leave sRGB less chroma, and a
+    # deuteranope tells the two sides apart by that.
+    end_lightness = 48.0 if look.name == "light" else 72.0
     middle = _panel_lab(look)
     chroma = min(_largest_chroma(end_lightness, hue) for hue in (GREEN_HUE, PURPLE_HUE))
     ends = [_polar(end_lightness, chroma, hue) for hue in (GREEN_HUE, PURPLE_HUE)]
