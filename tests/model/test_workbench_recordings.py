@@ -256,6 +256,60 @@ class TestMargin:
         assert snapshot.maps.valid.all()
         np.testing.assert_array_equal(snapshot.trials.onset_samples[snapshot.state.a.mask], before)
 
+    def test_a_longer_margin_that_comes_late_does_not_push_another_recording_away(self, folder):
+        runner = ManualRunner()
+        bench = bench_without_trials(runner)
+        bench.do(intents.transform_with(FEW))
+        bench.open(str(folder / "one.npz"))
+        runner.settle(bench)
+        small = bench.state.recording
+        bench.open(str(sample_recordings()[1]))
+        runner.settle(bench)
+        bench.do(intents.transform_with(LONG))
+        assert len(runner.waiting) == 1  # the longer cut waits
+        bench.undo()
+        bench.undo()
+        bench.flush()
+        assert bench.state.recording == small
+        runner.settle(bench)
+        assert bench.state.recording == small
+        assert bench.snapshot.n_trials == 24
+
+    def test_nor_one_that_still_lay_ready(self, folder):
+        runner = ManualRunner()
+        bench = bench_without_trials(runner)
+        bench.do(intents.transform_with(FEW))
+        bench.open(str(folder / "one.npz"))
+        runner.settle(bench)
+        small = bench.state.recording
+        bench.open(str(sample_recordings()[1]))
+        runner.settle(bench)
+        bench.do(intents.transform_with(LONG))
+        (longer,) = runner.work_out()
+        bench.open_listed(small)
+        while bench.state.recording != small:
+            runner.run_one()
+        longer()
+        runner.settle(bench)
+        assert bench.state.recording == small
+        assert bench.snapshot.n_trials == 24
+
+    def test_undo_of_a_brush_made_while_the_longer_cut_was_under_way_keeps_the_margin(self):
+        runner = ManualRunner()
+        bench = bench_without_trials(runner)
+        bench.do(intents.transform_with(FEW))
+        bench.open(str(sample_recordings()[1]))
+        runner.settle(bench)
+        bench.do(intents.transform_with(LONG))
+        bench.do(intents.brush_rows("A", 0, 9))
+        runner.settle(bench)
+        assert bench.snapshot.maps.valid.all()
+        bench.undo()
+        runner.settle(bench)
+        assert bench.state.transform == LONG
+        assert bench.state.a.n == 0
+        assert bench.snapshot.maps.valid.all()
+
 
 class TestShelf:
     """Trials within a memory limit; undo reads again what had to make room."""
