@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import gc
+import itertools
 import sys
 import threading
 import time
@@ -138,7 +139,7 @@ def release(widget: QWidget, place: QPointF, held=PLAIN, button=LEFT) -> None:
 def drag(widget: QWidget, *places: QPointF, held=PLAIN, steps: int = 4) -> None:
     """Press at the first place, pass the others, release at the last."""
     press(widget, places[0], held)
-    for start, end in zip(places[:-1], places[1:], strict=True):
+    for start, end in itertools.pairwise(places):
         for step in range(1, steps + 1):
             move(widget, QPointF(start) + (QPointF(end) - QPointF(start)) * (step / steps), held)
     release(widget, places[-1], held)
@@ -165,7 +166,7 @@ def wheel(widget: QWidget, place: QPointF, turns: int) -> None:
         Qt.MouseButton.NoButton,
         PLAIN,
         Qt.ScrollPhase.NoScrollPhase,
-        False,  # noqa: FBT003 - Qt's own signature: not inverted
+        False,  # not inverted
     )
     QApplication.sendEvent(widget, event)
 
