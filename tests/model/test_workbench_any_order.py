@@ -45,8 +45,9 @@ class Person:
         row, other = rng.integers(0, 24, 2).tolist()
         letter = "AB"[rng.integers(2)]
         acts = [
-            lambda: bench.do(intents.brush_rows(letter, row, other)),
-            lambda: bench.do(intents.brush_rows(letter, row, other, how="add")),
+            *3 * [lambda: bench.do(intents.brush_rows(letter, row, other))],
+            *3 * [lambda: bench.do(intents.brush_rows(letter, row, other, how="add"))],
+            lambda: bench.do(intents.brush_rows(letter, row, other, how="take away")),
             self.drag,
             bench.end_gesture,
             bench.abandon_gesture,
@@ -127,6 +128,18 @@ def assert_same(found, expected) -> None:
     np.testing.assert_array_equal(found.dial.phase_of_trial, expected.dial.phase_of_trial)
 
 
+def assert_at_rest(person: Person) -> None:
+    bench = person.bench
+    assert person.told.faults == []
+    assert bench.settled
+    if not bench.state.recording:  # undone to the very beginning
+        assert bench.snapshot.trials is None
+        bench.open(str(person.folder))
+        person.runner.settle(bench)
+    assert bench.snapshot.outdated == frozenset()
+    assert_same(bench.snapshot, derived_afresh(bench))
+
+
 @pytest.fixture(scope="module")
 def folder(tmp_path_factory):
     made = tmp_path_factory.mktemp("two recordings")
@@ -138,32 +151,25 @@ def folder(tmp_path_factory):
 @pytest.mark.parametrize("seed", range(12))
 def test_at_rest_everything_belongs_to_the_record(folder, seed):
     person = Person(folder, seed, may_stop=False)
-    for _ in range(150):
-        person.act()
-    person.come_to_rest()
-    snapshot = person.bench.snapshot
-    assert person.told.faults == []
-    assert all(message.startswith(("missing.npz: ", "event times")) for message in
-               person.told.messages)  # fmt: skip
-    if not person.bench.state.recording:  # undone to the very beginning
-        assert snapshot.trials is None
-        return
-    assert person.bench.settled
-    assert snapshot.outdated == frozenset()
-    assert_same(snapshot, derived_afresh(person.bench))
+    for _rest in range(5):
+        for _act in range(40):
+            person.act()
+        person.come_to_rest()
+        assert_at_rest(person)
+    assert all(
+        message.startswith(("missing.npz: ", "event times")) for message in person.told.messages
+    )
 
 
 @pytest.mark.parametrize("seed", range(100, 106))
 def test_after_stops_computing_again_brings_everything_up_to_date(folder, seed):
     person = Person(folder, seed, may_stop=True)
-    for _ in range(150):
-        person.act()
-    person.bench.compute_again()
-    person.come_to_rest()
-    assert person.told.faults == []
-    if person.bench.state.recording:
-        assert person.bench.snapshot.outdated == frozenset()
-        assert_same(person.bench.snapshot, derived_afresh(person.bench))
+    for _rest in range(5):
+        for _act in range(40):
+            person.act()
+        person.bench.compute_again()
+        person.come_to_rest()
+        assert_at_rest(person)
 
 
 def test_trials_that_are_laid_by_hand_are_derived_the_same(folder):
