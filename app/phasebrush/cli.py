@@ -27,6 +27,7 @@ CAUTION = (
     "data-protection rules."
 )
 USAGE = 2
+SMALLEST, LARGEST = (900, 600), 8192
 
 
 class _Parser(argparse.ArgumentParser):
@@ -55,7 +56,13 @@ def _size(text: str) -> tuple[int, int]:
     found = re.fullmatch(r"(\d{3,5})x(\d{3,5})", text)
     if found is None:
         raise argparse.ArgumentTypeError(f"{text!r} is no size; write it as 1600x1000")
-    return int(found[1]), int(found[2])
+    size = int(found[1]), int(found[2])
+    if not (SMALLEST[0] <= size[0] <= LARGEST and SMALLEST[1] <= size[1] <= LARGEST):
+        raise argparse.ArgumentTypeError(
+            f"{text!r} is no size of the window; choose {SMALLEST[0]}x{SMALLEST[1]} to "
+            f"{LARGEST}x{LARGEST}"
+        )
+    return size
 
 
 def _open_arguments(parser: argparse.ArgumentParser) -> None:
@@ -217,6 +224,8 @@ def _run_measure(arguments: argparse.Namespace) -> int:
     from phasebrush.model.write_numbers import write_numbers
 
     low, high, count = arguments.freqs
+    if Path(arguments.out).resolve() == Path(arguments.recording).resolve():
+        raise InputError("--out is the recording itself", "name another file", arguments.out)
     try:
         question = Question(
             path=arguments.recording,

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from phasebrush.core import key_values as compute
+from phasebrush.core.sort_key import ALPHA_HZ, KeyName
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -14,12 +15,9 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from phasebrush.core.footprint import Footprint
-    from phasebrush.core.sort_keys import KeyInputs, SortKey
+    from phasebrush.core.sort_key import KeyInputs, SortKey
     from phasebrush.core.spot import Spot
     from phasebrush.core.transform_settings import TransformSettings
-
-ALPHA_HZ = (8.0, 13.0)
-"""The alpha band, the one whose edges the sources agree on."""
 
 
 @dataclass(frozen=True)
@@ -88,7 +86,7 @@ KINDS: dict[str, KeyKind] = {
     kind.kind: kind
     for kind in (
         KeyKind(
-            kind="recording-order",
+            kind=KeyName.RECORDING_ORDER,
             title="recording order",
             unit="",
             definition="The trial's place in the recording, counted from 1.",
@@ -97,7 +95,7 @@ KINDS: dict[str, KeyKind] = {
             words=lambda _key, _spot: "recording order",
         ),
         KeyKind(
-            kind="response-time",
+            kind=KeyName.RESPONSE_TIME,
             title="response time",
             unit="s",
             definition="Time from the event to the response, in seconds.",
@@ -106,7 +104,7 @@ KINDS: dict[str, KeyKind] = {
             words=lambda _key, _spot: "response time",
         ),
         KeyKind(
-            kind="column",
+            kind=KeyName.COLUMN,
             title="event column",
             unit="",
             definition="A numeric column of the events, as it stands in the recording.",
@@ -115,7 +113,7 @@ KINDS: dict[str, KeyKind] = {
             words=lambda key, _spot: key.column or "event column",
         ),
         KeyKind(
-            kind="band-power",
+            kind=KeyName.BAND_POWER,
             title="band power",
             unit="dB re 1 µV²",
             definition="Mean squared amplitude over the valid points of a band and window, in "
@@ -128,7 +126,7 @@ KINDS: dict[str, KeyKind] = {
             uses_window=True,
         ),
         KeyKind(
-            kind="phase",
+            kind=KeyName.PHASE,
             title="phase at the spot",
             unit="rad",
             definition="Angle of the coefficient at the spot's centre, in radians; 0 is the peak "
@@ -141,7 +139,7 @@ KINDS: dict[str, KeyKind] = {
             uses_spot=True,
         ),
         KeyKind(
-            kind="spot-power",
+            kind=KeyName.SPOT_POWER,
             title="power at the spot",
             unit="dB re 1 µV²",
             definition="Mean squared amplitude over the valid points of the spot, in decibels of "
@@ -153,7 +151,7 @@ KINDS: dict[str, KeyKind] = {
             uses_spot=True,
         ),
         KeyKind(
-            kind="amplitude",
+            kind=KeyName.AMPLITUDE,
             title="mean amplitude",
             unit="µV",
             definition="Mean voltage in a window, in microvolts.",

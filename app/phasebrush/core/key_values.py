@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 
     from phasebrush.core.coefficients import Coefficients
     from phasebrush.core.footprint import Footprint
-    from phasebrush.core.sort_keys import KeyInputs, SortKey
+    from phasebrush.core.sort_key import KeyInputs, SortKey
     from phasebrush.core.spot import Spot
     from phasebrush.core.transform_settings import TransformSettings
 

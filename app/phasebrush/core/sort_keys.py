@@ -5,22 +5,19 @@ What kinds there are stands in `key_kinds`, how each is computed in `key_values`
 
 from __future__ import annotations
 
-import math
-from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
 
 from phasebrush.core.footprint import Footprint
-from phasebrush.core.key_kinds import ALPHA_HZ, KINDS, KeyKind
+from phasebrush.core.key_kinds import KINDS, KeyKind
+from phasebrush.core.sort_key import KeyInputs, SortKey
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
-    from phasebrush.core.coefficients import Coefficients
     from phasebrush.core.spot import Spot
     from phasebrush.core.transform_settings import TransformSettings
-    from phasebrush.core.trials import Trials
 
 __all__ = [
     "KINDS",
@@ -34,78 +31,6 @@ __all__ = [
     "key_values",
     "sorted_order",
 ]
-
-
-@dataclass(frozen=True)
-class SortKey:
-    """What a person decided to order the trials by.
-
-    Parameters
-    ----------
-    kind : str
-        One of `KINDS`; also its name on the command line.
-    column : str
-        Event column, for the kind ``"column"``.
-    band_hz : tuple of float
-        Band, Hz, for kinds that use one.
-    window_s : tuple of float
-        Window in seconds from the event, for kinds that use one.
-
-    Raises
-    ------
-    ValueError
-        If the kind is unknown, or band or window are not in order.
-    """
-
-    kind: str = "band-power"
-    column: str = ""
-    band_hz: tuple[float, float] = ALPHA_HZ
-    window_s: tuple[float, float] = (-0.5, 0.0)
-
-    def __post_init__(self) -> None:
-        if self.kind not in KINDS:
-            raise ValueError(f"no sort key {self.kind!r}; choose one of {', '.join(KINDS)}")
-        if not all(math.isfinite(number) for number in (*self.band_hz, *self.window_s)):
-            raise ValueError(f"band {self.band_hz} and window {self.window_s} need finite numbers")
-        if not 0 < self.band_hz[0] <= self.band_hz[1]:
-            raise ValueError(f"the band {self.band_hz} Hz breaks 0 < low <= high; swap its ends")
-        if not self.window_s[0] <= self.window_s[1]:
-            raise ValueError(f"the window {self.window_s} s breaks start <= end; swap its ends")
-
-
-@dataclass(frozen=True, eq=False)
-class KeyInputs:
-    """What sort keys are computed from.
-
-    Parameters
-    ----------
-    trials : Trials
-        The trials, N of them.
-    channel : str
-        The channel under study.
-    coefficients : Coefficients or None
-        Its coefficients; None will do for keys that need none.
-    spot : Spot
-        The spot under study.
-    """
-
-    trials: Trials
-    channel: str
-    coefficients: Coefficients | None
-    spot: Spot
-
-    @property
-    def needed_coefficients(self) -> Coefficients:
-        """The coefficients, where a key cannot do without.
-
-        Raises
-        ------
-        ValueError
-            If there are none.
-        """
-        if self.coefficients is None:
-            raise ValueError("this sort key needs the coefficients; transform the channel first")
-        return self.coefficients
 
 
 def key_values(key: SortKey, inputs: KeyInputs) -> NDArray[np.float64]:

@@ -86,6 +86,10 @@ def run(wish: Wish) -> int:
     InputError
         With ``picture``: if the recording cannot be opened or the picture not written.
     """
+    if not wish.picture and not has_display() and "QT_QPA_PLATFORM" not in os.environ:
+        raise InputError(
+            "there is no display to open the window on", "add --picture OUT.png to save a picture"
+        )
     app = application()
     kept = None if wish.picture else settings()
     named = wish.look
@@ -134,12 +138,22 @@ def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
     if wish.parts:
         bench.do(intents.pick_parts(dict(wish.parts)))  # type: ignore[arg-type]
         _wait(app, window)
-    target = Path(wish.picture)
+    _swap_in_picture(window, Path(wish.picture))
+
+
+def _swap_in_picture(window: MainWindow, target: Path) -> None:
     beside = target.with_name(f".{target.name}.part")
-    if not window.save_picture(str(beside)):
+    try:
+        if target.is_dir() or not window.save_picture(str(beside)):
+            raise InputError("could not be written", "name a file in a folder of yours", target)
+        beside.replace(target)
+    except OSError as error:
+        reason = error.strerror or "no reason given"
+        raise InputError(
+            f"could not be written ({reason})", "name a file in a folder of yours", target
+        ) from error
+    finally:
         beside.unlink(missing_ok=True)
-        raise InputError("could not be written", "choose a folder that can be written", target)
-    beside.replace(target)
 
 
 def _wait(app: QApplication, window: MainWindow) -> None:

@@ -257,8 +257,7 @@ class MainWindow(QMainWindow):
         self._show_dialog(dialog)
 
     def _take_transform(self, dialog: TransformDialog) -> None:
-        self.workbench.do(intents.transform_with(dialog.settings()))
-        self.workbench.do(intents.power_baseline(*dialog.baseline_s()))
+        self.workbench.do(intents.transform_with(dialog.settings(), dialog.baseline_s()))
 
     def _show_dialog(self, dialog: QDialog) -> None:
         self._open_dialogs.append(dialog)
@@ -415,6 +414,8 @@ class MainWindow(QMainWindow):
         self._closed = True
         if self._settings is not None:
             self._settings.setValue("place", self.saveGeometry())
+            for dock in self._folded:  # folded for want of room, not closed by the person
+                dock.show()
             if self._arranged:
                 self._settings.setValue("arrangement", self.saveState())
             self._settings.setValue("look", self.look.name)

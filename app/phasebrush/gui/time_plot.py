@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QMouseEvent, QPen, QWheelEvent
+from PySide6.QtGui import QColor, QGuiApplication, QMouseEvent, QPen, QWheelEvent
 
 from phasebrush.gui import theme
 from phasebrush.look.tokens import LIGHT, Look
@@ -24,9 +24,10 @@ ZOOM_STEP = 1.25
 
 
 def pen(colour: str, *, width: float = 1.0, dashed: bool = False, dotted: bool = False) -> QPen:
-    """A pen of constant width on screen."""
+    """A pen of constant width on screen, in logical pixels."""
     made = QPen(QColor(colour))
-    made.setWidthF(width)
+    # The width of a cosmetic pen counts device pixels.
+    made.setWidthF(width * QGuiApplication.instance().devicePixelRatio())  # type: ignore[union-attr]
     made.setCosmetic(True)
     if dashed:
         made.setDashPattern([5, 3])

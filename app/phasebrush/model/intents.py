@@ -177,18 +177,15 @@ def show_channel(channel: str) -> Intent:
     return Intent(f"channel {channel}", change)
 
 
-def transform_with(settings: TransformSettings) -> Intent:
-    """Use other frequencies or cycles."""
-    return Intent("transform settings", lambda state, _: replace(state, transform=settings))
-
-
-def power_baseline(start_s: float, end_s: float) -> Intent:
-    """Give power against another baseline."""
+def transform_with(
+    settings: TransformSettings, baseline_s: tuple[float, float] | None = None
+) -> Intent:
+    """Use other frequencies or cycles, and another power baseline where one is given."""
 
     def change(state: State, _snapshot: Snapshot) -> State:
-        return replace(state, baseline_s=(min(start_s, end_s), max(start_s, end_s)))
+        return replace(state, transform=settings, baseline_s=baseline_s or state.baseline_s)
 
-    return Intent("power baseline", change)
+    return Intent("transform settings", change)
 
 
 def move_spot(spot: Spot, *, source: str = "", gesture: int = 0) -> Intent:

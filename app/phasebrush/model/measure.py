@@ -11,7 +11,7 @@ import numpy as np
 from phasebrush import recordings
 from phasebrush.core import phase
 from phasebrush.core.parts import part_mask
-from phasebrush.core.sort_keys import SortKey
+from phasebrush.core.sort_keys import KINDS, SortKey
 from phasebrush.errors import InputError
 from phasebrush.model import intents
 from phasebrush.model.intents import Intent
@@ -68,6 +68,10 @@ class Question:
     part: Part | None = None
     spot: Spot = DEFAULT_SPOT
 
+    def __post_init__(self) -> None:
+        if self.baseline_s is not None and not self.baseline_s[0] < self.baseline_s[1]:
+            raise ValueError(f"the baseline {self.baseline_s} s needs start < end; swap its ends")
+
 
 def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     """Measure a recording.
@@ -115,8 +119,7 @@ def _measured(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     bench.flush()
     bench.do(intents.show_channel(question.channel))
     snapshot = bench.flush().snapshot
-    if snapshot.key is not None and snapshot.key.fault:
-        raise InputError(*_halves(snapshot.key.fault))
+    _check(question, snapshot)
     if question.part is None:
         return snapshot, "all"
     bench.do(_pick(question.part))
@@ -127,6 +130,32 @@ def _measured(question: Question, say: Say) -> tuple[Snapshot, SetName]:
             "choose another key or a larger part",
         )
     return snapshot, "A"
+
+
+def _check(question: Question, snapshot: Snapshot) -> None:
+    """Refuse what would be measured somewhere else than asked for."""
+    key, maps = snapshot.key, snapshot.maps
+    if key is not None and key.fault:
+        raise InputError(*_halves(key.fault))
+    if maps is None:
+        raise InputError("could not be measured", "try other settings")
+    if np.isnan(maps.power_db).all():
+        start, end = maps.times_s[0], maps.times_s[-1]
+        raise InputError(
+            f"no point of the baseline {maps.baseline_s[0]:g} to {maps.baseline_s[1]:g} s can be "
+            f"trusted; the maps run from {start:.3g} to {end:.3g} s",
+            "choose a baseline inside them, away from the ends of ready-made trials",
+        )
+    if question.key is not None and KINDS[question.key.kind].uses_spot:
+        spot, freqs, times = question.spot, maps.freqs_hz, maps.times_s
+        inside = freqs[0] <= spot.centre_hz <= freqs[-1] and times[0] <= spot.centre_s <= times[-1]
+        if not inside:
+            raise InputError(
+                f"the spot's centre, {spot.centre_hz:.3g} Hz and {spot.centre_s:.3g} s, is outside "
+                f"the maps ({freqs[0]:.3g} to {freqs[-1]:.3g} Hz, {times[0]:.3g} to "
+                f"{times[-1]:.3g} s)",
+                "choose a spot inside them",
+            )
 
 
 def _raise(error: Exception) -> None:

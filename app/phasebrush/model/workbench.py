@@ -167,7 +167,7 @@ class Workbench:
     def _swap(self, state: State, source: str) -> None:
         old, self._state = self._state, state
         self._mark(stale_after(old, state), source)
-        if "transform" in changed_fields(old, state):
+        if changed_fields(old, state) & {"transform", "cut", "recording"}:
             self._widen_margin()
 
     def _mark(self, stale: set[Result] | frozenset[Result], source: str) -> None:
@@ -238,6 +238,7 @@ class Workbench:
         """Cut trials from a recording and lay them on the table."""
         trials = self._shelf.find(recording.source.path, how)
         if trials is not None:
+            self.jobs.drop("cut")
             self._take(trials)
             return
         self.jobs.start(
@@ -279,7 +280,6 @@ class Workbench:
         if before is not trials and not fleeting:
             for warning in trials.warnings:
                 self.listeners.message(warning)
-        self._widen_margin()
 
     def _margin_s(self) -> float:
         """Margin for the lowest wavelet, in whole tenths so that small changes re-use the cut."""
@@ -291,11 +291,24 @@ class Workbench:
         need_s = self._margin_s()
         if trials is None or not trials.source.continuous or trials.cut.margin_s >= need_s - 1e-9:
             return
-        self._cut_again(replace(trials.cut, margin_s=need_s), self._take_wider)
+        how = replace(trials.cut, margin_s=need_s)
+        ready = self._shelf.find(self._state.recording, how)
+        if ready is not None:
+            self._take_wider(ready)
+        else:
+            self._cut_again(how, self._take_wider)
 
     def _take_wider(self, trials: Trials) -> None:
-        """Lay the same trials with longer margins: no step of its own in the undo list."""
-        self._take(trials, fleeting=True)
+        """Lay the same trials with longer margins: no step of its own in the undo list.
+
+        They only lie ready where another recording or cut is on the table by now.
+        """
+        self._shelf.put(trials)
+        path, how = self._state.recording, self._state.cut
+        if how is None or path != trials.source.path:
+            return
+        if replace(how, margin_s=trials.cut.margin_s) == trials.cut:
+            self._take(trials, fleeting=True)
 
     def _lay_again(self, trials: Trials) -> None:
         self._shelf.put(trials)

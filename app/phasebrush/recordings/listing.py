@@ -8,8 +8,8 @@ from pathlib import Path
 
 from phasebrush.errors import InputError
 from phasebrush.recordings.bids import entities_of, file_stem, title_of
+from phasebrush.recordings.file_kind import ENDINGS, kind_of
 from phasebrush.recordings.library import faults_in_words, quietly
-from phasebrush.recordings.open_file import ENDINGS, kind_of
 from phasebrush.recordings.recording import Listed
 
 _DESCRIPTION = "dataset_description.json"

@@ -8,18 +8,15 @@ from typing import TYPE_CHECKING
 from phasebrush.errors import InputError
 from phasebrush.recordings.continuous import open_continuous
 from phasebrush.recordings.epochs_ready import open_fif_epochs
-from phasebrush.recordings.fif_tags import what_fif_holds
 from phasebrush.recordings.file_checks import check_complete
+from phasebrush.recordings.file_kind import kind_of
+from phasebrush.recordings.listing import list_recordings
 from phasebrush.recordings.npz_trials import open_npz
 
 if TYPE_CHECKING:
     from collections.abc import Callable
 
     from phasebrush.recordings.recording import Recording
-
-ENDINGS = (".vhdr", ".edf", ".bdf", ".fif", ".fif.gz", ".npz")
-_KNOWN = "open a BrainVision header (.vhdr), .edf, .bdf, .fif or .npz file"
-_BRAINVISION_HEADS = (b"Brain Vision Data Exchange Header", b"BrainVision Data Exchange Header")
 
 
 def open_recording(
@@ -65,58 +62,9 @@ def open_recording(
     return recording
 
 
-def kind_of(path: Path) -> str:
-    """Tell the format by the first bytes of a file, and by its ending where they are text.
-
-    Returns
-    -------
-    str
-        ``"edf"``, ``"bdf"``, ``"brainvision"``, ``"raw"``, ``"epochs"`` or ``"npz"``.
-
-    Raises
-    ------
-    InputError
-        If it is none of these, or its ending does not fit.
-    """
-    try:
-        with path.open("rb") as stream:
-            head = stream.read(256)
-    except OSError as fault:
-        raise InputError("cannot be opened", "check that you may read it", path) from fault
-    if not head:
-        raise InputError("is empty (0 bytes)", "copy or export the file again", path)
-    name = path.name.lower()
-    if head.removeprefix(b"\xef\xbb\xbf").startswith(_BRAINVISION_HEADS):
-        return _with_ending(path, "brainvision", ".vhdr")
-    if head.startswith(b"0       "):
-        return _with_ending(path, "edf", ".edf")
-    if head.startswith(b"\xffBIOSEMI"):
-        return _with_ending(path, "bdf", ".bdf")
-    if head.startswith(b"PK\x03\x04") and name.endswith(".npz"):
-        return "npz"
-    if head.startswith(b"\x00\x00\x00\x64\x00\x00\x00\x1f") or name.endswith(".fif.gz"):
-        kind = what_fif_holds(path)
-        if kind == "neither":
-            raise InputError(
-                "holds neither a continuous recording nor epochs", "open a raw or epochs file", path
-            )
-        return kind
-    raise InputError("is in no format known here", _KNOWN, path)
-
-
-def _with_ending(path: Path, kind: str, ending: str) -> str:
-    if not path.name.lower().endswith(ending):
-        raise InputError(
-            f"its content is {kind.upper()} but its ending is not {ending}", "rename the file", path
-        )
-    return kind
-
-
 def _one_file(path: Path) -> Path:
     """Return the file itself, the header beside a BrainVision part, or a folder's only one."""
     if path.is_dir():
-        from phasebrush.recordings.listing import list_recordings
-
         found = list_recordings(path)
         if len(found) > 1:
             titles = ", ".join(one.title for one in found[:6])

@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
     from pathlib import Path
 
-    from phasebrush.synth.sessions import Session
+    from phasebrush.synth.session import Session
     from phasebrush.synth.timeline import Timeline
 
 README = """\
@@ -60,7 +60,7 @@ def write_bids(session: Session, folder: Path) -> Path:
     Path
         The recording's header file.
     """
-    from phasebrush.synth.sessions import STEP_UV
+    from phasebrush.synth.session import STEP_UV
 
     root = folder / "lantern-watch"
     subject = f"sub-{session.recipe.name.replace('-', '')}"

@@ -12,7 +12,7 @@ from phasebrush.synth.scenario import GREEN, KEYPRESS, SFREQ_HZ, WHITE
 if TYPE_CHECKING:
     from pathlib import Path
 
-    from phasebrush.synth.sessions import Session
+    from phasebrush.synth.session import Session
     from phasebrush.synth.timeline import Timeline
 
 DIGITAL = (-32768, 32767)
@@ -38,7 +38,7 @@ def write_edf(session: Session, folder: Path) -> Path:
     """
     from edfio import Edf, EdfAnnotation, EdfSignal
 
-    from phasebrush.synth.sessions import STEP_UV
+    from phasebrush.synth.session import STEP_UV
 
     # Rounded, as the header has 8 characters for each: digital 0 is then exactly 0 uV.
     limits_uv = (round(DIGITAL[0] * STEP_UV, 1), round(DIGITAL[1] * STEP_UV, 1))

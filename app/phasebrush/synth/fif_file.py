@@ -13,7 +13,7 @@ from phasebrush.synth.scenario import GREEN, SFREQ_HZ, WHITE
 if TYPE_CHECKING:
     from pathlib import Path
 
-    from phasebrush.synth.sessions import Session
+    from phasebrush.synth.session import Session
 
 
 def write_epochs(session: Session, folder: Path) -> Path:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -12,49 +11,15 @@ from phasebrush.synth.draws import Draws
 from phasebrush.synth.montage import CHANNELS, spread
 from phasebrush.synth.physiology import background_uv, blink_uv, response_uv, rhythm_course
 from phasebrush.synth.scenario import SESSIONS, SFREQ_HZ
+from phasebrush.synth.session import STEP_UV, Session
 from phasebrush.synth.timeline import make_timeline
 from phasebrush.synth.truth import build_truth, write_truth
 
 if TYPE_CHECKING:
-    from typing import Any
-
     from numpy.typing import NDArray
 
     from phasebrush.synth.scenario import Recipe
     from phasebrush.synth.timeline import Timeline
-
-STEP_UV = 0.1
-"""Resolution of the recordings: one count of the 16-bit samples, microvolts."""
-
-
-@dataclass(frozen=True, eq=False)
-class Session:
-    """A demo recording before it is written.
-
-    Parameters
-    ----------
-    recipe : Recipe
-        What it was made from.
-    seed : int
-        The seed it was made with.
-    counts : ndarray of int16, shape (16, samples)
-        Voltages in steps of `STEP_UV`.
-    timeline : Timeline
-        Flashes and keypresses.
-    truth : dict
-        What an analysis should find, ready for JSON.
-    """
-
-    recipe: Recipe
-    seed: int
-    counts: NDArray[np.int16]
-    timeline: Timeline
-    truth: dict[str, Any]
-
-    @property
-    def data_uv(self) -> NDArray[np.float64]:
-        """Voltages in microvolts, shape (16, samples)."""
-        return self.counts.astype(np.float64) * STEP_UV
 
 
 def make_session(name: str, *, seed: int | None = None) -> Session:

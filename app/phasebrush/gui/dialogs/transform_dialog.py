@@ -62,7 +62,8 @@ class TransformDialog(QDialog):
         self._buttons.rejected.connect(self.reject)
         self._lay_out()
         self._fill(settings, baseline_s)
-        for box in (self._low, self._high, self._low_cycles, self._high_cycles):
+        boxes = (self._low, self._high, self._low_cycles, self._high_cycles)
+        for box in (*boxes, self._base_start, self._base_end):
             box.setKeyboardTracking(True)
             box.valueChanged.connect(self._changed)
         self._count.valueChanged.connect(self._changed)
@@ -134,14 +135,25 @@ class TransformDialog(QDialog):
         )
 
     def baseline_s(self) -> tuple[float, float]:
-        """Power baseline, the earlier end first."""
-        ends = sorted((self._base_start.value(), self._base_end.value()))
-        return ends[0], ends[1]
+        """Power baseline.
+
+        Raises
+        ------
+        ValueError
+            If it has no length; the message says so.
+        """
+        start, end = self._base_start.value(), self._base_end.value()
+        if not start < end:
+            raise ValueError(
+                f"the power baseline runs from {start:g} to {end:g} s; it needs start < end"
+            )
+        return start, end
 
     def _changed(self) -> None:
         ok = self._buttons.button(QDialogButtonBox.StandardButton.Ok)
         try:
             settings = self.settings()
+            self.baseline_s()
         except ValueError as error:
             self._fault.setText(str(error))
             ok.setEnabled(False)
