@@ -8,12 +8,6 @@ import threading
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-HERE = Path(__file__).parent
-# A screen in memory that is larger than the windows: the usual one has 800 x 800 pixels, to
-# which Qt cuts a window down when it puts it back to its place.
-SCREEN = f":configfile={HERE / 'screen.json'}" if os.name == "posix" else ""
-os.environ["QT_QPA_PLATFORM"] = f"offscreen{SCREEN}"
-
 import pytest
 from gui_trials import invented_trials
 from PySide6.QtTest import QTest
@@ -30,6 +24,12 @@ from phasebrush.model.workbench import Workbench
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator
 
+HERE = Path(__file__).parent
+# A screen in memory that is larger than the windows: the usual one has 800 x 800 pixels, to
+# which Qt cuts a window down when it puts it back to its place. Set here, before the first
+# application is made, whichever test makes it.
+SCREEN = f":configfile={HERE / 'screen.json'}" if os.name == "posix" else ""
+os.environ["QT_QPA_PLATFORM"] = f"offscreen{SCREEN}"
 FAILED = pytest.StashKey[bool]()
 
 

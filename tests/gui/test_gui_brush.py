@@ -310,8 +310,9 @@ def test_the_marked_rows_on_screen_are_the_picked_ones(window):
     settle(window)
     colours = seen(strip.plot)
     blue = int(window.look.subset_a.removeprefix("#"), 16)
-    lines = np.flatnonzero((colours[:, :12] == blue).any(axis=1))
+    ratio = window.devicePixelRatioF()
+    lines = np.flatnonzero((colours[:, : round(12 * ratio)] == blue).any(axis=1))
     height = colours.shape[0]
     assert lines.size
-    assert lines.min() == pytest.approx(height * (1 - 40 / 60), abs=3)
-    assert lines.max() == pytest.approx(height * (1 - 20 / 60), abs=3)
+    assert lines.min() == pytest.approx(height * (1 - 40 / 60), abs=3 * ratio)
+    assert lines.max() == pytest.approx(height * (1 - 20 / 60), abs=3 * ratio)

@@ -7,6 +7,7 @@ from dataclasses import replace
 
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QAccessible
 from PySide6.QtWidgets import (
     QAbstractSpinBox,
     QCheckBox,
@@ -155,8 +156,6 @@ def test_the_reference_can_be_chosen_channels(cut_dialog):
 
 
 def test_controls_of_the_cut_have_tooltips_and_names(cut_dialog):
-    from PySide6.QtGui import QAccessible
-
     found = [
         w
         for kind in (QAbstractSpinBox, QComboBox, QCheckBox, QListWidget)

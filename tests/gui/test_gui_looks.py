@@ -15,7 +15,10 @@ from PySide6.QtWidgets import (
     QLineEdit,
     QListView,
     QPushButton,
+    QTableView,
     QToolButton,
+    QTreeView,
+    QWidget,
 )
 from window_tools import (
     CTRL,
@@ -30,10 +33,20 @@ from window_tools import (
 
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.gui.panel import TitleLine
+from phasebrush.look import colour_maps
 from phasebrush.look.tokens import DARK, LIGHT, rgb
 from phasebrush.model import intents
 
-CONTROLS = (QToolButton, QPushButton, QComboBox, QAbstractSpinBox, QLineEdit, QListView)
+CONTROLS = (
+    QToolButton,
+    QPushButton,
+    QComboBox,
+    QAbstractSpinBox,
+    QLineEdit,
+    QListView,
+    QTreeView,
+    QTableView,
+)
 # Plot areas and the least number of colours that a picture of them has.
 LEAST_COLOURS = {
     "average_plot": 8, "trial_stack": 100, "key_strip": 3, "itc_map": 60, "power_map": 60,
@@ -97,26 +110,29 @@ def test_blue_and_orange_belong_to_the_subsets_alone(open_window, trials, look):
     window = open_window(trials, look=look)
     picture = pixels(window.grab().toImage())
     heads = window.docks.views.subsets
+    ratio = window.devicePixelRatioF()
     corner = heads.mapTo(window, heads.rect().topLeft())
-    picture[corner.y() : corner.y() + heads.height(), corner.x() : corner.x() + heads.width()] = 0
+    left, top = int(corner.x() * ratio), int(corner.y() * ratio)
+    picture[
+        top : top + round(heads.height() * ratio), left : left + round(heads.width() * ratio)
+    ] = 0
     for letter in "AB":
         assert not (picture == number(look.subset(letter))).any(), letter
 
 
 def test_a_colour_is_the_value_it_stands_for(window):
     """A pixel in the middle of a cell of the ITC map has the ink of that cell's value."""
-    from phasebrush.look import colour_maps
-
     view = window.docks.views.itc_map
     maps = window.workbench.snapshot.maps
     picture = seen(view.plot)
-    area = view.plot.plot_area()
+    area, ratio = view.plot.plot_area(), window.devicePixelRatioF()
     table = colour_maps.ink(LIGHT)
     checked = 0
     for row in (3, 11, 20, 33):
         for column in range(15, len(maps.times_s) - 15, 17):
             place = view.plot.to_pixel(float(maps.times_s[column]), float(row))
-            x, y = (round(place.x() - area.left()), round(place.y() - area.top()))
+            x = round((place.x() - area.left()) * ratio)
+            y = round((place.y() - area.top()) * ratio)
             if not (2 <= x < picture.shape[1] - 2 and 2 <= y < picture.shape[0] - 2):
                 continue
             around = maps.itc[max(0, row - 1) : row + 2, column - 1 : column + 2]
@@ -184,8 +200,6 @@ def test_every_view_has_a_name_and_a_definition(window):
 
 
 def test_object_names_that_scripts_rely_on(window):
-    from PySide6.QtWidgets import QWidget
-
     for name in ("trial_stack", "key_strip", "average_plot", "itc_map", "power_map", "itc_trace",
                  "power_trace", "phase_dial", "readout", "head_map"):  # fmt: skip
         assert window.findChild(QWidget, name) is not None, name

@@ -110,21 +110,21 @@ def test_the_readout_writes_the_numbers_at_the_spot(window):
     settle(window)
     snapshot, table = window.workbench.snapshot, window.docks.views.readout.table()
     assert list(table) == ["all", "A"]
-    for name, cells in table.items():
+    for name, column in table.items():
         angles = snapshot.dial.phase_of_trial
         if name == "A":
             angles = angles[snapshot.state.a.mask]
         n = len(angles)
         itc = abs(np.mean(np.exp(1j * angles)))
         ppc = np.mean(np.cos(angles[:, None] - angles[None, :])[~np.eye(n, dtype=bool)])
-        assert cells[0] == str(n)
-        assert number_of(cells[1]) == pytest.approx(itc, abs=6e-4)
-        assert number_of(cells[2]) == pytest.approx(float(phase.chance_itc(n)), abs=6e-4)
-        assert number_of(cells[3]) == pytest.approx(ppc, abs=6e-4)
-        assert number_of(cells[4]) == pytest.approx(n * itc**2, abs=6e-3)
+        assert column[0] == str(n)
+        assert number_of(column[1]) == pytest.approx(itc, abs=6e-4)
+        assert number_of(column[2]) == pytest.approx(float(phase.chance_itc(n)), abs=6e-4)
+        assert number_of(column[3]) == pytest.approx(ppc, abs=6e-4)
+        assert number_of(column[4]) == pytest.approx(n * itc**2, abs=6e-3)
         item = snapshot.readout.of[name]
-        assert number_of(cells[6]) == pytest.approx(item.power_db, abs=0.051)
-        assert number_of(cells[7]) == pytest.approx(100 * item.evoked_share, abs=0.051)
+        assert number_of(column[6]) == pytest.approx(item.power_db, abs=0.051)
+        assert number_of(column[7]) == pytest.approx(100 * item.evoked_share, abs=0.051)
 
 
 def test_the_foot_counts_the_trials(window):
