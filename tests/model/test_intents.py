@@ -11,7 +11,6 @@ from small_bench import FEW_WAVELETS, SPOT, bench_with, small_trials
 
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
-from phasebrush.core.trials import Cut
 from phasebrush.model import intents
 from phasebrush.model.results import Snapshot
 from phasebrush.model.state import NOBODY, Shelved, State, Subset
@@ -165,7 +164,7 @@ def test_plain_settings_go_into_their_own_field(state, snapshot):
         intents.smooth(7): {"smoothing": 7},
         intents.smooth(0): {"smoothing": 1},
         intents.show_channel("Pz"): {"channel": "Pz"},
-        intents.power_baseline(-0.1, -0.4): {"baseline_s": (-0.4, -0.1)},
+        intents.transform_with(None, (-0.4, -0.1)): {"baseline_s": (-0.4, -0.1)},
         intents.move_spot(spot): {"spot": spot, "cursor_s": 0.2},
         intents.show_in_maps("A-B"): {"maps_show": "A-B"},
         intents.move_cursor(0.1): {"cursor_s": 0.1},
@@ -213,104 +212,3 @@ def test_listed_recordings_keep_their_place_and_come_once(state, snapshot):
     assert [(line.path, line.title) for line in again.shelf] == [
         ("p", "P"), ("q", "Q"), ("r", "R"),
     ]  # fmt: skip
-
-
-class TestTakingTrials:
-    """Trials come to the table; what was decided about others goes to their desk."""
-
-    def test_a_first_recording_gets_the_usual_channel_and_a_line_in_the_list(self):
-        trials = small_trials(path="one.npz")
-        after = intents.take_trials(trials, None).change(State(), Snapshot())
-        assert (after.recording, after.cut, after.channel) == ("one.npz", trials.cut, "Oz")
-        assert after.shelf == (Shelved("one.npz", "one", 24),)
-        assert (after.a, after.b, after.desks) == (NOBODY, NOBODY, ())
-
-    def test_a_line_that_was_listed_learns_its_number_of_trials(self):
-        state = State(shelf=(Shelved("one.npz", "one"), Shelved("two.npz", "two")))
-        after = intents.take_trials(small_trials(path="one.npz"), None).change(state, Snapshot())
-        assert after.shelf == (Shelved("one.npz", "one", 24), Shelved("two.npz", "two"))
-
-    def test_cut_anew_the_subsets_find_their_trials_by_onset_and_label(self, state, snapshot):
-        state = picked(state, snapshot, intents.brush_rows("A", 0, 7))
-        old = snapshot.trials
-        keep = np.array([trial for trial in range(24) if trial % 4 != 1])
-        new = replace(
-            old,
-            data_uv=old.data_uv[keep].copy(),
-            labels=tuple(old.labels[i] for i in keep),
-            onset_samples=old.onset_samples[keep].copy(),
-            onsets_s=old.onsets_s[keep].copy(),
-            response_times_s=old.response_times_s[keep].copy(),
-            cut=Cut(window_s=(-0.5, 0.5)),
-        )
-        after = intents.take_trials(new, old).change(state, snapshot)
-        assert np.array_equal(after.a.mask, state.a.mask[keep])
-        assert after.a.rule == state.a.rule
-        assert after.b == NOBODY
-
-    def test_an_event_of_another_label_at_the_same_sample_is_another_trial(self, state, snapshot):
-        state = picked(state, snapshot, intents.brush_rows("A", 0, 23))
-        other = replace(snapshot.trials, labels=("blue",) * 24, cut=Cut(labels=("blue",)))
-        assert intents.take_trials(other, snapshot.trials).change(state, snapshot).a == NOBODY
-
-    def test_another_recording_sends_decisions_to_the_desk_and_back(self):
-        bench = bench_with(small_trials(path="one.npz"))
-        bench.do(intents.show_channel("Pz"))
-        bench.do(intents.brush_rows("A", 0, 5))
-        bench.flush()
-        first = bench.state
-        bench.take_trials(small_trials(path="two.npz", seed=2))
-        bench.flush()
-        assert (bench.state.a, bench.state.b) == (NOBODY, NOBODY)
-        assert bench.state.channel == "Pz"  # it exists here too
-        desk = bench.state.desk("one.npz")
-        assert (desk.channel, desk.a, desk.cut) == ("Pz", first.a, first.cut)
-        bench.do(intents.show_channel("Fz"))
-        bench.do(intents.brush_rows("B", 0, 2))
-        bench.flush()
-        bench.take_trials(small_trials(path="one.npz"))
-        bench.flush()
-        assert (bench.state.a, bench.state.b, bench.state.channel) == (first.a, NOBODY, "Pz")
-        assert bench.snapshot.averages.of["A"].n == 6
-        assert bench.state.desk("two.npz").b.n == 3
-        assert len(bench.state.shelf) == 2
-
-    def test_a_desk_of_another_cut_gives_no_subsets_to_the_wrong_trials(self):
-        bench = bench_with(small_trials(path="one.npz"))
-        bench.do(intents.brush_rows("A", 0, 5))
-        bench.flush()
-        bench.take_trials(small_trials(path="two.npz", seed=2))
-        bench.flush()
-        bench.take_trials(small_trials(path="one.npz", cut=Cut(window_s=(-0.5, 0.5))))
-        bench.flush()
-        assert bench.state.a == NOBODY
-
-    def test_a_channel_that_is_missing_gives_way_to_one_that_is_there(self):
-        bench = bench_with(small_trials(path="one.npz"))
-        bench.do(intents.show_channel("Fz"))
-        bench.flush()
-        bench.take_trials(small_trials(path="two.npz", ch_names=("E1", "E2", "E3")))
-        bench.flush()
-        assert bench.state.channel == "E1"
-        assert "E1" in bench.snapshot.trials.ch_names
-
-    def test_a_zoom_does_not_outlive_its_trials(self):
-        bench = bench_with(small_trials(path="one.npz"))
-        bench.do(intents.zoom_time((0.0, 0.3)))
-        bench.flush()
-        bench.take_trials(small_trials(path="two.npz"))
-        assert bench.state.shown_s is None
-
-    def test_cut_anew_before_a_flush_no_foreign_trials_are_picked(self):
-        # The snapshot still holds the earlier recording, which has as many trials.
-        bench = bench_with(small_trials(path="two.npz"))
-        bench.do(intents.brush_rows("A", 0, 5))
-        bench.flush()
-        wished = bench.state.a.mask
-        bench.take_trials(small_trials(path="one.npz", onset_samples=np.arange(24) * 7 + 5))
-        bench.flush()
-        bench.take_trials(small_trials(path="two.npz"))
-        recut = small_trials(path="two.npz", cut=Cut(window_s=(-0.5, 0.7)))
-        bench.take_trials(recut)
-        bench.flush()
-        assert np.array_equal(bench.state.a.mask_of(24), wished)

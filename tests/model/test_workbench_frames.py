@@ -119,7 +119,7 @@ def test_a_frame_is_only_a_views_own_when_all_of_it_came_from_that_view():
         (intents.sort_by(SortKey("recording-order")), {Result.KEY, Result.ROWS, Result.STACK}),
         (intents.move_cursor(0.21), {Result.CURSOR}),
         (intents.zoom_time((0.0, 0.4)), {Result.SHOWN}),
-        (intents.power_baseline(-0.4, -0.2), {Result.MAPS, Result.TRACES, Result.READOUT}),
+        (intents.transform_with(None, (-0.4, -0.2)), {Result.MAPS, Result.TRACES, Result.READOUT}),
         (intents.move_spot(Spot(6, 8, 0.1, 0.2)),
          {Result.SPOT, Result.CURSOR, Result.TRACES, Result.DIAL, Result.READOUT}),
     ],
@@ -153,62 +153,6 @@ def test_an_earlier_snapshot_stays_what_it_was():
     assert first.state.a.n == 5
 
 
-class TestScales:
-    """Colour scales and the voltage axis stay put during a drag and follow after it."""
-
-    @staticmethod
-    def limits(snapshot):
-        return (snapshot.maps.itc_limit, snapshot.maps.db_limit, snapshot.averages.limit_uv)
-
-    def test_they_stay_during_a_drag_and_follow_after_it(self):
-        bench = bench_with()
-        before = self.limits(bench.snapshot)
-        for last in (20, 10, 5, 3):  # two trials align by chance: the largest ITC grows
-            bench.do(intents.brush_rows("A", 2, last, gesture=1))
-            assert self.limits(bench.flush().snapshot) == before
-        bench.end_gesture()
-        frame = bench.flush()
-        after = self.limits(frame.snapshot)
-        valid = frame.snapshot.maps.valid
-        assert after[0] >= frame.snapshot.maps.of["A"].itc[valid].max() > before[0]
-        assert {Result.MAPS, Result.AVERAGE} <= frame.changed
-
-    def test_they_hold_after_a_drag_that_was_zoomed_meanwhile(self):
-        bench = bench_with()
-        before = self.limits(bench.snapshot)
-        bench.do(intents.brush_rows("A", 2, 9, gesture=1))
-        bench.flush()
-        bench.do(intents.zoom_time((0.0, 0.5)))
-        bench.do(intents.brush_rows("A", 2, 3, gesture=1))
-        assert self.limits(bench.flush().snapshot) == before
-        bench.end_gesture()
-        assert self.limits(bench.flush().snapshot) != before
-
-    def test_a_pick_without_a_drag_lets_them_follow_at_once(self):
-        bench = bench_with()
-        before = self.limits(bench.snapshot)
-        bench.do(intents.brush_rows("A", 2, 3))
-        assert self.limits(bench.flush().snapshot)[0] > before[0]
-
-    def test_an_abandoned_drag_leaves_them_as_they_were(self):
-        bench = bench_with()
-        before = self.limits(bench.snapshot)
-        bench.do(intents.brush_rows("A", 2, 3, gesture=1))
-        bench.flush()
-        bench.abandon_gesture()
-        assert self.limits(bench.flush().snapshot) == before
-
-    def test_the_voltage_axis_holds_every_average_with_its_band(self):
-        bench = bench_with()
-        bench.do(intents.pick_parts({"A": "upper-half", "B": "lower-half"}))
-        averages = bench.flush().snapshot.averages
-        low, high = averages.limit_uv
-        for item in averages.of.values():
-            assert item.n >= 10
-            assert (item.mean_uv - item.band_uv).min() > low
-            assert (item.mean_uv + item.band_uv).max() < high
-
-
 class TestWhatTheMapsShow:
     """A set without trials gives way to all trials."""
 
@@ -240,7 +184,7 @@ class TestWhatTheMapsShow:
 
     def test_a_baseline_that_the_response_reaches_into_is_said(self):
         bench = bench_with()
-        bench.do(intents.power_baseline(-0.3, -0.05))
+        bench.do(intents.transform_with(None, (-0.3, -0.05)))
         (note,) = bench.flush().snapshot.maps.notes
         # 2 sigma_t = m / (pi f) reaches 0.05 s up to where f = m / (0.05 pi).
         freqs, cycles = FEW_WAVELETS.freqs_hz, FEW_WAVELETS.cycles

@@ -178,12 +178,16 @@ def show_channel(channel: str) -> Intent:
 
 
 def transform_with(
-    settings: TransformSettings, baseline_s: tuple[float, float] | None = None
+    settings: TransformSettings | None = None, baseline_s: tuple[float, float] | None = None
 ) -> Intent:
-    """Use other frequencies or cycles, and another power baseline where one is given."""
+    """Use other frequencies and cycles, or another power baseline; None keeps what is."""
 
     def change(state: State, _snapshot: Snapshot) -> State:
-        return replace(state, transform=settings, baseline_s=baseline_s or state.baseline_s)
+        return replace(
+            state,
+            transform=settings or state.transform,
+            baseline_s=baseline_s or state.baseline_s,
+        )
 
     return Intent("transform settings", change)
 

@@ -68,10 +68,6 @@ class Question:
     part: Part | None = None
     spot: Spot = DEFAULT_SPOT
 
-    def __post_init__(self) -> None:
-        if self.baseline_s is not None and not self.baseline_s[0] < self.baseline_s[1]:
-            raise ValueError(f"the baseline {self.baseline_s} s needs start < end; swap its ends")
-
 
 def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     """Measure a recording.
@@ -104,6 +100,9 @@ def measure(question: Question, say: Say) -> tuple[Snapshot, SetName]:
 
 
 def _measured(question: Question, say: Say) -> tuple[Snapshot, SetName]:
+    if question.baseline_s is not None and not question.baseline_s[0] < question.baseline_s[1]:
+        start, end = question.baseline_s
+        raise InputError(f"the baseline {start:g} to {end:g} s needs start < end", "swap its ends")
     bench = Workbench()
     bench.listeners.message = say
     bench.listeners.failed = _raise

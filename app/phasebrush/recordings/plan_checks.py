@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -15,6 +16,9 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from phasebrush.recordings.recording import Recording
+
+ROUNDING = 1e-6
+"""Samples; ends that are whole but for rounding count as whole."""
 
 
 def whole_window(recording: Recording, cut: Cut) -> tuple[float, float]:
@@ -31,8 +35,11 @@ def whole_window(recording: Recording, cut: Cut) -> tuple[float, float]:
     if there is None:
         # Ends are rounded inwards to whole samples; a margin must not come out shorter for it.
         rate_hz = cut.resample_hz or recording.sfreq_hz
-        margin_s = cut.margin_s + 1 / rate_hz if cut.margin_s > 0 else 0.0
-        return cut.window_s[0] - margin_s, cut.window_s[1] + margin_s
+        start, end = cut.window_s[0] - cut.margin_s, cut.window_s[1] + cut.margin_s
+        if cut.margin_s > 0:
+            start = math.floor(start * rate_hz + ROUNDING) / rate_hz
+            end = math.ceil(end * rate_hz - ROUNDING) / rate_hz
+        return start, end
     half_s = 0.5 / recording.sfreq_hz
     if cut.window_s[0] < there[0] - half_s or cut.window_s[1] > there[1] + half_s:
         raise InputError(
