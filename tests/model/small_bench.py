@@ -20,6 +20,8 @@ if TYPE_CHECKING:
     from pathlib import Path
 
     from phasebrush.model.jobs import Outcome, Runner
+    from phasebrush.model.results import Snapshot
+    from phasebrush.model.state import State
 
 RATE_HZ = 100.0
 FEW_WAVELETS = TransformSettings(low_hz=5, high_hz=30, count=6, low_cycles=3, high_cycles=5)
@@ -91,6 +93,13 @@ def bench_with(trials: Trials | None = None, runner: Runner | None = None) -> Wo
     bench.take_trials(small_trials() if trials is None else trials)
     bench.flush()
     return bench
+
+
+def picked(state: State, snapshot: Snapshot, *wishes: intents.Intent) -> State:
+    """The record after some wishes, one after the other."""
+    for wish in wishes:
+        state = wish.change(state, snapshot)
+    return state
 
 
 class ManualRunner:

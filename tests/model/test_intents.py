@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from small_bench import FEW_WAVELETS, SPOT, bench_with, small_trials
+from small_bench import FEW_WAVELETS, SPOT, bench_with, picked, small_trials
 
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
@@ -16,25 +16,8 @@ from phasebrush.model.results import Snapshot
 from phasebrush.model.state import NOBODY, Shelved, State, Subset
 
 
-@pytest.fixture(scope="module")
-def snapshot() -> Snapshot:
-    """24 trials on the table; only read, never changed."""
-    return bench_with().snapshot
-
-
-@pytest.fixture
-def state(snapshot) -> State:
-    return snapshot.state
-
-
 def rows_of(subset: Subset, snapshot: Snapshot) -> list[int]:
     return np.sort(snapshot.rows.row_of_trial[np.flatnonzero(subset.mask)]).tolist()
-
-
-def picked(state: State, snapshot: Snapshot, *wishes: intents.Intent) -> State:
-    for wish in wishes:
-        state = wish.change(state, snapshot)
-    return state
 
 
 def test_a_brush_picks_the_trials_of_its_rows_both_ends_included(state, snapshot):

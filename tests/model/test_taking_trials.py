@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 
 import numpy as np
-from small_bench import bench_with, small_trials
+from small_bench import bench_with, picked, small_trials
 
 from phasebrush.core.trials import Cut
 from phasebrush.model import intents

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 import numpy as np
 import pytest
@@ -16,6 +16,9 @@ from small_bench import (
 from phasebrush.core.transform_settings import TransformSettings
 from phasebrush.model import intents
 from phasebrush.sample_files import sample_recordings
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 FEW = TransformSettings(low_hz=4, high_hz=30, count=5, low_cycles=3, high_cycles=5)
 LONG = replace(FEW, low_cycles=9.0)  # 2 sigma_t = 9 / (4 pi) = 0.72 s
