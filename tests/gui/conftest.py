@@ -10,8 +10,9 @@ from typing import TYPE_CHECKING
 
 import pytest
 from gui_trials import invented_trials
+from leftover_checks import leftovers, window_addresses
 from PySide6.QtTest import QTest
-from window_tools import OFFSCREEN, leftovers, qt_messages, settle, turn, window_addresses
+from window_tools import OFFSCREEN, qt_messages, settle, turn
 
 from phasebrush.gui import theme
 from phasebrush.gui.application import application

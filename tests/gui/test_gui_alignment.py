@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import pytest
 from PySide6.QtWidgets import QSplitter
-from window_tools import SHIFT, drag_rows, exact_area_in_window, seen, settle, time_views
+from window_eye import exact_area_in_window, seen, time_views
+from window_tools import SHIFT, drag_rows, settle
 
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.model import intents

@@ -12,20 +12,8 @@ from PySide6.QtWidgets import (
     QPushButton,
     QSpinBox,
 )
-from window_tools import (
-    CTRL,
-    SHIFT,
-    click,
-    drag_rows,
-    key,
-    lettered,
-    named,
-    settle,
-    strike,
-    trials_of,
-    trials_of_rows,
-    type_into,
-)
+from window_eye import lettered, named, trials_of, trials_of_rows
+from window_tools import CTRL, SHIFT, click, drag_rows, key, settle, strike, type_into
 
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.model import intents

@@ -5,9 +5,10 @@ from __future__ import annotations
 import threading
 
 import pytest
+from leftover_checks import leftovers, window_addresses
 from PySide6.QtCore import QObject, QThreadPool, QTimer, qWarning
 from PySide6.QtWidgets import QWidget
-from window_tools import leftovers, qt_messages, turn, wait_for, window_addresses
+from window_tools import qt_messages, turn, wait_for
 
 
 @pytest.fixture

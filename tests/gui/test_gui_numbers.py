@@ -11,7 +11,8 @@ from gui_trials import invented_trials
 from PySide6.QtCore import Qt
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QLabel
-from window_tools import cells, drag_rows, key, settle
+from window_eye import cells
+from window_tools import drag_rows, key, settle
 
 from phasebrush.core import phase
 from phasebrush.core.sort_keys import SortKey

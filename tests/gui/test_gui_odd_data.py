@@ -9,18 +9,8 @@ import pytest
 from gui_trials import invented_trials
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QAbstractItemView
-from window_tools import (
-    CTRL,
-    SHIFT,
-    click,
-    drag_rows,
-    key,
-    rows_drawn,
-    rows_meant,
-    settle,
-    time_views,
-    trials_of,
-)
+from window_eye import rows_drawn, rows_meant, time_views, trials_of
+from window_tools import CTRL, SHIFT, click, drag_rows, key, settle
 
 from phasebrush.core.sort_keys import KINDS, SortKey
 from phasebrush.model import intents

@@ -9,7 +9,8 @@ import weakref
 import pytest
 import shiboken6
 from PySide6.QtWidgets import QApplication, QWidget
-from window_tools import SHIFT, drag_rows, settle, time_views, turn
+from window_eye import time_views
+from window_tools import SHIFT, drag_rows, settle, turn
 
 from phasebrush.gui.bench import Bench
 from phasebrush.gui.dialogs.transform_dialog import TransformDialog

@@ -4,18 +4,8 @@ from __future__ import annotations
 
 import pytest
 from PySide6.QtCore import QPointF
-from window_tools import (
-    cells,
-    drag_rows,
-    move,
-    press,
-    release,
-    row_at,
-    rows_drawn,
-    rows_meant,
-    settle,
-    turn,
-)
+from window_eye import cells, rows_drawn, rows_meant
+from window_tools import drag_rows, move, press, release, row_at, settle, turn
 
 from phasebrush.core.spot import Spot
 from phasebrush.model import intents

@@ -6,15 +6,8 @@ import pytest
 from PySide6.QtCore import QEvent, QPointF, Qt
 from PySide6.QtGui import QMouseEvent
 from PySide6.QtWidgets import QApplication
-from window_tools import (
-    PLAIN,
-    drag,
-    key,
-    settle,
-    time_range,
-    time_views,
-    wheel,
-)
+from window_eye import time_range, time_views
+from window_tools import PLAIN, drag, key, settle, wheel
 
 VIEWS = ("average_plot", "trial_stack", "itc_map", "power_map", "itc_trace", "power_trace")
 

@@ -2,26 +2,18 @@
 
 from __future__ import annotations
 
-import gc
 import itertools
-import sys
-import threading
 import time
 from contextlib import contextmanager
 from typing import TYPE_CHECKING
 
-import numpy as np
-import shiboken6
 from PySide6.QtCore import (
     QCoreApplication,
     QEvent,
     QEventLoop,
     QPoint,
     QPointF,
-    QRect,
     Qt,
-    QThreadPool,
-    QTimer,
     QtMsgType,
     qInstallMessageHandler,
 )
@@ -29,16 +21,12 @@ from PySide6.QtGui import QMouseEvent, QWheelEvent
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
 
-from phasebrush.gui.pixel_image import PixelImage
-
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-    from PySide6.QtGui import QImage
     from PySide6.QtWidgets import QWidget
 
     from phasebrush.gui.main_window import MainWindow
-    from phasebrush.gui.time_plot import TimePlot
 
 LEFT = Qt.MouseButton.LeftButton
 PLAIN = Qt.KeyboardModifier.NoModifier
@@ -182,104 +170,6 @@ def drag_rows(view, first: int, last: int, held=PLAIN) -> None:
     drag(view.plot.viewport(), row_at(view, first), row_at(view, last), held=held)
 
 
-# -- eye --------------------------------------------------------------------------------------
-
-
-def trials_of(window: MainWindow, letter: str) -> list[int]:
-    """Trials of a subset, as the record has them."""
-    mask = window.workbench.state.subset(letter).mask
-    return np.flatnonzero(mask).tolist()
-
-
-def trials_of_rows(window: MainWindow, first: int, last: int) -> list[int]:
-    """Trials that lie in these rows, both ends included."""
-    return sorted(window.workbench.snapshot.rows.trial_of_row[first : last + 1].tolist())
-
-
-def rows_drawn(view, letter: str) -> list[int]:
-    """Rows that a view draws as picked."""
-    return np.flatnonzero(view.brush.picked.rows[letter]).tolist()
-
-
-def rows_meant(window: MainWindow, letter: str) -> list[int]:
-    """Rows at which the trials of a subset lie."""
-    rows = window.workbench.snapshot.rows.row_of_trial
-    return sorted(rows[trials_of(window, letter)].tolist())
-
-
-def area_in_window(plot: TimePlot) -> QRect:
-    """The plot area in pixels of the window."""
-    area = plot.plot_area().toAlignedRect()
-    return QRect(plot.viewport().mapTo(plot.window(), area.topLeft()), area.size())
-
-
-def exact_area_in_window(plot: TimePlot) -> tuple[float, float, float, float]:
-    """Left, top, right and bottom of the plot area in the window, not rounded."""
-    view_box = plot.getPlotItem().vb
-    corners = plot.viewportTransform().mapRect(view_box.sceneBoundingRect())
-    origin = plot.viewport().mapTo(plot.window(), QPoint(0, 0))
-    return (
-        corners.left() + origin.x(),
-        corners.top() + origin.y(),
-        corners.right() + origin.x(),
-        corners.bottom() + origin.y(),
-    )
-
-
-def pixels(image: QImage) -> np.ndarray:
-    """Colours of an image as 0xRRGGBB, shape (height, width)."""
-    image = image.convertToFormat(image.Format.Format_RGB32)
-    rows = np.frombuffer(image.constBits(), np.uint32).reshape(image.height(), -1)
-    return (rows[:, : image.width()] & 0xFFFFFF).copy()
-
-
-def seen(plot: TimePlot) -> np.ndarray:
-    """Colours of a plot area as they stand on screen."""
-    picture = plot.window().grab(area_in_window(plot)).toImage()
-    return pixels(picture)
-
-
-def time_range(view) -> tuple[float, float]:
-    """Time range that a plot shows."""
-    start, end = view.plot.getPlotItem().vb.viewRange()[0]
-    return start, end
-
-
-def cells(view) -> np.ndarray:
-    """Numbers of colours of the lowest picture in a plot, row 0 at the foot."""
-    items = view.plot.getPlotItem().items
-    found = sorted((i for i in items if isinstance(i, PixelImage)), key=lambda i: i.zValue())
-    assert found[0].isVisible()
-    return found[0].cells
-
-
-def time_views(window: MainWindow) -> tuple:
-    """Every view whose horizontal axis is time."""
-    views = window.docks.views
-    return (
-        window.bench.average,
-        window.bench.stack,
-        views.itc_map,
-        views.power_map,
-        views.itc_trace,
-        views.power_trace,
-    )
-
-
-def named(parent: QWidget, kind: type, words: str):
-    """The one control whose accessible name begins with these words."""
-    found = [w for w in parent.findChildren(kind) if w.accessibleName().startswith(words)]
-    assert len(found) == 1, f"{len(found)} controls named {words!r}"
-    return found[0]
-
-
-def lettered(parent: QWidget, kind: type, words: str):
-    """The one button with this label."""
-    found = [w for w in parent.findChildren(kind) if w.text() == words]
-    assert len(found) == 1, f"{len(found)} buttons labelled {words!r}"
-    return found[0]
-
-
 def strike(button: QWidget) -> None:
     """Click a button in its middle."""
     assert button.isVisible(), f"{button.accessibleName()!r} cannot be seen"
@@ -297,77 +187,8 @@ def type_into(field: QWidget, words: str, end: Qt.Key | None = Qt.Key.Key_Return
         key(window, end)
 
 
-# -- leftovers --------------------------------------------------------------------------------
-
-
-def leftovers(windows_before: set[int], threads_before: set[int]) -> list[str]:
-    """Name windows, threads and timers that outlived a test."""
-    turn()
-    found = _left_windows(windows_before) + _left_threads(threads_before)
-    if found:  # what only waits for the garbage collector is no leftover
-        for _ in range(2):
-            gc.collect()
-            turn()
-        found = _left_windows(windows_before) + _left_threads(threads_before)
-    return found + _left_timers()
-
-
-def window_addresses() -> set[int]:
-    """Addresses of the top-level windows."""
-    return {shiboken6.getCppPointer(w)[0] for w in QApplication.topLevelWidgets()}
-
-
-def _left_windows(before: set[int]) -> list[str]:
-    return [
-        f"window {type(w).__name__} {w.objectName()!r} {w.windowTitle()!r}"
-        for w in QApplication.topLevelWidgets()
-        if shiboken6.getCppPointer(w)[0] not in before and w.metaObject().className() != "QTipLabel"
-    ]
-
-
-def _left_threads(before: set[int]) -> list[str]:
-    # A thread of Qt's own pools that once ran Python stands as a dummy in the list for ever;
-    # whether such a pool still works is looked up in the pool.
-    dummy = threading._DummyThread  # type: ignore[attr-defined]
-    python = [
-        f"thread {thread.name!r} at {_where(thread)}"
-        for thread in threading.enumerate()
-        if thread.ident not in before and not isinstance(thread, dummy)
-    ]
-    pools = [QThreadPool.globalInstance(), *_living(QThreadPool)]
-    busy = [
-        f"pool with {p.activeThreadCount()} busy threads" for p in pools if p.activeThreadCount()
-    ]
-    return python + busy
-
-
-def _where(thread: threading.Thread) -> str:
-    frame = sys._current_frames().get(thread.ident or 0)
-    return (
-        f"{frame.f_code.co_filename}:{frame.f_lineno}" if frame is not None else "an unknown place"
-    )
-
-
-def _left_timers() -> list[str]:
-    return [
-        f"timer of {_owner(timer)} every {timer.interval()} ms"
-        for timer in _living(QTimer)
-        if timer.isActive()
-    ]
-
-
-def _owner(timer: QTimer) -> str:
-    names = []
-    above = timer.parent()
-    while above is not None:
-        names.append(above.objectName() or type(above).__name__)
-        above = above.parent()
-    return " in ".join(names) or "nobody"
-
-
-def _living(kind: type) -> list:
-    return [
-        thing
-        for thing in gc.get_objects()
-        if issubclass(type(thing), kind) and shiboken6.isValid(thing)
-    ]
+def pick_both(window: MainWindow) -> None:
+    """Brush eighteen rows for A and sixteen for B."""
+    drag_rows(window.bench.stack, 8, 25)
+    drag_rows(window.bench.stack, 35, 50, held=SHIFT)
+    settle(window)
