@@ -192,6 +192,14 @@ class Trials:
         """Voltages of one channel, shape (trials, samples), microvolts."""
         return self.data_uv[:, self.channel_index(name), :]
 
+    def same_events(self, other: Trials) -> bool:
+        """Whether these are the same events of the same recording, however they were cut."""
+        return (
+            self.source.path == other.source.path
+            and self.labels == other.labels
+            and np.array_equal(self.onset_samples, other.onset_samples)
+        )
+
     @property
     def numeric_columns(self) -> tuple[str, ...]:
         """Names of the event columns that hold numbers and so can order trials."""

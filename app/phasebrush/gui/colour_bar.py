@@ -39,6 +39,7 @@ class ColourBar(QWidget):
         self._range = (0.0, 1.0)
         self._table: NDArray[np.uint8] = np.zeros((256, 3), dtype=np.uint8)
         self._chance = float("nan")
+        self._mark: int | None = None
         self._look = LIGHT
         self.setFixedWidth(WIDTH)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
@@ -53,11 +54,14 @@ class ColourBar(QWidget):
     ) -> None:
         """Change the scale; NaN for no chance mark."""
         same = (low, high) == self._range and table is self._table and look is self._look
-        if same and (chance == self._chance or (np.isnan(chance) and np.isnan(self._chance))):
+        height = max(1, self.height() - self._top - self._bottom)
+        mark = None if np.isnan(chance) else round((chance - low) / (high - low) * height)
+        self._chance = chance
+        if same and mark == self._mark:
             return
-        self._range, self._table, self._look, self._chance = (low, high), table, look, chance
-        mark = "" if np.isnan(chance) else f"; chance (5 %) at {chance:.3f}"
-        self.setToolTip(f"{self._unit} from {low:g} to {high:g}{mark}")
+        self._range, self._table, self._look, self._mark = (low, high), table, look, mark
+        words = "" if mark is None else f"; chance (5 %) at {chance:.3f}"
+        self.setToolTip(f"{self._unit} from {low:g} to {high:g}{words}")
         self.update()
 
     def paintEvent(self, _event: QPaintEvent) -> None:

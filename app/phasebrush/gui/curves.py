@@ -27,6 +27,19 @@ DASH = (7.0, 11.0)
 OPACITY = 56
 
 
+def _at_pixels(x: Floats, y: Floats) -> tuple[Floats, Floats]:
+    """Points of a line no closer together than a pixel: means of those in between."""
+    spacing = (x[-1] - x[0]) / (x.size - 1)
+    together = int(1 // spacing) if spacing > 0 else 1
+    if together < 2:
+        return x, y
+    whole = x.size // together * together
+    return (
+        x[:whole].reshape(-1, together).mean(axis=1),
+        y[:whole].reshape(-1, together).mean(axis=1),
+    )
+
+
 class Line(pg.GraphicsObject):  # type: ignore[misc]
     """The line of one set of trials: all thin, A solid, B dashed.
 
@@ -42,6 +55,7 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
         self._x: Floats = np.zeros(0)
         self._y: Floats = np.zeros(0)
         self._box = QRectF()
+        self._roomy: QRectF | None = None
         self._pen = pen(LIGHT.subset(name))
         self._segments = PrimitiveArray(QLineF, 4)
         self.setZValue(LAYER[name])
@@ -68,7 +82,7 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
             box = QRectF(float(x[0]), low, float(x[-1] - x[0]), high - low)
         if box != self._box:
             self.prepareGeometryChange()
-            self._box = box
+            self._box, self._roomy = box, None
         self._x, self._y = x, y
         self.update()
 
@@ -79,11 +93,18 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
 
     def boundingRect(self) -> QRectF:
         """Box around the line with room for the pen, in the plot's units."""
-        across, up = self.pixelVectors()
-        if across is None or up is None:
-            return self._box
-        wide, high = 2 * abs(across.x()), 2 * abs(up.y())
-        return self._box.adjusted(-wide, -high, wide, high)
+        if self._roomy is None:
+            across, up = self.pixelVectors()
+            if across is None or up is None:
+                return self._box
+            wide, high = 2 * abs(across.x()), 2 * abs(up.y())
+            self._roomy = self._box.adjusted(-wide, -high, wide, high)
+        return self._roomy
+
+    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
+        """The plot shows another range or has another size: a pixel is something else now."""
+        self.prepareGeometryChange()
+        self._roomy = None
 
     def paint(
         self,
@@ -97,6 +118,7 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
         way = painter.worldTransform()
         x = self._x * way.m11() + way.dx()
         y = self._y * way.m22() + way.dy()
+        x, y = _at_pixels(x, y)
         drawn = np.isfinite(y[:-1]) & np.isfinite(y[1:])
         if self._dashed:
             drawn &= np.mod(x[:-1], DASH[1]) < DASH[0]
@@ -108,7 +130,7 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
         )  # fmt: skip
         painter.save()
         painter.resetTransform()
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing, on=True)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, on=self._name != "all")
         painter.setPen(self._pen)
         painter.drawLines(*self._segments.drawargs())
         painter.restore()
@@ -150,13 +172,17 @@ class Bands(PixelImage):
             return
         (left, right), (low, high) = area.x_range, area.y_range
         columns = left + (np.arange(area.width) + 0.5) / area.width * (right - left)
-        rows = low + (np.arange(area.height)[:, None] + 0.5) / area.height * (high - low)
+        rows = np.arange(area.height, dtype=np.int16)[:, None]
         picture = np.zeros((area.height, area.width), dtype=np.uint8)
-        outside = (columns < x[0]) | (columns > x[-1])
+        scale = area.height / (high - low)
         for number, (lower, upper) in edges.items():
-            inside = (rows >= np.interp(columns, x, lower)) & (rows <= np.interp(columns, x, upper))
-            inside[:, outside] = False
-            picture[inside] |= number
+            ends = [
+                np.clip((np.interp(columns, x, edge) - low) * scale, -1, area.height)
+                for edge in (lower, upper)
+            ]
+            first, last = (np.floor(end).astype(np.int16) for end in ends)
+            last[(columns < x[0]) | (columns > x[-1])] = -2
+            picture |= ((rows >= first) & (rows <= last)).view(np.uint8) * np.uint8(number)
         self.show_cells(picture, self._colours, QRectF(left, low, right - left, high - low))
 
 

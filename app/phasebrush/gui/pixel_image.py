@@ -14,6 +14,10 @@ if TYPE_CHECKING:
     from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 
+_PACKED: dict[bytes, NDArray[np.uint32]] = {}
+"""Colours by table: there are a handful in each look."""
+
+
 def packed(table: NDArray[np.uint8]) -> NDArray[np.uint32]:
     """A colour table as one number a colour, opacity multiplied in.
 
@@ -22,12 +26,14 @@ def packed(table: NDArray[np.uint8]) -> NDArray[np.uint32]:
     table : ndarray of uint8, shape (colours, 3 or 4)
         Red, green, blue, and opacity where there is a fourth column.
     """
-    wide = table.astype(np.uint32)
-    if table.shape[1] == 3:
-        return (0xFF000000 | (wide[:, 0] << 16) | (wide[:, 1] << 8) | wide[:, 2]).astype(np.uint32)
-    alpha = wide[:, 3]
-    red, green, blue = ((wide[:, i] * alpha + 127) // 255 for i in range(3))
-    return ((alpha << 24) | (red << 16) | (green << 8) | blue).astype(np.uint32)
+    key = table.tobytes()
+    if key not in _PACKED:
+        wide = table.astype(np.uint32)
+        alpha = wide[:, 3] if table.shape[1] == 4 else np.full(len(wide), 255, dtype=np.uint32)
+        red, green, blue = ((wide[:, i] * alpha + 127) // np.uint32(255) for i in range(3))
+        colours = (alpha << 24) | (red << 16) | (green << 8) | blue
+        _PACKED[key] = colours.astype(np.uint32)
+    return _PACKED[key]
 
 
 class PixelImage(pg.GraphicsObject):  # type: ignore[misc]

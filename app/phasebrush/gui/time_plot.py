@@ -86,7 +86,9 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         self.hovered: Callable[[Pointer | None], None] | None = None
         self.zoomed: Callable[[tuple[float, float] | None], None] | None = None
         self._down = False
+        self._ranges: list[tuple[float, float] | None] = [None, None]
         item = self.getPlotItem()
+        self.scene().setItemIndexMethod(self.scene().ItemIndexMethod.NoIndex)
         item.setMouseEnabled(x=False, y=False)
         item.hideButtons()
         item.vb.setDefaultPadding(0)
@@ -149,11 +151,15 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
 
     def set_time_range(self, start_s: float, end_s: float) -> None:
         """Show this time range."""
-        self.getPlotItem().vb.setXRange(start_s, end_s, padding=0)
+        if self._ranges[0] != (start_s, end_s):
+            self._ranges[0] = (start_s, end_s)
+            self.getPlotItem().vb.setXRange(start_s, end_s, padding=0)
 
     def set_value_range(self, low: float, high: float) -> None:
         """Show this range of values."""
-        self.getPlotItem().vb.setYRange(low, high, padding=0)
+        if self._ranges[1] != (low, high):
+            self._ranges[1] = (low, high)
+            self.getPlotItem().vb.setYRange(low, high, padding=0)
 
     def set_cursor_time(self, time_s: float) -> None:
         """Move the time cursor."""

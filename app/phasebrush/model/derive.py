@@ -246,14 +246,19 @@ def derive_traces(state: State, maps: Maps, limits: tuple[float, float]) -> Trac
     )
 
 
-def derive_dial(state: State, work: ChannelWork) -> Dial:
-    """Phases of the trials at the spot's centre."""
+def spot_phases(spot: Spot, coefficients: Coefficients) -> Floats:
+    """Phase of every trial at the spot's centre, rad; NaN for a coefficient of exactly 0."""
+    row, column = coefficients.point(spot.centre_hz, spot.centre_s)
+    values = coefficients.values[:, row, column]
+    return np.where(values != 0, np.angle(values), np.nan).astype(np.float64)
+
+
+def derive_dial(state: State, work: ChannelWork, angles: Floats) -> Dial:
+    """Phases of the trials at the spot's centre, as `spot_phases` gives them."""
     coefficients = work.coefficients
     row, column = coefficients.point(state.spot.centre_hz, state.spot.centre_s)
-    values = coefficients.values[:, row, column]
-    has_phase = values != 0
-    angles = np.where(has_phase, np.angle(values), np.nan).astype(np.float64)
-    n_trials = len(values)
+    has_phase = np.isfinite(angles)
+    n_trials = len(angles)
     masks: dict[SetName, NDArray[np.bool_]] = {
         "A": state.a.mask_of(n_trials) & has_phase,
         "B": state.b.mask_of(n_trials) & has_phase,

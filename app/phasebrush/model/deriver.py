@@ -16,6 +16,7 @@ from phasebrush.model.stale import Result, in_order
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
+    from phasebrush.core.spot import Spot
     from phasebrush.core.trials import Trials
     from phasebrush.model.state import State
 
@@ -40,6 +41,7 @@ class Deriver:
         self._ask_transform = ask_transform
         self._work: ChannelWork | None = None
         self._asked: ChannelQuestion | None = None
+        self._phases: tuple[Spot, NDArray[np.float64]] | None = None
         self._baseline_s: tuple[float, float] | None = None
         self._averages: dict[SetName, Average] = {}
         self._maps: dict[SetName, SetMaps] = {}
@@ -100,6 +102,7 @@ class Deriver:
             return False
         self._asked = None
         self._work = work
+        self._phases = None
         self._averages.clear()
         self._maps.clear()
         return True
@@ -118,10 +121,14 @@ class Deriver:
 
     def _trials(self, state: State) -> bool:
         trials = self._find_trials(state) if state.recording else None
-        if trials is not self.snapshot.trials:
+        before = self.snapshot.trials
+        if trials is not before:
             self._work = None
             self._asked = None
-            self.snapshot = Snapshot(state=state, trials=trials)
+            if before is None or trials is None or not before.same_events(trials):
+                self.snapshot = Snapshot(state=state)
+            # The same trials cut anew: what is drawn stays until the new cut is transformed.
+            self.snapshot = replace(self.snapshot, trials=trials, coefficients=None)
         return trials is not None
 
     def _channel(self, state: State) -> bool:
@@ -167,7 +174,10 @@ class Deriver:
     def _subsets(self, state: State) -> bool:
         if self._work is None:
             return False
-        for name, mask in self.masks(state, len(self._work.question.trials)).items():
+        masks = self.masks(state, len(self._work.question.trials))
+        for name, mask in masks.items():
+            if name == "all":
+                continue
             sums = self._work.sums[name]
             before = sums.frozen()
             sums.set_members(mask)
@@ -222,7 +232,11 @@ class Deriver:
     def _dial(self, state: State) -> bool:
         if self._work is None:
             return False
-        self.snapshot = replace(self.snapshot, dial=derive.derive_dial(state, self._work))
+        if self._phases is None or self._phases[0] != state.spot:
+            angles = derive.spot_phases(state.spot, self._work.coefficients)
+            self._phases = (state.spot, angles)
+        dial = derive.derive_dial(state, self._work, self._phases[1])
+        self.snapshot = replace(self.snapshot, dial=dial)
         return True
 
     def _readout(self, state: State) -> bool:

@@ -71,8 +71,7 @@ class AverageView(View):
                 line.clear_points()
             self.bands.hide()
             return
-        if self.plot.getPlotItem().vb.viewRange()[1] != list(averages.limit_uv):
-            self.plot.set_value_range(*averages.limit_uv)
+        self.plot.set_value_range(*averages.limit_uv)
         for name, line in self.lines.items():
             average = averages.of.get(name)
             if average is None:

@@ -5,14 +5,12 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
-import pyqtgraph as pg
-from PySide6.QtGui import QColor
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
-from phasebrush.gui import theme
+from phasebrush.gui.chance_levels import ChanceLevels
 from phasebrush.gui.colour_bar import WIDTH
 from phasebrush.gui.curves import Line
-from phasebrush.gui.time_plot import Margins, Pointer, TimePlot, pen
+from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
 from phasebrush.gui.view import View
 from phasebrush.model.intents import move_cursor, zoom_time
 from phasebrush.model.results import SET_NAMES
@@ -106,11 +104,8 @@ class ItcTrace(TraceView):
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__("itc_trace", "ITC", parent)
-        self._chances = {name: pg.InfiniteLine(0.0, angle=0, movable=False) for name in SET_NAMES}
-        self.plot.add(*self._chances.values())
-        self._label = pg.TextItem("", anchor=(0, 1))
-        self._label.setFont(theme.font(7.5))
-        self.plot.add(self._label)
+        self.chances = ChanceLevels()
+        self.plot.add(self.chances)
         self.setAccessibleName("ITC over time in the spot's band")
         self.setToolTip(
             "ITC averaged over the frequencies of the spot's band. The horizontal lines are what "
@@ -127,25 +122,16 @@ class ItcTrace(TraceView):
         if traces is not None:
             self.plot.set_value_range(0.0, traces.itc_limit * 1.04)
         of = traces.of if traces is not None else {}
-        for name, line in self._chances.items():
-            trace = of.get(name)
-            line.setVisible(trace is not None and 0 < trace.chance_itc < 1)
-            if trace is not None and line.value() != trace.chance_itc:
-                line.setValue(trace.chance_itc)
         drawn = next((of[name] for name in ("A", "B", "all") if name in of), None)
-        self._label.setVisible(drawn is not None)
-        if drawn is not None and traces is not None:
-            words = f"chance 5 %, n {drawn.n}"
-            if words != self._label.toPlainText():
-                self._label.setText(words, color=QColor(self.look.muted))
-            start = self.plot.getPlotItem().vb.viewRange()[0][0]
-            self._label.setPos(start, drawn.chance_itc)
+        self.chances.setVisible(drawn is not None)
+        if drawn is not None:
+            levels = {name: trace.chance_itc for name, trace in of.items()}
+            self.chances.show_levels(levels, f"chance 5 %, n {drawn.n}", drawn.chance_itc)
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
         super().set_look(look)
-        for name, line in self._chances.items():
-            line.setPen(pen(look.muted if name == "all" else look.subset(name), dotted=True))
+        self.chances.set_look(look)
 
     def words(self, value: float) -> str:
         """ITC in words."""
