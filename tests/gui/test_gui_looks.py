@@ -5,6 +5,8 @@ from __future__ import annotations
 import numpy as np
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QColor, QPalette
+from PySide6.QtWidgets import QApplication
 from window_eye import pixels, plots, seen
 from window_tools import CTRL, key, pick_both, settle
 
@@ -48,6 +50,22 @@ def test_the_window_turns_dark_and_light_again(window):
     assert (dark == number(DARK.panel)).mean() > 0.2
     assert (dark == number(LIGHT.panel)).mean() < 0.001, "light ground shines through the dark"
     assert (light != again).mean() < 0.0005, "not the same after dark and light again"
+
+
+@pytest.mark.parametrize("look", [DARK, LIGHT], ids=["dark", "light"])
+def test_what_qt_itself_draws_has_the_colours_too(window, look):
+    """Popups, tips and selections take them from the palette."""
+    window.set_look(look)
+    palette = QApplication.palette()
+    roles = {
+        QPalette.ColorRole.Window: look.ground,
+        QPalette.ColorRole.Base: look.panel,
+        QPalette.ColorRole.Text: look.text,
+        QPalette.ColorRole.ToolTipBase: look.panel,
+        QPalette.ColorRole.Highlight: look.focus,
+    }
+    for role, colour in roles.items():
+        assert palette.color(role) == QColor(colour), role
 
 
 def test_the_ground_of_each_plot_is_the_panel_colour(window):
