@@ -7,6 +7,7 @@ import pytest
 
 from phasebrush.core.footprint import Footprint
 from phasebrush.core.morlet import transform
+from phasebrush.core.sort_key import KeyName
 from phasebrush.core.sort_keys import (
     KINDS,
     KeyInputs,
@@ -49,8 +50,9 @@ def inputs(make_trials):
 def test_every_kind_says_what_it_is():
     assert list(KINDS) == [
         "recording-order", "response-time", "column", "band-power", "phase", "spot-power",
-        "amplitude",
+        "alignment", "amplitude", "latency", "likeness",
     ]  # fmt: skip
+    assert list(KINDS) == list(KeyName)
     for name, kind in KINDS.items():
         assert kind.kind == name
         assert kind.title
@@ -58,8 +60,13 @@ def test_every_kind_says_what_it_is():
         assert not (kind.uses_spot and kind.uses_band)
     assert [name for name, kind in KINDS.items() if kind.is_angle] == ["phase"]
     assert {name for name, kind in KINDS.items() if kind.needs_coefficients} == {
-        "band-power", "phase", "spot-power",
+        "band-power", "phase", "spot-power", "alignment",
     }  # fmt: skip
+    assert [name for name, kind in KINDS.items() if kind.uses_sign] == ["latency"]
+    assert [name for name, kind in KINDS.items() if kind.uses_others] == ["alignment", "likeness"]
+    assert [name for name, kind in KINDS.items() if not kind.uses_channel] == [
+        "recording-order", "response-time", "column",
+    ]  # fmt: skip
 
 
 def test_recording_order_response_time_and_column(inputs):
@@ -182,6 +189,14 @@ def test_trials_too_short_for_a_band_are_told_so(make_trials):
         (SortKey("phase"), "phase at 10.2 Hz, 0.2 s", "rad"),
         (SortKey("spot-power"), "power at 8-13 Hz, 0.1 to 0.3 s", "dB re 1 µV²"),
         (SortKey("amplitude", window_s=(0.1, 0.15)), "mean amplitude 0.1 to 0.15 s", "µV"),
+        (SortKey("alignment"), "alignment at 10.2 Hz, 0.2 s", ""),
+        (SortKey("latency", window_s=(0.1, 0.3)), "latency of the positive peak 0.1 to 0.3 s", "s"),
+        (
+            SortKey("latency", window_s=(0.1, 0.3), sign=-1),
+            "latency of the negative peak 0.1 to 0.3 s",
+            "s",
+        ),
+        (SortKey("likeness", window_s=(0, 0.3)), "likeness to the average 0 to 0.3 s", "r"),
         (SortKey("response-time"), "response time", "s"),
         (SortKey("column", column="difficulty"), "difficulty", ""),
         (SortKey("recording-order"), "recording order", ""),
@@ -208,6 +223,9 @@ def test_footprints_of_the_other_keys():
     spot = footprint(SortKey("spot-power"), SPOT, SETTINGS)
     point = footprint(SortKey("phase"), SPOT, SETTINGS)
     whole = footprint(SortKey("amplitude", window_s=(0.1, 0.2)), SPOT, SETTINGS)
+    assert footprint(SortKey("alignment"), SPOT, SETTINGS) == point
+    for kind in ("latency", "likeness"):
+        assert footprint(SortKey(kind, window_s=(0.1, 0.2)), SPOT, SETTINGS) == whole
     assert spot.start_s < point.start_s < 0.2 < point.end_s < spot.end_s
     assert spot.low_hz < point.low_hz < 10.2 < point.high_hz < spot.high_hz
     assert whole.low_hz == 0.0
@@ -235,6 +253,7 @@ def test_order_is_stable_and_missing_values_come_last():
         ({"band_hz": (0.0, 8.0)}, "0 < low <= high"),
         ({"window_s": (0.5, 0.0)}, "start <= end"),
         ({"window_s": (float("nan"), 0.0)}, "finite"),
+        ({"sign": 0}, "sign of a peak is 0; it needs 1 or -1"),
     ],
 )
 def test_keys_that_break_a_rule_are_refused(wrong, message):

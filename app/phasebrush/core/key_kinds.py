@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from phasebrush.core import key_against_others as against_others
 from phasebrush.core import key_values as compute
 from phasebrush.core.sort_key import ALPHA_HZ, KeyName
 
@@ -43,8 +44,11 @@ class KeyKind:
     is_angle : bool
         Whether values are angles in radians, so that the largest and the smallest are
         neighbours.
-    needs_coefficients, uses_band, uses_window, uses_spot : bool
+    needs_coefficients, uses_band, uses_window, uses_spot, uses_sign : bool
         What the values depend on.
+    uses_others : bool
+        Whether a trial's value depends on the other used trials, so that it changes when
+        trials are excluded.
     """
 
     kind: str
@@ -59,6 +63,13 @@ class KeyKind:
     uses_band: bool = False
     uses_window: bool = False
     uses_spot: bool = False
+    uses_sign: bool = False
+    uses_others: bool = False
+
+    @property
+    def uses_channel(self) -> bool:
+        """Whether the values are read from the data of a channel."""
+        return self.needs_coefficients or self.uses_window
 
 
 def _band(low_hz: float, high_hz: float) -> str:
@@ -76,6 +87,11 @@ def _band_power_words(key: SortKey, _spot: Spot) -> str:
 
 def _phase_words(_key: SortKey, spot: Spot) -> str:
     return f"phase at {spot.centre_hz:.3g} Hz, {spot.centre_s:.3g} s"
+
+
+def _latency_words(key: SortKey, _spot: Spot) -> str:
+    name = "positive" if key.sign > 0 else "negative"
+    return f"latency of the {name} peak {_window(*key.window_s)}"
 
 
 def _spot_power_words(_key: SortKey, spot: Spot) -> str:
@@ -132,7 +148,7 @@ KINDS: dict[str, KeyKind] = {
             definition="Angle of the coefficient at the spot's centre, in radians; 0 is the peak "
             "of a cosine.",
             values=compute.spot_phase,
-            footprint=compute.phase_footprint,
+            footprint=compute.centre_footprint,
             words=_phase_words,
             is_angle=True,
             needs_coefficients=True,
@@ -151,6 +167,19 @@ KINDS: dict[str, KeyKind] = {
             uses_spot=True,
         ),
         KeyKind(
+            kind=KeyName.ALIGNMENT,
+            title="alignment",
+            unit="",
+            definition="Cosine of the angle between the trial's phase at the spot's centre and the "
+            "mean phase of the other used trials, from -1 (opposite) to 1 (aligned).",
+            values=against_others.alignment,
+            footprint=compute.centre_footprint,
+            words=lambda _key, spot: f"alignment at {spot.centre_hz:.3g} Hz, {spot.centre_s:.3g} s",
+            needs_coefficients=True,
+            uses_spot=True,
+            uses_others=True,
+        ),
+        KeyKind(
             kind=KeyName.AMPLITUDE,
             title="mean amplitude",
             unit="µV",
@@ -159,6 +188,30 @@ KINDS: dict[str, KeyKind] = {
             footprint=compute.window_footprint,
             words=lambda key, _spot: f"mean amplitude {_window(*key.window_s)}",
             uses_window=True,
+        ),
+        KeyKind(
+            kind=KeyName.LATENCY,
+            title="peak latency",
+            unit="s",
+            definition="Time from the event to the largest positive or negative peak in a window, "
+            "in seconds; refined between samples unless the peak lies at the window's edge.",
+            values=compute.latency,
+            footprint=compute.window_footprint,
+            words=_latency_words,
+            uses_window=True,
+            uses_sign=True,
+        ),
+        KeyKind(
+            kind=KeyName.LIKENESS,
+            title="likeness to the average",
+            unit="r",
+            definition="Pearson correlation, in a window, of the trial with the average of the "
+            "other used trials.",
+            values=against_others.likeness,
+            footprint=compute.window_footprint,
+            words=lambda key, _spot: f"likeness to the average {_window(*key.window_s)}",
+            uses_window=True,
+            uses_others=True,
         ),
     )
 }

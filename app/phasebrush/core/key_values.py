@@ -52,17 +52,49 @@ def column(key: SortKey, inputs: KeyInputs) -> Floats:
 
 def amplitude(key: SortKey, inputs: KeyInputs) -> Floats:
     """Mean voltage in the window, microvolts, both ends included."""
+    voltages = inputs.trials.channel_uv(inputs.channel)[:, window_samples(key, inputs)]
+    return np.asarray(voltages.mean(axis=1, dtype=np.float64))
+
+
+def latency(key: SortKey, inputs: KeyInputs) -> Floats:
+    """Time of the largest (sign 1) or most negative (sign -1) sample of the window, seconds.
+
+    A sample between two others of the window is refined by the vertex of the parabola through
+    the three; at the window's edge the sample itself is given, as the true peak may lie
+    outside. Of equal samples the first one counts, so that a flat trial has the window's start.
+    """
+    samples = window_samples(key, inputs)
+    signed = key.sign * inputs.trials.channel_uv(inputs.channel)[:, samples].astype(np.float64)
+    rows, peaks = np.arange(len(signed)), signed.argmax(axis=1)
+    last = signed.shape[1] - 1
+    before = signed[rows, np.maximum(peaks - 1, 0)]
+    after = signed[rows, np.minimum(peaks + 1, last)]
+    bend = before - 2.0 * signed[rows, peaks] + after
+    refined = (peaks > 0) & (peaks < last) & (bend < 0.0)
+    shift = np.zeros(len(signed))
+    np.divide(0.5 * (before - after), bend, out=shift, where=refined)
+    times_s = inputs.trials.times_s[samples]
+    return np.asarray(times_s[peaks] + shift / inputs.trials.sfreq_hz)
+
+
+def window_samples(key: SortKey, inputs: KeyInputs) -> slice:
+    """Find the samples of the key's window, both ends included to half a sample.
+
+    Raises
+    ------
+    InputError
+        If there is none.
+    """
     trials = inputs.trials
     half = 0.5 / trials.sfreq_hz
     start, end = key.window_s
-    inside = (trials.times_s >= start - half) & (trials.times_s <= end + half)
-    if not inside.any():
+    inside = np.flatnonzero((trials.times_s >= start - half) & (trials.times_s <= end + half))
+    if not inside.size:
         raise InputError(
             f"no sample lies in the window {_window_words(key.window_s)}",
             f"choose a window within {trials.times_s[0]:g} to {trials.times_s[-1]:g} s",
         )
-    voltages = trials.channel_uv(inputs.channel)[:, inside]
-    return np.asarray(voltages.mean(axis=1, dtype=np.float64))
+    return slice(int(inside[0]), int(inside[-1]) + 1)
 
 
 def band_power(key: SortKey, inputs: KeyInputs) -> Floats:
@@ -96,14 +128,25 @@ def spot_power(_key: SortKey, inputs: KeyInputs) -> Floats:
 
 def spot_phase(_key: SortKey, inputs: KeyInputs) -> Floats:
     """Angle of X at the spot's centre, radians in (-pi, pi]; NaN where X is exactly 0."""
+    values = at_centre(inputs)
+    angles = np.angle(values)
+    angles[angles == -np.pi] = np.pi  # a negative real number with -0 as its imaginary part
+    return np.where(values == 0.0, np.nan, angles)
+
+
+def at_centre(inputs: KeyInputs) -> NDArray[np.complex128]:
+    """Take X at the grid point nearest to the spot's centre, complex128 of shape (N,).
+
+    Raises
+    ------
+    InputError
+        If that point is not valid.
+    """
     coefficients, spot = inputs.needed_coefficients, inputs.spot
     freq, time = coefficients.point(spot.centre_hz, spot.centre_s)
     if not coefficients.valid[freq, time]:
         _refuse_spot(coefficients, spot)
-    values = coefficients.values[:, freq, time].astype(np.complex128)
-    angles = np.angle(values)
-    angles[angles == -np.pi] = np.pi  # a negative real number with -0 as its imaginary part
-    return np.where(values == 0.0, np.nan, angles)
+    return coefficients.values[:, freq, time].astype(np.complex128)
 
 
 def mean_power_db(values: NDArray[np.complex64], box: NDArray[np.bool_]) -> Floats:
@@ -147,8 +190,8 @@ def spot_footprint(_key: SortKey, spot: Spot, settings: TransformSettings) -> Fo
     return widened(settings, (spot.low_hz, spot.high_hz), (spot.start_s, spot.end_s))
 
 
-def phase_footprint(_key: SortKey, spot: Spot, settings: TransformSettings) -> Footprint:
-    """Widen the spot's centre, where the phase is read."""
+def centre_footprint(_key: SortKey, spot: Spot, settings: TransformSettings) -> Footprint:
+    """Widen the spot's centre, where phase and alignment are read."""
     freq_hz = float(settings.freqs_hz[settings.nearest(spot.centre_hz)])
     return widened(settings, (freq_hz, freq_hz), (spot.centre_s, spot.centre_s))
 
