@@ -21,8 +21,9 @@ if TYPE_CHECKING:
 
     Floats = NDArray[np.float64]
 
-ROUNDING = 1e-12
-"""A sum this small against the lengths of its terms is a 0 that rounding has blurred."""
+ROUNDING = 1e-6
+"""A sum this small against the lengths of its terms is a 0 that rounding has blurred: phases and
+voltages come in single precision, which is good to 1e-7."""
 
 FEWEST_SAMPLES = 3
 """Two samples always correlate with r = 1 or -1."""
