@@ -247,3 +247,5 @@ def test_the_seed_decides_and_steps_do_not_hang_on_each_other(rng):
     changed = np.where(steps == 2, 1j, values)
     after = steps_at(changed, data, steps, key_values=key)
     assert [s.ppc_band for s in first][:2] == [s.ppc_band for s in after][:2]
+    twins = steps_at(np.tile(values[:10], 3), data, steps, key_values=key)
+    assert len({s.ppc_band for s in twins}) == 3  # each has draws of its own
