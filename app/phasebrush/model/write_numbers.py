@@ -3,14 +3,13 @@
 from __future__ import annotations
 
 import csv
-import os
-import tempfile
 from pathlib import Path
 from typing import IO, TYPE_CHECKING, Any
 
 import numpy as np
 
 from phasebrush.errors import InputError
+from phasebrush.model.swap_in import swap_in
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -38,33 +37,7 @@ def write_numbers(path: str | Path, numbers: dict[str, NDArray[Any]]) -> None:
         raise InputError(
             f"the ending {target.suffix or '(none)'} is not known", "name it .npz or .csv", target
         )
-    try:
-        _swap_in(target, lambda stream: writer(stream, numbers))
-    except OSError as error:
-        raise InputError(
-            f"could not be written ({error.strerror or 'no reason given'})",
-            "choose a folder that can be written and has room",
-            target,
-        ) from error
-
-
-def _swap_in(target: Path, write: Callable[[IO[bytes]], None]) -> None:
-    handle, name = tempfile.mkstemp(prefix=f".{target.stem}-", suffix=".part", dir=target.parent)
-    beside = Path(name)
-    try:
-        with os.fdopen(handle, "wb") as stream:
-            write(stream)
-            stream.flush()
-            os.fsync(stream.fileno())
-        if os.name == "posix":
-            # mkstemp makes files that only the owner reads; results follow the usual rule.
-            mask = os.umask(0)
-            os.umask(mask)
-            beside.chmod(0o666 & ~mask)
-        beside.replace(target)
-    except BaseException:
-        beside.unlink(missing_ok=True)
-        raise
+    swap_in(target, lambda stream: writer(stream, numbers))
 
 
 def _write_npz(stream: IO[bytes], numbers: dict[str, NDArray[Any]]) -> None:
