@@ -66,6 +66,8 @@ LAYOUT: tuple[Tool | str, ...] = (
     Tool("keys", "Keys", "Keys and gestures", ("F1",), "keys"),
     Tool("about", "About", "About, licence and caution", (), "about"),
     Tool("thirds", "Thirds", "Highest third to A, lowest third to B", ("T",)),
+    Tool("quarters", "Quarters", "Highest quarter to A, lowest quarter to B", ("Q",)),
+    Tool("suspects", "Suggest", "Suggest trials to exclude", ("Ctrl+E",)),
     Tool("halves", "Halves", "Upper half to A, lower half to B", ("H",)),
     Tool("swap", "Swap", "Swap A and B", ("X",)),
     Tool("show_all", "Maps show all", "Maps show all trials", ("1",)),

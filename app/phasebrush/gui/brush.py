@@ -52,8 +52,8 @@ class _Grip:
 class BrushGesture:
     """Turns presses and moves into row ranges.
 
-    A drag picks A; with Shift B; Ctrl adds, Alt takes away. A drag inside a block moves it,
-    a drag at its edge resizes it.
+    A drag picks A; with Shift B; Ctrl adds, Alt takes away, both keep the common. A drag
+    inside a block moves it, a drag at its edge resizes it.
 
     Parameters
     ----------
@@ -68,15 +68,17 @@ class BrushGesture:
         self._grip: _Grip | None = None
         self._before: NDArray[np.bool_] = np.zeros(0, dtype=bool)
         self._last: tuple[int, int] | None = None
+        self._usable: NDArray[np.bool_] = np.zeros(0, dtype=bool)
 
     @property
     def active(self) -> bool:
         """Whether a drag is under way."""
         return self._grip is not None
 
-    def set_picked(self, picked: Picked, n_rows: int) -> None:
-        """Take over which rows are in A and B."""
+    def set_picked(self, picked: Picked, n_rows: int, n_excluded: int = 0) -> None:
+        """Take over which rows are in A and B; the first rows are excluded ones."""
         self.picked, self.n_rows = picked, n_rows
+        self._usable = np.arange(n_rows) >= n_excluded
 
     def target(self, pointer: Pointer, rows_per_pixel: float) -> tuple[str, Letter] | None:
         """What a press here would take hold of: ``("edge" or "block", letter)``, or None."""
@@ -98,7 +100,7 @@ class BrushGesture:
         if self.n_rows == 0:
             return None
         row = self._row(pointer.y)
-        how: How = "add" if pointer.ctrl else "take away" if pointer.alt else "replace"
+        how = pointer.how
         letter: Letter = "B" if pointer.shift else "A"
         block = None
         anchor = row
@@ -157,7 +159,13 @@ class BrushGesture:
         mask = np.zeros(self.n_rows, dtype=bool)
         mask[reach[0] : reach[1] + 1] = True
         if grip.how != "replace" and len(self._before) == self.n_rows:
-            mask = self._before | mask if grip.how == "add" else self._before & ~mask
-        elif grip.how == "take away":
+            ways = {
+                "add": self._before | mask,
+                "take away": self._before & ~mask,
+                "keep common": self._before & mask,
+            }
+            mask = ways[grip.how]
+        elif grip.how in {"take away", "keep common"}:
             mask[:] = False
+        mask &= self._usable
         self.picked.rows[grip.letter] = mask

@@ -9,8 +9,6 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
 from PySide6.QtWidgets import (
     QApplication,
-    QDialog,
-    QFileDialog,
     QMainWindow,
     QMenu,
     QStackedWidget,
@@ -21,10 +19,8 @@ from PySide6.QtWidgets import (
 from phasebrush.errors import PersonError
 from phasebrush.gui import theme
 from phasebrush.gui.actions import Actions
+from phasebrush.gui.asking import Asking
 from phasebrush.gui.bench import Bench
-from phasebrush.gui.dialogs.cut_dialog import CutDialog
-from phasebrush.gui.dialogs.transform_dialog import TransformDialog
-from phasebrush.gui.dialogs.words import about_dialog, keys_dialog
 from phasebrush.gui.docks import Docks
 from phasebrush.gui.foot import Foot, MessageBar
 from phasebrush.gui.frame_clock import FrameClock
@@ -34,7 +30,7 @@ from phasebrush.gui.welcome import SAMPLES, Welcome
 from phasebrush.look.tokens import DARK, LIGHT, Look
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
-from phasebrush.model.state import MapsShow, Shelved
+from phasebrush.model.state import Shelved
 from phasebrush.sample_files import default_sample, sample_recordings
 
 if TYPE_CHECKING:
@@ -42,12 +38,11 @@ if TYPE_CHECKING:
 
     from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
 
-    from phasebrush.core.trials import Cut
     from phasebrush.model.results import Snapshot
+    from phasebrush.model.state import MapsShow
     from phasebrush.model.workbench import Workbench
-    from phasebrush.recordings import Recording
 
-FILES = "Recordings (*.fif *.fif.gz *.edf *.bdf *.vhdr *.npz);;All files (*)"
+
 NARROW = 1180
 TITLES = frozenset(
     {Result.TRIALS, Result.CHANNEL, Result.KEY, Result.STACK, Result.SUBSETS, Result.MAPS,
@@ -79,11 +74,11 @@ class MainWindow(QMainWindow):
         self.workbench = workbench
         self.look = look
         self._settings = settings
-        self._open_dialogs: list[QDialog] = []
         self._folded: list[QWidget] = []
         self._arranged = False
         self._closed = False
         self.clock = FrameClock(self._flush, self)
+        self.asking = Asking(self)
         self.actions_ = Actions(self, self._slots())
         self.docks = Docks(self)
         self.bench = Bench()
@@ -93,7 +88,7 @@ class MainWindow(QMainWindow):
         )
         self.setStatusBar(self.foot)
         self._pages = QStackedWidget()
-        self._pages.addWidget(Welcome(sample_recordings(), self.open_path, self._choose_file))
+        self._pages.addWidget(Welcome(sample_recordings(), self.open_path, self.asking.choose_file))
         self._pages.addWidget(self.bench)
         centre = QWidget()
         layout = QVBoxLayout(centre)
@@ -121,19 +116,21 @@ class MainWindow(QMainWindow):
             name: partial(self._maps_show, which) for name, which in show.items()
         }
         return slots | {
-            "open": self._choose_file,
-            "open_folder": self._choose_folder,
+            "open": self.asking.choose_file,
+            "open_folder": self.asking.choose_folder,
             "samples": self._open_samples,
-            "cut": self.cut_dialog,
-            "transform": self.transform_dialog,
+            "cut": self.asking.cut_dialog,
+            "transform": self.asking.transform_dialog,
             "undo": self.workbench.undo,
             "redo": self.workbench.redo,
             "panels": self._panels_menu,
-            "picture": self._choose_picture,
+            "picture": self.asking.choose_picture,
             "theme": self.toggle_look,
-            "keys": self._keys,
-            "about": self._about,
+            "keys": self.asking.keys,
+            "about": self.asking.about,
             "thirds": self._thirds,
+            "quarters": self._quarters,
+            "suspects": self.asking.suspects_dialog,
             "halves": self._halves,
             "swap": self._swap,
             "whole": self._whole,
@@ -148,14 +145,15 @@ class MainWindow(QMainWindow):
         listeners.jobs = self.foot.show_jobs
         listeners.message = self.message_bar.say
         listeners.failed = self._tell_fault
-        listeners.recording_read = self._ask_cut
+        listeners.recording_read = self.asking.ask_cut
         for view in self.board.views:
             view.ways = Ways(
-                workbench.do,
-                workbench.end_gesture,
-                workbench.abandon_gesture,
-                self.foot.hint,
-                self.board.catch_up,
+                do=workbench.do,
+                end_gesture=workbench.end_gesture,
+                abandon_gesture=workbench.abandon_gesture,
+                hint=self.foot.hint,
+                row_menu=self.asking.open_row_menu,
+                missed=self.board.catch_up,
             )
         self.docks.views.recordings.open_listed = workbench.open_listed
         for which, button in self.docks.map_buttons.items():
@@ -184,7 +182,7 @@ class MainWindow(QMainWindow):
         title = f"{trials.source.title} · Phasebrush" if trials is not None else "Phasebrush"
         if title != self.windowTitle():
             self.setWindowTitle(title)
-        for name in ("cut", "transform", "thirds", "halves", "swap"):
+        for name in ("cut", "transform", "suspects", "thirds", "halves", "quarters", "swap"):
             self.actions_[name].setEnabled(trials is not None)
 
     def _name_step(self, action: str, step: str) -> None:
@@ -220,53 +218,8 @@ class MainWindow(QMainWindow):
             self.workbench.do(intents.shelve(tuple(Shelved(*line) for line in names)))
         self.workbench.open(path, ask=ask)
 
-    def _choose_file(self) -> None:
-        path, _kind = QFileDialog.getOpenFileName(self, "Open a recording", "", FILES)
-        if path:
-            self.open_path(path, ask=True)
-
-    def _choose_folder(self) -> None:
-        path = QFileDialog.getExistingDirectory(self, "Open a folder of recordings")
-        if path:
-            self.open_path(path)
-
     def _open_samples(self) -> None:
         self.open_path(str(default_sample()))
-
-    def _ask_cut(self, recording: Recording, how: Cut) -> None:
-        dialog = CutDialog(recording, how, self)
-        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        dialog.accepted.connect(lambda: self.workbench.cut(recording, dialog.cut()))
-        self._show_dialog(dialog)
-
-    def cut_dialog(self) -> None:
-        """Ask how to cut the open recording anew."""
-        self.workbench.ask_cut()
-
-    def transform_dialog(self) -> None:
-        """Ask for other transform settings."""
-        snapshot = self.workbench.snapshot
-        if snapshot.trials is None:
-            return
-        state = self.workbench.state
-        dialog = TransformDialog(
-            state.transform, state.baseline_s, snapshot.trials.sfreq_hz / 2, self
-        )
-        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        dialog.accepted.connect(partial(self._take_transform, dialog))
-        self._show_dialog(dialog)
-
-    def _take_transform(self, dialog: TransformDialog) -> None:
-        self.workbench.do(intents.transform_with(dialog.settings(), dialog.baseline_s()))
-
-    def _show_dialog(self, dialog: QDialog) -> None:
-        self._open_dialogs.append(dialog)
-        dialog.finished.connect(partial(self._dialog_done, dialog))
-        dialog.open()
-
-    def _dialog_done(self, dialog: QDialog, _result: int) -> None:
-        if dialog in self._open_dialogs:
-            self._open_dialogs.remove(dialog)
 
     def _tell_fault(self, error: Exception) -> None:
         if isinstance(error, PersonError):
@@ -309,6 +262,9 @@ class MainWindow(QMainWindow):
     def _halves(self) -> None:
         self.bench.corner.pick_halves()
 
+    def _quarters(self) -> None:
+        self.bench.corner.pick_quarters()
+
     def _swap(self) -> None:
         self.workbench.do(intents.swap_subsets())
 
@@ -327,19 +283,6 @@ class MainWindow(QMainWindow):
         menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
         button = self.actions_.button("panels")
         menu.popup(button.mapToGlobal(button.rect().bottomLeft()))
-
-    def _keys(self) -> None:
-        self._show_dialog(keys_dialog(self))
-
-    def _about(self) -> None:
-        self._show_dialog(about_dialog(self))
-
-    def _choose_picture(self) -> None:
-        path, _kind = QFileDialog.getSaveFileName(
-            self, "Save a picture of the window", "phasebrush.png", "PNG (*.png)"
-        )
-        if path and not self.save_picture(path):
-            self.message_bar.say(f"{Path(path).name}: could not be written; choose another folder")
 
     def save_picture(self, path: str) -> bool:
         """Save what the window shows as PNG; False if it could not be written."""
@@ -422,8 +365,7 @@ class MainWindow(QMainWindow):
             self._settings.sync()
         self.clock.stop()
         self.foot.close_foot()
-        for dialog in tuple(self._open_dialogs):
-            dialog.close()
+        self.asking.close()
         self.workbench.close()
         self.board.close()
         QTimer.singleShot(0, self, self.deleteLater)

@@ -18,6 +18,8 @@ if TYPE_CHECKING:
 
     from PySide6.QtWidgets import QWidget
 
+    from phasebrush.model.intents import How
+
 AXIS_HEIGHT = 34
 LEFT_WIDTH = 52
 ZOOM_STEP = 1.25
@@ -34,6 +36,13 @@ def pen(colour: str, *, width: float = 1.0, dashed: bool = False, dotted: bool =
     if dotted:
         made.setDashPattern([1, 3])
     return made
+
+
+def how_of(*, ctrl: bool, alt: bool) -> How:
+    """What the held keys ask for: Ctrl adds, Alt takes away, both keep the common."""
+    if ctrl and alt:
+        return "keep common"
+    return "add" if ctrl else "take away" if alt else "replace"
 
 
 @dataclass(frozen=True)
@@ -56,6 +65,11 @@ class Pointer:
     ctrl: bool
     alt: bool
     pixel: QPointF
+
+    @property
+    def how(self) -> How:
+        """What the held keys ask for: Ctrl adds, Alt takes away, both keep the common."""
+        return how_of(ctrl=self.ctrl, alt=self.alt)
 
 
 class Axis(pg.AxisItem):  # type: ignore[misc]
@@ -84,6 +98,7 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         self.dragged: Callable[[Pointer], None] | None = None
         self.released: Callable[[Pointer], None] | None = None
         self.hovered: Callable[[Pointer | None], None] | None = None
+        self.asked_menu: Callable[[Pointer], None] | None = None
         self.zoomed: Callable[[tuple[float, float] | None], None] | None = None
         self._down = False
         self._ranges: list[tuple[float, float] | None] = [None, None]
@@ -206,6 +221,8 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
             self._down = True
             if self.pressed is not None:
                 self.pressed(self._pointer(event.position(), event))
+        if event.button() == Qt.MouseButton.RightButton and inside and self.asked_menu is not None:
+            self.asked_menu(self._pointer(event.position(), event))
         event.accept()
 
     def mouseMoveEvent(self, event: QMouseEvent) -> None:

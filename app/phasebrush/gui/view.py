@@ -27,6 +27,14 @@ def _nothing() -> None:
     return None
 
 
+@dataclass(frozen=True)
+class RowMenu:
+    """A wish for the menu of a row: which trial, and whether it is excluded already."""
+
+    trial: int
+    excluded: bool
+
+
 @dataclass
 class Ways:
     """The ways out of a view: intents, the two ends of a gesture, and a hint for the foot."""
@@ -35,6 +43,7 @@ class Ways:
     end_gesture: Callable[[], None] = _nothing
     abandon_gesture: Callable[[], None] = _nothing
     hint: Callable[[str], None] = lambda _text: None
+    row_menu: Callable[[RowMenu], None] = lambda _wish: None
     missed: Callable[[View], None] = lambda _view: None
 
 

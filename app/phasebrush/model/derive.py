@@ -8,6 +8,7 @@ import numpy as np
 
 from phasebrush.core import average as average_of
 from phasebrush.core import phase, power, stack_image
+from phasebrush.core.rule import rule_mask
 from phasebrush.core.sort_keys import (
     KINDS,
     KeyInputs,
@@ -18,6 +19,7 @@ from phasebrush.core.sort_keys import (
     sorted_order,
 )
 from phasebrush.errors import InputError
+from phasebrush.model.members import members_of
 from phasebrush.model.results import (
     SET_NAMES,
     Average,
@@ -35,6 +37,7 @@ from phasebrush.model.results import (
     Trace,
     Traces,
 )
+from phasebrush.model.subset import Subset
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -42,6 +45,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from phasebrush.core.morlet import Coefficients
+    from phasebrush.core.rule import Rule
     from phasebrush.core.running_sums import RunningSums
     from phasebrush.core.spot import Spot
     from phasebrush.core.trials import Trials
@@ -62,6 +66,7 @@ def derive_key(state: State, work: ChannelWork) -> KeyValues:
         channel=work.question.channel,
         coefficients=work.coefficients,
         spot=state.spot,
+        used=~state.excluded.mask_of(len(trials)),
     )
     fault = ""
     try:
@@ -78,22 +83,44 @@ def derive_key(state: State, work: ChannelWork) -> KeyValues:
     )
 
 
-def derive_rows(state: State, key: KeyValues) -> Rows:
-    """The order of the stack, row 0 at the foot. Trials without a key come last."""
-    order = sorted_order(key.values, descending=state.descending)
+def derive_rows(state: State, key: KeyValues, labels: tuple[str, ...]) -> Rows:
+    """The order of the stack, row 0 at the foot.
+
+    Excluded trials come first, then the others by key (label by label where that is wished);
+    trials without a key come last among theirs.
+    """
+    excluded = state.excluded.mask_of(len(labels))
+    parts, groups = [np.flatnonzero(excluded)], []
+    names = np.asarray(labels)
+    wanted = sorted(set(names[~excluded].tolist())) if state.by_label else [None]
+    for label in wanted:
+        inside = ~excluded if label is None else ~excluded & (names == label)
+        chosen = np.flatnonzero(inside)
+        if label is not None:
+            groups.append((sum(map(len, parts)), str(label)))
+        parts.append(chosen[sorted_order(key.values[chosen], descending=state.descending)])
+    order = np.concatenate(parts).astype(np.intp)
     inverse = np.empty_like(order)
     inverse[order] = np.arange(len(order))
     for array in (order, inverse):
         array.flags.writeable = False
-    return Rows(order, inverse, int(np.count_nonzero(np.isnan(key.values))))
+    missing = int(np.count_nonzero(np.isnan(key.values) & ~excluded))
+    return Rows(order, inverse, missing, len(parts[0]), tuple(groups))
 
 
 def derive_stack(state: State, work: ChannelWork, key: KeyValues, rows: Rows) -> Stack:
     """The stack in its order, smoothed along trials; circular for a phase key."""
-    image = stack_image.smooth_rows(
-        work.voltages_uv[rows.trial_of_row],
-        state.smoothing,
-        circular=key.is_angle and rows.n_missing == 0,
+    ordered = work.voltages_uv[rows.trial_of_row]
+    circular = key.is_angle and rows.n_missing == 0
+    image = np.concatenate(
+        [
+            stack_image.smooth_rows(
+                ordered[first:last],
+                state.smoothing,
+                circular=circular and first >= rows.n_excluded,
+            )
+            for first, last in rows.blocks
+        ]
     )
     return Stack(
         image_uv=image,
@@ -257,7 +284,7 @@ def derive_dial(state: State, work: ChannelWork, angles: Floats) -> Dial:
     """Phases of the trials at the spot's centre, as `spot_phases` gives them."""
     coefficients = work.coefficients
     row, column = coefficients.point(state.spot.centre_hz, state.spot.centre_s)
-    has_phase = np.isfinite(angles)
+    has_phase = np.isfinite(angles) & ~state.excluded.mask_of(len(angles))
     n_trials = len(angles)
     masks: dict[SetName, NDArray[np.bool_]] = {
         "A": state.a.mask_of(n_trials) & has_phase,
@@ -310,6 +337,30 @@ def _read(item: SetMaps, row: int, column: int, box: NDArray[np.bool_]) -> SetRe
         box_itc=float(item.itc[box].mean()),
         box_db=float(item.power_db[box].mean()),
     )
+
+
+def check_rules(state: State, trials: Trials, key: KeyValues | None) -> dict[str, str]:
+    """Say of each named subset of the recording whether its rule still gives its trials."""
+    used = ~state.excluded.mask_of(len(trials))
+    found = {}
+    for named in state.named:
+        rule = named.members.rule
+        if named.recording != state.recording or rule is None:
+            continue
+        if rule.key is not None and not _rule_can_be_checked(rule, state, key):
+            found[named.name] = "another key or channel"
+            continue
+        values = key.values if key is not None and rule.key is not None else None
+        given = members_of(Subset(rule_mask(rule, values, trials.labels, used)), trials).who
+        same = given == named.members.who
+        found[named.name] = "same trials" if same else "gives other trials now"
+    return found
+
+
+def _rule_can_be_checked(rule: Rule, state: State, key: KeyValues | None) -> bool:
+    if key is None or key.fault or rule.key != state.key or rule.channel != state.channel:
+        return False
+    return not KINDS[state.key.kind].uses_spot or rule.spot == state.spot
 
 
 def default_channel(trials: Trials, wished: str = "") -> str:

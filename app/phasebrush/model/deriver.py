@@ -6,22 +6,24 @@ from collections.abc import Callable
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
-import numpy as np
-
 from phasebrush.model import derive
 from phasebrush.model.channel_work import ChannelQuestion, ChannelWork
 from phasebrush.model.results import SET_NAMES, Average, SetMaps, SetName, Snapshot
 from phasebrush.model.stale import Result, in_order
+from phasebrush.model.step_work import StepsQuestion
 
 if TYPE_CHECKING:
+    import numpy as np
     from numpy.typing import NDArray
 
     from phasebrush.core.spot import Spot
     from phasebrush.core.trials import Trials
+    from phasebrush.model.results import Steps
     from phasebrush.model.state import State
 
 FindTrials = Callable[["State"], "Trials | None"]
 AskTransform = Callable[[ChannelQuestion], None]
+AskSteps = Callable[[StepsQuestion], None]
 
 
 class Deriver:
@@ -33,12 +35,20 @@ class Deriver:
         Gives the trials that a record names, or None while they are being read.
     ask_transform : callable
         Starts the transform of a channel; the answer comes to `take_work`.
+    ask_steps : callable
+        Starts the work on steps; the answer comes to `take_steps`.
     """
 
-    def __init__(self, find_trials: FindTrials, ask_transform: AskTransform) -> None:
+    def __init__(
+        self, find_trials: FindTrials, ask_transform: AskTransform, ask_steps: AskSteps
+    ) -> None:
         self.snapshot = Snapshot()
         self._find_trials = find_trials
         self._ask_transform = ask_transform
+        self._ask_steps = ask_steps
+        self.wants_steps = False
+        self._steps_asked: StepsQuestion | None = None
+        self._steps_answered: StepsQuestion | None = None
         self._work: ChannelWork | None = None
         self._asked: ChannelQuestion | None = None
         self._phases: tuple[Spot, NDArray[np.float64]] | None = None
@@ -59,6 +69,8 @@ class Deriver:
             Result.TRACES: self._traces,
             Result.DIAL: self._dial,
             Result.READOUT: self._readout,
+            Result.STEPS: self._steps_of_key,
+            Result.NAMED: self._named,
         }
         self._keep_scales = False
 
@@ -69,10 +81,11 @@ class Deriver:
 
     def masks(self, state: State, n_trials: int) -> dict[SetName, NDArray[np.bool_]]:
         """Membership of every set of trials."""
+        used = ~state.excluded.mask_of(n_trials)
         return {
-            "all": np.ones(n_trials, dtype=bool),
-            "A": state.a.mask_of(n_trials),
-            "B": state.b.mask_of(n_trials),
+            "all": used,
+            "A": state.a.mask_of(n_trials) & used,
+            "B": state.b.mask_of(n_trials) & used,
         }
 
     def run(
@@ -107,14 +120,27 @@ class Deriver:
         self._maps.clear()
         return True
 
+    def take_steps(self, question: StepsQuestion, steps: Steps) -> bool:
+        """Take the answer of the work on steps; False if another question was asked meanwhile."""
+        if not question.same_as(self._steps_asked):
+            return False
+        self._steps_asked, self._steps_answered = None, question
+        self.snapshot = replace(self.snapshot, steps=steps)
+        return True
+
     def forget_question(self) -> None:
         """The transform was stopped or failed: it may be asked for again."""
         self._asked = None
+
+    def forget_steps(self) -> None:
+        """The work on steps was stopped or failed: it may be asked for again."""
+        self._steps_asked = None
 
     def close(self) -> None:
         """Let go of the arrays."""
         self._work = None
         self._asked = None
+        self._steps_asked = self._steps_answered = None
         self._averages.clear()
         self._maps.clear()
         self.snapshot = Snapshot()
@@ -159,7 +185,9 @@ class Deriver:
         key = self.snapshot.key
         if self._work is None or key is None:
             return False
-        self.snapshot = replace(self.snapshot, rows=derive.derive_rows(state, key))
+        self.snapshot = replace(
+            self.snapshot, rows=derive.derive_rows(state, key, self._work.question.trials.labels)
+        )
         return True
 
     def _stack(self, state: State) -> bool:
@@ -176,8 +204,6 @@ class Deriver:
             return False
         masks = self.masks(state, len(self._work.question.trials))
         for name, mask in masks.items():
-            if name == "all":
-                continue
             sums = self._work.sums[name]
             before = sums.frozen()
             sums.set_members(mask)
@@ -245,4 +271,28 @@ class Deriver:
             return False
         readout = derive.derive_readout(state, maps, self._work.coefficients)
         self.snapshot = replace(self.snapshot, readout=readout)
+        return True
+
+    def _steps_of_key(self, state: State) -> bool:
+        key = self.snapshot.key
+        if not self.wants_steps:
+            self._steps_asked = self._steps_answered = None
+            self.snapshot = replace(self.snapshot, steps=None)
+            return True
+        if self._work is None or key is None or self._keep_scales:
+            return False
+        used = ~state.excluded.mask_of(len(key.values))
+        question = StepsQuestion(self._work, key, state.spot, used, state.steps)
+        if question.same_as(self._steps_answered):
+            return True
+        if not question.same_as(self._steps_asked):
+            self._steps_asked = question
+            self._ask_steps(question)
+        return False
+
+    def _named(self, state: State) -> bool:
+        trials = self.snapshot.trials
+        if trials is not None:
+            checks = derive.check_rules(state, trials, self.snapshot.key)
+            self.snapshot = replace(self.snapshot, rule_checks=checks)
         return True

@@ -15,7 +15,8 @@ from phasebrush.core.sort_keys import KINDS, SortKey
 from phasebrush.errors import InputError
 from phasebrush.model import intents
 from phasebrush.model.intents import Intent
-from phasebrush.model.state import DEFAULT_SPOT, DEFAULT_TRANSFORM, Subset
+from phasebrush.model.state import DEFAULT_SPOT, DEFAULT_TRANSFORM
+from phasebrush.model.subset import Subset
 from phasebrush.model.workbench import Workbench
 
 if TYPE_CHECKING:

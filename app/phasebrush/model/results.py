@@ -15,6 +15,7 @@ if TYPE_CHECKING:
 
     from phasebrush.core.morlet import Coefficients
     from phasebrush.core.sort_keys import Footprint
+    from phasebrush.core.steps import StepStats
     from phasebrush.core.trials import Trials
     from phasebrush.model.stale import Result
 
@@ -61,12 +62,25 @@ class Rows:
     row_of_trial : ndarray of int, shape (trials,)
         The inverse.
     n_missing : int
-        Trials without a key; they are the last rows.
+        Trials without a key; they are the last rows of their label or of the stack.
+    n_excluded : int
+        Excluded trials; they are the first rows, at the foot, and take part in nothing.
+    groups : tuple of (int, str)
+        Where the stack is ordered by label first: first row and label of each block.
     """
 
     trial_of_row: NDArray[np.intp]
     row_of_trial: NDArray[np.intp]
     n_missing: int
+    n_excluded: int = 0
+    groups: tuple[tuple[int, str], ...] = ()
+
+    @property
+    def blocks(self) -> tuple[tuple[int, int], ...]:
+        """Rows that belong together, as (first, one past the last): nothing smooths across."""
+        starts = sorted({0, self.n_excluded, *(first for first, _label in self.groups)})
+        ends = [*starts[1:], len(self.trial_of_row)]
+        return tuple((a, b) for a, b in zip(starts, ends, strict=True) if b > a)
 
 
 @dataclass(frozen=True, eq=False)
@@ -264,11 +278,43 @@ class Readout:
 
 
 @dataclass(frozen=True, eq=False)
+class Steps:
+    """The used trials cut into equal-count steps of the sort key, lowest first.
+
+    Parameters
+    ----------
+    count : int
+        Number of steps.
+    times_s : ndarray, shape (samples,)
+        Times of the average waveforms.
+    of : tuple of StepStats
+        One a step.
+    key_title, key_unit : str
+        The key in words.
+    freq_hz, time_s : float
+        Spot's centre, where ITC, PPC and power are read.
+    valid : bool
+        Whether the wavelet there stays on the data; where it does not, ITC, PPC and power
+        must not be shown.
+    """
+
+    count: int
+    times_s: Floats
+    of: tuple[StepStats, ...]
+    key_title: str
+    key_unit: str
+    freq_hz: float
+    time_s: float
+    valid: bool = True
+
+
+@dataclass(frozen=True, eq=False)
 class Snapshot:
     """The record and all that was derived from it: what every view, file and page is drawn from.
 
     ``outdated`` names the results that still belong to an earlier record because slower
-    work for them is under way; a result that was never derived is None.
+    work for them is under way; a result that was never derived is None. ``rule_checks`` says
+    of each named subset of the recording whether its rule still gives the same trials.
     """
 
     state: State = field(default_factory=State)
@@ -282,6 +328,8 @@ class Snapshot:
     traces: Traces | None = None
     dial: Dial | None = None
     readout: Readout | None = None
+    steps: Steps | None = None
+    rule_checks: Mapping[str, str] = field(default_factory=dict)
     outdated: frozenset[Result] = frozenset()
 
     @property

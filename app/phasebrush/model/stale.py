@@ -29,6 +29,8 @@ class Result(StrEnum):
     TRACES = "traces"
     DIAL = "dial"
     READOUT = "readout"
+    STEPS = "steps"
+    NAMED = "named"
     CURSOR = "cursor"
     SHOWN = "shown"
 
@@ -56,6 +58,11 @@ FROM_FIELD: dict[str, tuple[Result, ...]] = {
     "smoothing": (Result.STACK,),
     "a": (Result.SUBSETS,),
     "b": (Result.SUBSETS,),
+    "excluded": (Result.KEY, Result.SUBSETS),
+    "by_label": (Result.ROWS,),
+    "named": (Result.NAMED,),
+    "notes": (Result.NAMED,),
+    "steps": (Result.STEPS,),
     "spot": (Result.SPOT,),
     "maps_show": (Result.MAPS,),
     "cursor_s": (Result.CURSOR,),
@@ -65,6 +72,7 @@ FROM_FIELD: dict[str, tuple[Result, ...]] = {
 
 FROM_RESULT: dict[Result, tuple[tuple[Result, Condition], ...]] = {
     Result.TRIALS: (
+        (Result.NAMED, _always),
         (Result.CHANNEL, _always),
         (Result.SUBSETS, _always),
         (Result.SHOWN, _always),
@@ -81,8 +89,9 @@ FROM_RESULT: dict[Result, tuple[tuple[Result, Condition], ...]] = {
         (Result.TRACES, _always),
         (Result.DIAL, _always),
         (Result.READOUT, _always),
+        (Result.STEPS, _always),
     ),
-    Result.KEY: ((Result.ROWS, _always),),
+    Result.KEY: ((Result.ROWS, _always), (Result.STEPS, _always), (Result.NAMED, _always)),
     Result.ROWS: ((Result.STACK, _always),),
     Result.SUBSETS: (
         (Result.AVERAGE, _always),

@@ -2,66 +2,22 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, fields
+from dataclasses import dataclass, fields
 from typing import TYPE_CHECKING, Literal
-
-import numpy as np
 
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
 from phasebrush.core.transform_settings import TransformSettings
+from phasebrush.model.subset import NOBODY, Subset
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
-
-    from numpy.typing import NDArray
-
     from phasebrush.core.trials import Cut
+    from phasebrush.model.members import Members
 
 Letter = Literal["A", "B"]
 MapsShow = Literal["all", "A", "B", "A-B"]
 DEFAULT_TRANSFORM, DEFAULT_KEY, DEFAULT_SPOT = TransformSettings(), SortKey(), Spot()
 LETTERS: tuple[Letter, ...] = ("A", "B")
-
-
-@dataclass(frozen=True, eq=False)
-class Subset:
-    """Trials picked by a person.
-
-    Parameters
-    ----------
-    mask : ndarray of bool, shape (trials,)
-        True for the picked trials; of length 0 while nothing was ever picked.
-    rule : str
-        In words, where it came from one (``"highest third of alpha power ..., Oz"``); ``""``
-        for a pick by hand.
-    """
-
-    mask: NDArray[np.bool_] = field(default_factory=lambda: np.zeros(0, dtype=bool))
-    rule: str = ""
-
-    def __post_init__(self) -> None:
-        self.mask.flags.writeable = False
-
-    def __eq__(self, other: object) -> bool:
-        if not isinstance(other, Subset):
-            return NotImplemented
-        return self.rule == other.rule and np.array_equal(self.mask, other.mask)
-
-    def __hash__(self) -> int:
-        return hash((self.rule, self.mask.tobytes()))
-
-    @property
-    def n(self) -> int:
-        """Number of trials in it."""
-        return int(np.count_nonzero(self.mask))
-
-    def mask_of(self, n_trials: int) -> NDArray[np.bool_]:
-        """The mask at full length: nothing was picked where it has length 0."""
-        return self.mask if len(self.mask) == n_trials else np.zeros(n_trials, dtype=bool)
-
-
-NOBODY = Subset()
 
 
 @dataclass(frozen=True)
@@ -90,8 +46,39 @@ class Desk:
     recording: str
     cut: Cut
     channel: str
-    a: Subset
-    b: Subset
+    a: Members
+    b: Members
+    excluded: Members
+
+
+@dataclass(frozen=True)
+class Named:
+    """A subset kept under a name.
+
+    Parameters
+    ----------
+    name : str
+        Given by the person.
+    recording : str
+        Path of the recording that it belongs to.
+    members : Members
+        The fixed list of trials, and the rule that gave them.
+    note : str
+        Free text.
+    """
+
+    name: str
+    recording: str
+    members: Members
+    note: str = ""
+
+
+@dataclass(frozen=True)
+class Note:
+    """Free text about a recording."""
+
+    recording: str
+    text: str
 
 
 @dataclass(frozen=True)
@@ -122,6 +109,16 @@ class State:
         The two brushed sets.
     spot : Spot
         Time-frequency box under study.
+    excluded : Subset
+        Trials that take part in nothing.
+    by_label : bool
+        Whether the stack is ordered by event label first and by the key inside each.
+    named : tuple of Named
+        Subsets kept under a name, of any recording.
+    notes : tuple of Note
+        Free text, one a recording.
+    steps : int
+        Equal-count steps that the trials are cut into in the steps drawer.
     maps_show : str
         Set of trials drawn in the maps.
     cursor_s : float
@@ -143,6 +140,11 @@ class State:
     smoothing: int = 3
     a: Subset = NOBODY
     b: Subset = NOBODY
+    excluded: Subset = NOBODY
+    by_label: bool = False
+    named: tuple[Named, ...] = ()
+    notes: tuple[Note, ...] = ()
+    steps: int = 5
     spot: Spot = DEFAULT_SPOT
     maps_show: MapsShow = "A"
     cursor_s: float = 0.3
@@ -152,6 +154,10 @@ class State:
     def subset(self, letter: Letter) -> Subset:
         """Subset A or B."""
         return self.a if letter == "A" else self.b
+
+    def note(self, recording: str) -> str:
+        """The note about a recording; empty where there is none."""
+        return next((note.text for note in self.notes if note.recording == recording), "")
 
     def desk(self, recording: str) -> Desk | None:
         """What was decided about an earlier recording, if it was open before."""
@@ -163,10 +169,3 @@ def changed_fields(old: State, new: State) -> frozenset[str]:
     return frozenset(
         item.name for item in fields(State) if getattr(old, item.name) != getattr(new, item.name)
     )
-
-
-def subset_of(trials: Iterable[int], n_trials: int) -> Subset:
-    """A subset by hand from trial numbers counted from 0."""
-    mask = np.zeros(n_trials, dtype=bool)
-    mask[list(trials)] = True
-    return Subset(mask)

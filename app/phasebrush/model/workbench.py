@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 from functools import partial
 from typing import TYPE_CHECKING
 
+from phasebrush.core.suspects import suspects
 from phasebrush.model import intents, opening
 from phasebrush.model.channel_work import ChannelQuestion, ChannelWork, transform_channel
 from phasebrush.model.deriver import Deriver
@@ -13,14 +14,16 @@ from phasebrush.model.history import History
 from phasebrush.model.jobs import InlineRunner, Job, JobBoard, Progress, Runner
 from phasebrush.model.stale import Result, stale_after, with_followers
 from phasebrush.model.state import State, changed_fields
+from phasebrush.model.step_work import StepsQuestion, work_out_steps
 from phasebrush.model.trials_shelf import TrialsShelf
 
 if TYPE_CHECKING:
     from collections.abc import Callable
 
+    from phasebrush.core.suspects import Suspect
     from phasebrush.core.trials import Cut, Trials
     from phasebrush.model.intents import Intent
-    from phasebrush.model.results import Snapshot
+    from phasebrush.model.results import Snapshot, Steps
     from phasebrush.recordings import Recording
 
 EVERYTHING = frozenset(Result)
@@ -75,7 +78,7 @@ class Workbench:
         self._state = State()
         self._history = History()
         self._shelf = TrialsShelf()
-        self._deriver = Deriver(self._find_trials, self._ask_transform)
+        self._deriver = Deriver(self._find_trials, self._ask_transform, self._ask_steps)
         self._stale: frozenset[Result] = EVERYTHING
         self._sources: frozenset[str] | None = None
         self._gesture = 0
@@ -142,7 +145,7 @@ class Workbench:
         if self._gesture_kept and self._state == self._origin:
             self._history.forget_last()
         self._gesture, self._gesture_kept = 0, False
-        self._mark({Result.AVERAGE, Result.MAPS}, "")
+        self._mark({Result.AVERAGE, Result.MAPS, Result.STEPS}, "")
 
     def abandon_gesture(self) -> None:
         """The drag was called off: back to where it began."""
@@ -341,16 +344,53 @@ class Workbench:
         if self._deriver.take_work(work):
             self._mark({Result.CHANNEL, Result.SUBSETS}, "")
 
+    def _ask_steps(self, question: StepsQuestion) -> None:
+        self.jobs.start(
+            Job(
+                "steps",
+                "steps of the sort key",
+                partial(work_out_steps, question),
+                partial(self._steps_done, question),
+                self._steps_failed,
+            )
+        )
+
+    def _steps_failed(self, error: Exception) -> None:
+        self._deriver.forget_steps()
+        self._failed(error)
+
+    def _steps_done(self, question: StepsQuestion, steps: Steps) -> None:
+        if self._deriver.take_steps(question, steps):
+            self._mark({Result.STEPS}, "")
+
+    def want_steps(self, *, wanted: bool) -> None:
+        """Work out the steps of the sort key only while somebody looks at them."""
+        if wanted != self._deriver.wants_steps:
+            self._deriver.wants_steps = wanted
+            if not wanted:
+                self.jobs.drop("steps")
+            self._mark({Result.STEPS}, "")
+
+    def suspects(self) -> tuple[Suspect, ...]:
+        """Used trials of the channel that look odd; empty while nothing is transformed."""
+        work = self._deriver.work
+        if work is None:
+            return ()
+        used = ~self._state.excluded.mask_of(len(work.question.trials))
+        return suspects(work.voltages_uv, used)
+
     def stop(self) -> None:
         """Stop every job; what was shown stays, marked as outdated."""
         if self.jobs.running:
             self.jobs.drop_all()
             self._deriver.forget_question()
+            self._deriver.forget_steps()
             self.listeners.message("stopped; what is drawn dimmed belongs to the earlier choice")
 
     def compute_again(self) -> None:
         """Ask again for what was stopped or failed."""
         self._deriver.forget_question()
+        self._deriver.forget_steps()
         self._mark({Result.TRIALS}, "")
 
     def _transform_failed(self, error: Exception) -> None:

@@ -106,7 +106,8 @@ class KeyStrip(RowView):
             picture[:, gutter:][np.abs(across - reach[:, None]) <= 1.0] = REST
         else:
             picture[:, gutter:][across < np.maximum(reach, 1.0)[:, None]] = REST
-        picture[np.isnan(self._by_row)[self._row_of_line], gutter:] = EMPTY
+        left_out = np.isnan(self._by_row) | (np.arange(self.brush.n_rows) < self._n_excluded)
+        picture[left_out[self._row_of_line], gutter:] = EMPTY
         self._blank, self._gutter = picture, gutter
         unit = (high - low) / bars
         self.plot.set_time_range(low - gutter * unit, high)

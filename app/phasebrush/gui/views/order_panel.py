@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtCore import QSignalBlocker
 from PySide6.QtWidgets import (
+    QCheckBox,
     QComboBox,
     QDoubleSpinBox,
     QGridLayout,
@@ -86,6 +87,14 @@ class OrderPanel(View):
             "It changes the picture only, never a number."
         )
         self._smooth.setAccessibleName("smoothing, in trials")
+        self._by_label = QCheckBox("label first", self)
+        self._by_label.setToolTip(
+            "Order by event label first and by the key inside each label; lines separate them"
+        )
+        self._sign = QComboBox(self)
+        self._sign.addItems(["largest positive peak", "largest negative peak"])
+        self._sign.setToolTip("Sign of the peak whose latency is the sort key")
+        self._sign.setAccessibleName("sign of the peak")
         self._fault = QLabel(self)
         self._fault.setProperty("caution", True)
         self._fault.setWordWrap(True)
@@ -96,6 +105,8 @@ class OrderPanel(View):
         for box in (self._low, self._high, self._start, self._end):
             box.valueChanged.connect(self._edited)
         self._way.activated.connect(self._turned)
+        self._by_label.toggled.connect(self._grouped)
+        self._sign.activated.connect(self._signed)
         self._smooth.valueChanged.connect(self._smoothed)
 
     def _lay_out(self) -> None:
@@ -109,7 +120,9 @@ class OrderPanel(View):
             ("sort by", self._choice),
             ("band", self._band_row),
             ("window", self._window_row),
+            ("peak", self._sign),
             ("order", self._way),
+            ("", self._by_label),
             ("smooth", self._smooth),
         )
         for number, (name, field) in enumerate(rows):
@@ -129,7 +142,7 @@ class OrderPanel(View):
         columns = snapshot.trials.numeric_columns if snapshot.trials is not None else ()
         with ExitStack() as quiet:
             for field in (self._choice, self._low, self._high, self._start, self._end, self._way,
-                          self._smooth):  # fmt: skip
+                          self._smooth, self._by_label, self._sign):  # fmt: skip
                 quiet.enter_context(QSignalBlocker(field))
             if columns != self._columns or not self._choice.count():
                 self._columns = columns
@@ -161,10 +174,13 @@ class OrderPanel(View):
         for name, row, used in (
             ("band", self._band_row, kind.uses_band),
             ("window", self._window_row, kind.uses_window),
+            ("peak", self._sign, kind.uses_sign),
         ):
             row.setVisible(used)
             self._labels[name].setVisible(used)
         self._way.setCurrentIndex(1 if state.descending else 0)
+        self._by_label.setChecked(state.by_label)
+        self._sign.setCurrentIndex(0 if key.sign > 0 else 1)
         self._smooth.setValue(state.smoothing)
 
     def _chosen(self, item: int) -> None:
@@ -184,6 +200,14 @@ class OrderPanel(View):
 
     def _turned(self, item: int) -> None:
         self.ways.do(intents.turn_order(descending=item == 1))
+
+    def _grouped(self, on: bool) -> None:  # noqa: FBT001 - Qt's own signature
+        self.ways.do(intents.order_by_label(on=on))
+
+    def _signed(self, item: int) -> None:
+        if self._state is not None:
+            sign = 1 if item == 0 else -1
+            self.ways.do(intents.sort_by(replace(self._state.key, sign=sign)))
 
     def _smoothed(self, trials: int) -> None:
         self.ways.do(intents.smooth(trials))

@@ -10,7 +10,7 @@ from PySide6.QtCore import QLineF, QPointF, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPen
 
 from phasebrush.gui import theme
-from phasebrush.gui.time_plot import pen
+from phasebrush.gui.time_plot import how_of, pen
 from phasebrush.gui.view import View
 from phasebrush.model.intents import How, pick_sector
 from phasebrush.model.stale import Result
@@ -169,11 +169,10 @@ class PhaseDial(View):
         if event.button() == Qt.MouseButton.LeftButton and self._dial is not None:
             held = event.modifiers()
             letter: Letter = "B" if held & Qt.KeyboardModifier.ShiftModifier else "A"
-            how: How = "replace"
-            if held & Qt.KeyboardModifier.ControlModifier:
-                how = "add"
-            elif held & Qt.KeyboardModifier.AltModifier:
-                how = "take away"
+            how = how_of(
+                ctrl=bool(held & Qt.KeyboardModifier.ControlModifier),
+                alt=bool(held & Qt.KeyboardModifier.AltModifier),
+            )
             self._last = self._angle(event.position())
             self._turn = 0.0
             self._drag = (letter, how, self._last, self.new_gesture())

@@ -1,127 +1,68 @@
-"""The pick corner: a histogram of the sort key and quick parts for A and B."""
+"""The pick corner: the key's histogram, quick parts, and every other way of choosing."""
 
 from __future__ import annotations
 
+import math
+from functools import partial
 from typing import TYPE_CHECKING, ClassVar
 
-import numpy as np
-from PySide6.QtCore import QRectF, Qt
-from PySide6.QtGui import QColor, QPainter, QPaintEvent
-from PySide6.QtWidgets import QPushButton, QSizePolicy, QVBoxLayout, QWidget
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QMenu, QPushButton, QVBoxLayout, QWidget
 
-from phasebrush.gui import theme
-from phasebrush.gui.time_plot import pen
+from phasebrush.core.parts import PARTS
+from phasebrush.core.rule import RuleKind
+from phasebrush.gui.time_plot import how_of
 from phasebrush.gui.view import View
-from phasebrush.look.colour_maps import mixed
-from phasebrush.look.tokens import LIGHT, Look
+from phasebrush.gui.views.key_histogram import Histogram
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
+from phasebrush.model.state import LETTERS, Letter
 
 if TYPE_CHECKING:
-    from numpy.typing import NDArray
+    from PySide6.QtGui import QMouseEvent
 
-    from phasebrush.model.results import KeyValues, Snapshot
+    from phasebrush.look.tokens import Look
+    from phasebrush.model.intents import How
+    from phasebrush.model.results import Snapshot
+    from phasebrush.model.state import State
 
-MOST_BINS = 24
-
-
-class Histogram(QWidget):
-    """Counts of the sort key; the shares of A and B in their colours."""
-
-    def __init__(self, parent: QWidget | None = None) -> None:
-        super().__init__(parent)
-        self.look = LIGHT
-        self._counts: dict[str, NDArray[np.intp]] = {}
-        self._ends = ("", "")
-        self._unit = ""
-        self.setMinimumHeight(48)
-        self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
-        self.setFont(theme.font(7.5))
-        self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
-        self.setAccessibleName("histogram of the sort key")
-
-    def show_counts(
-        self,
-        key: KeyValues | None,
-        in_a: NDArray[np.bool_],
-        in_b: NDArray[np.bool_],
-    ) -> None:
-        """Take the values of the key and who is in A and B."""
-        self._counts = {}
-        finite = np.zeros(0, dtype=bool) if key is None else np.isfinite(key.values)
-        if key is not None and finite.any():
-            values = key.values[finite]
-            bins = max(4, min(MOST_BINS, round(np.sqrt(len(values)))))
-            edges = np.histogram_bin_edges(values, bins=bins)
-            for name, chosen in (("all", finite), ("A", finite & in_a), ("B", finite & in_b)):
-                self._counts[name] = np.histogram(key.values[chosen], bins=edges)[0]
-            self._ends = tuple(f"{edge:.3g}".replace("-", "−") for edge in (edges[0], edges[-1]))  # type: ignore[assignment]
-            self._unit = key.unit
-            self.setToolTip(
-                f"How many trials have which {key.title} ({key.unit or 'number'}); "
-                "the coloured parts are in A and B."
-            )
-        self.update()
-
-    def paintEvent(self, _event: QPaintEvent) -> None:
-        """Draw the bars and the two ends of the scale."""
-        painter = QPainter(self)
-        look = self.look
-        painter.fillRect(self.rect(), QColor(look.panel))
-        painter.setFont(self.font())
-        high = painter.fontMetrics().height()
-        area = QRectF(4, 4, self.width() - 8, self.height() - 2 * high - 6)
-        painter.setPen(pen(look.hairline))
-        painter.drawLine(area.bottomLeft(), area.bottomRight())
-        counts = self._counts
-        if counts and area.height() > 4:
-            top = max(1, int(counts["all"].max()))
-            step = area.width() / len(counts["all"])
-            for number, total in enumerate(counts["all"].tolist()):
-                foot = area.bottom()
-                shares = [
-                    (look.subset_a, int(counts["A"][number])),
-                    (look.subset_b, int(counts["B"][number])),
-                ]
-                rest = total - sum(count for _colour, count in shares)
-                shares.append((mixed(look.muted, look.panel, 0.4), max(0, rest)))
-                for colour, count in shares:
-                    tall = count / top * area.height()
-                    bar = QRectF(area.left() + number * step + 0.5, foot - tall, step - 1, tall)
-                    painter.fillRect(bar, QColor(colour))
-                    foot -= tall
-            painter.setPen(QColor(look.muted))
-            line = QRectF(2, area.bottom() + 1, self.width() - 4, high)
-            painter.drawText(line, Qt.AlignmentFlag.AlignLeft, self._ends[0])
-            painter.drawText(line, Qt.AlignmentFlag.AlignRight, self._ends[1])
-            line.translate(0, high)
-            painter.drawText(line, Qt.AlignmentFlag.AlignHCenter, self._unit or "number")
-        painter.end()
+HOWS: tuple[tuple[How, str], ...] = (
+    ("replace", "replace {}"),
+    ("add", "add to {}"),
+    ("take away", "take from {}"),
+    ("keep common", "keep in {} what is common"),
+)
 
 
 class PickCorner(View):
-    """Histogram and quick parts."""
+    """Histogram, quick parts and a menu of everything else."""
 
     needs: ClassVar[frozenset[Result]] = frozenset({Result.TRIALS, Result.KEY, Result.SUBSETS})
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setObjectName("pick_corner")
+        self._labels: tuple[str, ...] = ()
+        self._gesture = 0
         self.histogram = Histogram(self)
+        self.histogram.picked = self._range_picked
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(2)
         layout.addWidget(self.histogram, 1)
-        self._buttons = (
-            self._button("thirds", "Highest third of the sort key to A, lowest third to B (T)"),
-            self._button("halves", "Upper half of the sort key to A, lower half to B (H)"),
-            self._button("highest → A", "Highest third of the sort key to A"),
-            self._button("lowest → B", "Lowest third of the sort key to B"),
-            self._button("clear", "Empty A and B (Escape)"),
+        self._thirds = self._button("thirds", "Highest third of the key to A, lowest to B (T)")
+        self._halves = self._button("halves", "Upper half of the key to A, lower half to B (H)")
+        self._quarters = self._button(
+            "quarters", "Highest quarter of the key to A, lowest quarter to B (Q)"
         )
-        slots = (self.pick_thirds, self.pick_halves, self._highest, self._lowest, self.clear_both)
-        for button, slot in zip(self._buttons, slots, strict=True):
-            button.clicked.connect(slot)
+        self._more = self._button("more …", "Parts, labels, rest, matched counts: for A or B")
+        self._clear = self._button("clear", "Empty A and B (Escape)")
+        self._thirds.clicked.connect(self.pick_thirds)
+        self._halves.clicked.connect(self.pick_halves)
+        self._quarters.clicked.connect(self.pick_quarters)
+        self._more.clicked.connect(self._open_menu)
+        self._clear.clicked.connect(self.clear_both)
+        for button in (self._thirds, self._halves, self._quarters, self._more, self._clear):
             layout.addWidget(button)
 
     def _button(self, words: str, tip: str) -> QPushButton:
@@ -134,15 +75,30 @@ class PickCorner(View):
     def show_snapshot(self, snapshot: Snapshot, _changed: frozenset[Result]) -> None:
         """Draw the histogram with its shares."""
         n_trials = snapshot.n_trials
-        key = snapshot.key
+        key, state = snapshot.key, snapshot.state
         if key is not None and len(key.values) != n_trials:
             key = None
-        state = snapshot.state
-        self.histogram.show_counts(key, state.a.mask_of(n_trials), state.b.mask_of(n_trials))
+        self._labels = tuple(sorted(set(snapshot.trials.labels))) if snapshot.trials else ()
+        self.histogram.show_counts(
+            key,
+            state.a.mask_of(n_trials),
+            state.b.mask_of(n_trials),
+            ~state.excluded.mask_of(n_trials),
+            self._handles(state),
+        )
         usable = key is not None and not key.fault
-        for button in self._buttons[:-1]:
+        for button in (self._thirds, self._halves, self._quarters, self._more):
             button.setEnabled(usable)
-        self._buttons[-1].setEnabled(state.a.n + state.b.n > 0)
+        self._clear.setEnabled(state.a.n + state.b.n > 0)
+
+    @staticmethod
+    def _handles(state: State) -> tuple[float, float] | None:
+        """The range that A was picked by, while the key it was picked by orders the stack."""
+        rule = state.a.rule
+        if rule is None or rule.kind != RuleKind.RANGE:
+            return None
+        same = (rule.key, rule.channel) == (state.key, state.channel)
+        return (rule.low, rule.high) if same else None
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
@@ -158,12 +114,65 @@ class PickCorner(View):
         """Upper half to A, lower half to B."""
         self.ways.do(intents.pick_parts({"A": "upper-half", "B": "lower-half"}))
 
+    def pick_quarters(self) -> None:
+        """Highest quarter to A, lowest quarter to B."""
+        self.ways.do(intents.pick_parts({"A": "highest-quarter", "B": "lowest-quarter"}))
+
     def clear_both(self) -> None:
         """Empty A and B."""
         self.ways.do(intents.clear())
 
-    def _highest(self) -> None:
-        self.ways.do(intents.pick_parts({"A": "highest-third"}))
+    def _range_picked(self, start: float, end: float, event: QMouseEvent | None) -> None:
+        """A drag on the histogram: Shift for B, Ctrl adds, Alt takes away, both keep common."""
+        if event is None or math.isnan(start):
+            self._gesture = 0
+            self.ways.end_gesture()
+            return
+        if self._gesture == 0:
+            self._gesture = self.new_gesture()
+        held = event.modifiers()
+        letter: Letter = "B" if held & Qt.KeyboardModifier.ShiftModifier else "A"
+        how = how_of(
+            ctrl=bool(held & Qt.KeyboardModifier.ControlModifier),
+            alt=bool(held & Qt.KeyboardModifier.AltModifier),
+        )
+        self.ways.do(intents.pick_range(letter, start, end, how=how, gesture=self._gesture))
 
-    def _lowest(self) -> None:
-        self.ways.do(intents.pick_parts({"B": "lowest-third"}))
+    def menu(self) -> QMenu:
+        """Every way of choosing that needs no gesture, for A and for B."""
+        menu = QMenu(self)
+        for letter in LETTERS:
+            for how, words in HOWS:
+                sub = menu.addMenu(words.format(letter))
+                for part in PARTS:
+                    action = sub.addAction(part.replace("-", " "))
+                    action.triggered.connect(partial(self._pick_part, letter, part, how))
+                sub.addSeparator()
+                for label in self._labels:
+                    action = sub.addAction(f"label {label}")
+                    action.triggered.connect(partial(self._pick_label, letter, label, how))
+            menu.addSeparator()
+        menu.addAction("B = rest of A").triggered.connect(self._rest)
+        menu.addAction("match counts of A and B").triggered.connect(self._match)
+        menu.addAction("swap A and B").triggered.connect(self._swap)
+        return menu
+
+    def _open_menu(self) -> None:
+        menu = self.menu()
+        menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        menu.popup(self._more.mapToGlobal(self._more.rect().bottomLeft()))
+
+    def _pick_part(self, letter: Letter, part: str, how: How, _checked: object = None) -> None:
+        self.ways.do(intents.pick_parts({letter: part}, how=how))
+
+    def _pick_label(self, letter: Letter, label: str, how: How, _checked: object = None) -> None:
+        self.ways.do(intents.pick_labels(letter, (label,), how=how))
+
+    def _rest(self) -> None:
+        self.ways.do(intents.rest_to_b())
+
+    def _match(self) -> None:
+        self.ways.do(intents.match_counts())
+
+    def _swap(self) -> None:
+        self.ways.do(intents.swap_subsets())

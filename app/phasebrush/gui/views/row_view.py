@@ -4,12 +4,14 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, ClassVar
 
+import numpy as np
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
 from phasebrush.gui.brush import BrushGesture, Picked
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
-from phasebrush.gui.view import View
+from phasebrush.gui.view import RowMenu, View
+from phasebrush.model.intents import exclude
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS
 
@@ -48,6 +50,10 @@ class RowView(View):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.plot.setFocusProxy(self)
         self._drawn_for = (0, 0)
+        self._trial_of_row = np.zeros(0, dtype=np.intp)
+        self._n_excluded = 0
+        self._row_under = -1
+        self.plot.asked_menu = self._ask_menu
 
     def take_rows(self, snapshot: Snapshot) -> None:
         """Take over order and membership; a drag under way keeps its own picture."""
@@ -57,7 +63,10 @@ class RowView(View):
             return
         n_rows = len(rows.trial_of_row)
         if not self.brush.active or n_rows != self.brush.n_rows:
-            self.brush.set_picked(picked_rows(snapshot.state, rows), n_rows)
+            picked = picked_rows(snapshot.state, rows)
+            self.brush.set_picked(picked, n_rows, rows.n_excluded)
+        self._trial_of_row = rows.trial_of_row
+        self._n_excluded = rows.n_excluded
 
     def draw_marks(self) -> None:
         """Draw which rows are in A and B."""
@@ -87,12 +96,28 @@ class RowView(View):
         return self.brush.n_rows / max(1.0, self.plot.plot_area().height())
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
-        """Escape calls a drag off."""
+        """Escape calls a drag off; E excludes the trial under the pointer, or takes it back."""
         if event.key() == Qt.Key.Key_Escape and self.brush.active:
             self.call_off()
             event.accept()
+        elif event.key() == Qt.Key.Key_E and 0 <= self._row_under < len(self._trial_of_row):
+            self._exclude_row(self._row_under)
+            event.accept()
         else:
             super().keyPressEvent(event)
+
+    def _exclude_row(self, row: int) -> None:
+        mask = np.zeros(len(self._trial_of_row), dtype=bool)
+        mask[self._trial_of_row[row]] = True
+        self.ways.do(exclude(mask, back=row < self._n_excluded))
+
+    def _ask_menu(self, pointer: Pointer) -> None:
+        """A right click: exclude this trial, A or B, or take trials back."""
+        n_rows = len(self._trial_of_row)
+        if not n_rows or self.brush.active:
+            return
+        row = min(max(int(pointer.y), 0), n_rows - 1)
+        self.ways.row_menu(RowMenu(int(self._trial_of_row[row]), row < self._n_excluded))
 
     def call_off(self) -> None:
         """Back to where the drag began."""
@@ -118,9 +143,11 @@ class RowView(View):
 
     def _hovered(self, pointer: Pointer | None) -> None:
         if pointer is None or self.brush.n_rows == 0:
+            self._row_under = -1
             self.plot.viewport().unsetCursor()
             self.hover_at(None)
             return
+        self._row_under = min(max(int(pointer.y), 0), self.brush.n_rows - 1)
         held = self.brush.target(pointer, self.rows_per_pixel())
         shapes = {"edge": Qt.CursorShape.SizeVerCursor, "block": Qt.CursorShape.OpenHandCursor}
         self.plot.viewport().setCursor(shapes[held[0]] if held else Qt.CursorShape.CrossCursor)

@@ -9,6 +9,7 @@ import pyqtgraph as pg
 from PySide6.QtCore import QRectF
 
 from phasebrush.core.stack_image import reduce_columns, reduce_rows
+from phasebrush.gui import theme
 from phasebrush.gui.brush import runs
 from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import Margins, Pointer, pen
@@ -46,12 +47,15 @@ class StackView(RowView):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__("trial_stack", Margins(), parent)
         self._stack: Stack | None = None
+        self._groups: tuple[tuple[int, str], ...] = ()
+        self._separators = pg.PlotCurveItem(connect="pairs")
+        self._names: list[pg.TextItem] = []
         self._span = (-0.5, 1.0)
         self._image = PixelImage()
         self._colours = packed(self._table())
         self.plot.add(self._image)
         self._edges = {letter: pg.PlotCurveItem(connect="pairs") for letter in LETTERS}
-        self.plot.add(*self._edges.values())
+        self.plot.add(self._separators, *self._edges.values())
         self.plot.zoomed = self._zoomed
         self.plot.name_axes("trial, in order", "time from event (s)")
         self.setAccessibleName("trial stack: drag to pick trials for A, with Shift for B")
@@ -70,6 +74,7 @@ class StackView(RowView):
             self._stack = snapshot.stack
             self.plot.set_value_range(0, max(1, self.brush.n_rows))
             self._mark_rows()
+            self._mark_groups(snapshot)
             self.draw_again()
         if not self.brush.active:
             self.draw_marks()
@@ -106,11 +111,43 @@ class StackView(RowView):
         image = reduce_columns(reduce_rows(part, height), width)
         index = np.rint((image / (2 * stack.limit_uv) + 0.5) * 254)
         cells = np.clip(index, 0, 254).astype(np.uint8)
+        self._grey_excluded(cells)
         start_s = float(stack.times_s[seen[0]]) - step_s / 2
         end_s = float(stack.times_s[seen[-1]]) + step_s / 2
         cells = self._with_responses(cells, stack, (start_s, end_s), (height, width))
         rect = QRectF(start_s, 0, end_s - start_s, stack.image_uv.shape[0])
         self._image.show_cells(cells, self._colours, rect)
+
+    def _grey_excluded(self, cells: NDArray[np.uint8]) -> None:
+        """Excluded rows, at the foot, keep a quarter of their contrast."""
+        lines = round(self._n_excluded / max(1, self.brush.n_rows) * cells.shape[0])
+        faint = (cells[:lines].astype(np.int16) - 127) // 4 + 127
+        cells[:lines] = faint.astype(np.uint8)
+
+    def _mark_groups(self, snapshot: Snapshot) -> None:
+        """Lines between labels and above the excluded trials, with their names."""
+        rows = snapshot.rows
+        self._groups = rows.groups if rows is not None else ()
+        places = [first for first, _label in self._groups if first > 0]
+        if rows is not None and rows.n_excluded and rows.n_excluded not in places:
+            places.append(rows.n_excluded)
+        left, right = self._span
+        across = np.tile([left, right], len(places))
+        self._separators.setData(across, np.repeat(np.array(places, dtype=float), 2))
+        for name in self._names:
+            self.plot.getPlotItem().removeItem(name)
+        words = list(self._groups)
+        if rows is not None and rows.n_excluded:
+            words.insert(0, (0, f"{rows.n_excluded} excluded"))
+        self._names = [self._name_at(first, label) for first, label in words]
+
+    def _name_at(self, row: int, words: str) -> pg.TextItem:
+        name = pg.TextItem(words, color=self.look.text, anchor=(0, 1), fill=self.look.panel)
+        name.setFont(theme.font(7.5))
+        name.setPos(self._span[0], row)
+        name.setZValue(30)
+        self.plot.add(name)
+        return name
 
     def _with_responses(
         self,
@@ -158,6 +195,10 @@ class StackView(RowView):
         super().set_look(look)
         self.plot.set_look(look)
         self._colours = packed(self._table())
+        self._separators.setPen(pen(look.text))
+        for name in self._names:
+            name.setColor(look.text)
+            name.fill = pg.mkBrush(look.panel)
         self._edges["A"].setPen(pen(look.subset_a, width=2))
         self._edges["B"].setPen(pen(look.subset_b, width=2, dashed=True))
         self.draw_again()

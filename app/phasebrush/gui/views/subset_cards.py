@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, ClassVar
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
 
+from phasebrush.core.rule import rule_words
 from phasebrush.gui import theme
 from phasebrush.gui.view import View
 from phasebrush.gui.words import ElidedLabel
@@ -17,17 +18,17 @@ from phasebrush.model.state import LETTERS, Letter
 if TYPE_CHECKING:
     from phasebrush.look.tokens import Look
     from phasebrush.model.results import Snapshot
-    from phasebrush.model.state import Subset
+    from phasebrush.model.subset import Subset
 
 MARKS = {"A": "■", "B": "●"}
 CAUTION_BELOW = 20
 
 
-def rule_words(subset: Subset) -> str:
+def subset_words(subset: Subset) -> str:
     """How a subset came about, in words."""
     if not subset.n:
         return "no trial yet"
-    return subset.rule or "picked by hand"
+    return rule_words(subset.rule) if subset.rule is not None else "picked by hand"
 
 
 class _Card(QWidget):
@@ -89,7 +90,7 @@ class SubsetCards(View):
             subset = snapshot.state.subset(letter)
             sizes[letter] = subset.n
             card.count.set_words(f"{subset.n} of {snapshot.n_trials}")
-            card.words.set_words(rule_words(subset))
+            card.words.set_words(subset_words(subset))
             card.clear.setEnabled(subset.n > 0)
         self._swap.setEnabled(any(sizes.values()))
         self._caution.set_words(self._cautions(snapshot, sizes))

@@ -1,0 +1,152 @@
+"""What the scatter draws: a dot a trial, and the box that is being dragged."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+import pyqtgraph as pg
+from pyqtgraph.Qt.internals import PrimitiveArray
+from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtGui import QColor, QPainter, QPen
+
+from phasebrush.gui.time_plot import pen
+from phasebrush.look.colour_maps import mixed
+from phasebrush.look.tokens import LIGHT, Look
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+
+    Floats = NDArray[np.float64]
+    Mask = NDArray[np.bool_]
+
+REST_SIZE, A_SIZE, B_SIZE, BOTH_SIZE = 4.0, 6.0, 6.0, 3.0
+
+
+class _OverPlot(pg.GraphicsObject):  # type: ignore[misc]
+    """An item as large as the plot, painted at the screen's pixels."""
+
+    def boundingRect(self) -> QRectF:
+        """The whole plot."""
+        box = self.getViewBox()
+        return QRectF() if box is None else QRectF(box.viewRect())
+
+    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
+        """The plot shows another range or has another size."""
+        self.prepareGeometryChange()
+
+
+class Dots(_OverPlot):
+    """Trials as dots: A squares, B round, both a square with a round heart, the rest small."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._look = LIGHT
+        self._x: Floats = np.zeros(0)
+        self._y: Floats = np.zeros(0)
+        self._in: dict[str, Mask] = {}
+        self._points = PrimitiveArray(QPointF, 2)
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        self._look = look
+        self.update()
+
+    def set_points(self, x: Floats, y: Floats, in_a: Mask, in_b: Mask, drawn: Mask) -> None:
+        """Draw these trials; of those that are not ``drawn`` there is no dot."""
+        self._x, self._y = x, y
+        self._in = {
+            "rest": drawn & ~in_a & ~in_b,
+            "A": drawn & in_a,
+            "B": drawn & in_b & ~in_a,
+            "both": drawn & in_a & in_b,
+        }
+        self.update()
+
+    def trials_drawn(self, name: str) -> list[int]:
+        """Trials drawn as ``"rest"``, ``"A"`` (both included), ``"B"`` alone or ``"both"``."""
+        return np.flatnonzero(self._in[name]).tolist() if self._in else []
+
+    def paint(
+        self,
+        painter: QPainter,
+        _option: QStyleOptionGraphicsItem,
+        _widget: QWidget | None = None,
+    ) -> None:
+        """Draw the rest first, A and B over it."""
+        if not self._in:
+            return
+        way = painter.worldTransform()
+        x = self._x * way.m11() + way.dx()
+        y = self._y * way.m22() + way.dy()
+        look = self._look
+        painter.save()
+        painter.resetTransform()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        for name, colour, size, square in (
+            ("rest", mixed(look.muted, look.panel, 0.25), REST_SIZE, False),
+            ("A", look.subset_a, A_SIZE, True),
+            ("B", look.subset_b, B_SIZE, False),
+            ("both", look.subset_b, BOTH_SIZE, False),
+        ):
+            self._draw(painter, x[self._in[name]], y[self._in[name]], colour, size, square=square)
+        painter.restore()
+
+    def _draw(
+        self, painter: QPainter, x: Floats, y: Floats, colour: str, size: float, *, square: bool
+    ) -> None:
+        if not len(x):
+            return
+        self._points.resize(len(x))
+        places = self._points.ndarray()
+        places[:, 0], places[:, 1] = x, y
+        dot = QPen(QColor(colour), size)
+        dot.setCapStyle(Qt.PenCapStyle.SquareCap if square else Qt.PenCapStyle.RoundCap)
+        painter.setPen(dot)
+        painter.drawPoints(*self._points.drawargs())
+
+
+class PickBox(_OverPlot):
+    """The box that is being dragged, in the colour and line of the subset it picks for."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._look = LIGHT
+        self._letter = "A"
+        self._box = QRectF()
+        self.setZValue(60)
+        self.hide()
+
+    def set_look(self, look: Look) -> None:
+        """Take the colours of a theme."""
+        self._look = look
+        self.update()
+
+    def show_box(self, letter: str, start: QPointF, end: QPointF) -> None:
+        """Draw the box between two corners, given in the plot's units."""
+        self._letter = letter
+        self._box = QRectF(start, end).normalized()
+        self.show()
+        self.update()
+
+    @property
+    def box(self) -> QRectF:
+        """The box in the plot's units."""
+        return self._box
+
+    def paint(
+        self,
+        painter: QPainter,
+        _option: QStyleOptionGraphicsItem,
+        _widget: QWidget | None = None,
+    ) -> None:
+        """Draw the outline with a halo of the panel's colour."""
+        place = painter.worldTransform().mapRect(self._box)
+        painter.save()
+        painter.resetTransform()
+        painter.setPen(pen(self._look.panel, width=4))
+        painter.drawRect(place)
+        painter.setPen(pen(self._look.subset(self._letter), width=2, dashed=self._letter == "B"))
+        painter.drawRect(place)
+        painter.restore()

@@ -1,0 +1,65 @@
+"""Steps of the sort key: slower work, done when the mouse rests."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from phasebrush.core.steps import step_of_trial, steps_at
+from phasebrush.model.results import Steps
+
+if TYPE_CHECKING:
+    from numpy.typing import NDArray
+
+    from phasebrush.core.spot import Spot
+    from phasebrush.model.channel_work import ChannelWork
+    from phasebrush.model.jobs import Progress
+    from phasebrush.model.results import KeyValues
+
+
+@dataclass(frozen=True, eq=False)
+class StepsQuestion:
+    """What the steps were asked for: it captured everything they need."""
+
+    work: ChannelWork
+    key: KeyValues
+    spot: Spot
+    used: NDArray[np.bool_]
+    count: int
+
+    def same_as(self, other: StepsQuestion | None) -> bool:
+        """Whether both ask for the same steps."""
+        return (
+            other is not None
+            and self.work is other.work
+            and self.key is other.key
+            and self.spot == other.spot
+            and self.count == other.count
+            and np.array_equal(self.used, other.used)
+        )
+
+
+def work_out_steps(question: StepsQuestion, progress: Progress) -> Steps:
+    """Cut the trials into steps and describe each, with bootstrap bands."""
+    coefficients = question.work.coefficients
+    row, column = coefficients.point(question.spot.centre_hz, question.spot.centre_s)
+    steps = step_of_trial(question.key.values, question.used, question.count)
+    of = steps_at(
+        coefficients.values[:, row, column],
+        question.work.voltages_uv,
+        steps,
+        key_values=question.key.values,
+    )
+    progress.report(1.0)
+    return Steps(
+        count=question.count,
+        times_s=question.work.times_s,
+        of=of,
+        key_title=question.key.title,
+        key_unit=question.key.unit,
+        freq_hz=float(coefficients.freqs_hz[row]),
+        time_s=float(coefficients.times_s[column]),
+        valid=bool(coefficients.valid[row, column]),
+    )
