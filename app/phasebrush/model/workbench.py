@@ -59,6 +59,7 @@ class Listeners:
     dirty: Callable[[], None] = _nothing
     jobs: Callable[[], None] = _nothing
     message: Callable[[str], None] = _nothing
+    changed: Callable[[], None] = _nothing
     failed: Callable[[Exception], None] = _nothing
     recording_read: Callable[[Recording, Cut], None] | None = None
 
@@ -120,6 +121,7 @@ class Workbench:
         if not self._gesture_kept:
             self._history.keep(intent.name, origin)
             self._gesture_kept = intent.gesture != 0
+            self.listeners.changed()
         self._swap(wished, intent.source)
 
     def _do_fleeting(self, intent: Intent) -> None:
@@ -159,6 +161,7 @@ class Workbench:
         state = self._history.undo(self._state)
         if state is not None:
             self._swap(state, "")
+            self.listeners.changed()
 
     def redo(self) -> None:
         """Go forward one undone step."""
@@ -166,6 +169,7 @@ class Workbench:
         state = self._history.redo(self._state)
         if state is not None:
             self._swap(state, "")
+            self.listeners.changed()
 
     def _swap(self, state: State, source: str) -> None:
         old, self._state = self._state, state
@@ -253,6 +257,17 @@ class Workbench:
                 self._failed,
             )
         )
+
+    def adopt(self, intent: Intent, trials: Trials | None) -> None:
+        """Take over a whole record, with the trials that it names."""
+        if trials is not None:
+            self._shelf.put(trials)
+        self.do(intent)
+        self._mark({Result.TRIALS}, "")
+
+    def trials_of(self, state: State) -> Trials | None:
+        """The trials that a record names, where they lie ready."""
+        return self._find_trials(state)
 
     def take_trials(self, trials: Trials) -> None:
         """Lay ready trials on the table."""

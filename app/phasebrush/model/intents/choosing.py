@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 from functools import partial
 from typing import TYPE_CHECKING, Any
@@ -16,8 +17,7 @@ from phasebrush.model.state import LETTERS, Letter, State
 from phasebrush.model.subset import NOBODY, Subset
 
 if TYPE_CHECKING:
-    import math
-from collections.abc import Callable, Mapping
+    from collections.abc import Callable, Mapping
 
     from numpy.typing import NDArray
 

@@ -1,0 +1,222 @@
+"""Saves, opens and recovers the whole piece of work behind a workbench."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from functools import partial
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from phasebrush.model import opening
+from phasebrush.model.intents import Intent
+from phasebrush.model.jobs import Job, Progress
+from phasebrush.model.recording_hash import Content, ContentShelf
+from phasebrush.model.workspace import Workspace, lost_trials, state_of, to_workspace
+from phasebrush.model.workspace_file import read_workspace, save_workspace
+from phasebrush.model.workspace_paths import paths_of
+from phasebrush.model.workspace_search import Found, find_recordings, relocated
+
+if TYPE_CHECKING:
+    from phasebrush.core.trials import Trials
+    from phasebrush.model.recovery import Offer, Recovery
+    from phasebrush.model.state import State
+    from phasebrush.model.workbench import Workbench
+
+AskMissing = Callable[[Found, Callable[[dict[str, str]], None]], None]
+
+
+@dataclass(frozen=True, eq=False)
+class Opened:
+    """A workspace as read: where its recordings are, and the trials of the open one."""
+
+    file: str
+    found: Found
+    trials: Trials | None
+
+
+class WorkKeeper:
+    """One for each workbench.
+
+    Parameters
+    ----------
+    bench : Workbench
+        Whose work is kept.
+    recovery : Recovery or None
+        Where unsaved work is kept aside; nowhere where none is given.
+    """
+
+    def __init__(self, bench: Workbench, recovery: Recovery | None = None) -> None:
+        self._bench = bench
+        self._recovery = recovery
+        self._contents = ContentShelf()
+        self._saved: State | None = None
+        self.file = ""
+        self.ask_missing: AskMissing | None = None
+        self.told: Callable[[], None] = lambda: None
+        bench.listeners.changed = self._note_change
+
+    @property
+    def unsaved(self) -> bool:
+        """Whether something that a person made is in no file yet."""
+        state = self._bench.state
+        if self._saved is not None:
+            return _made(self._saved) != _made(state)
+        return any(part for part in _made(state))
+
+    def _note_change(self) -> None:
+        if self._recovery is not None:
+            self._recovery.note_change()
+        self.told()
+
+    # -- saving -------------------------------------------------------------------------------
+
+    def save(self, path: str) -> None:
+        """Save the work; recordings are hashed first, beside the window."""
+        state, trials = self._bench.state, self._bench.trials_of(self._bench.state)
+        work = partial(self._write, path, state, trials)
+        done = partial(self._written, path, state)
+        self._bench.jobs.start(
+            Job("save", f"saving {Path(path).name}", work, done, self._bench.listeners.failed)
+        )
+
+    def _write(self, path: str, state: State, trials: Trials | None, progress: Progress) -> None:
+        contents: dict[str, Content] = {}
+        for place in paths_of(state):
+            if Path(place).exists():
+                contents[place] = self._contents.read(place, stopped=progress.stopped)
+        save_workspace(path, to_workspace(state, trials, contents, file=path))
+
+    def _written(self, path: str, state: State, _answer: object) -> None:
+        self.file, self._saved = path, state
+        if self._recovery is not None:
+            self._recovery.saved_by_hand()
+        self._bench.listeners.message(f"{Path(path).name} is saved")
+        self.told()
+
+    # -- opening ------------------------------------------------------------------------------
+
+    def open(self, path: str) -> None:
+        """Open a workspace; what is on the table stays until it is there."""
+        self._start_opening(path, partial(_read, path))
+
+    def recover(self, offer: Offer) -> None:
+        """Go on with work that a crash left behind."""
+        self._start_opening("", lambda _progress: offer.read())
+
+    def _start_opening(self, path: str, read: Callable[[Progress], Workspace]) -> None:
+        folder = str(Path(path).parent) if path else "."
+        work = partial(self._find, path, folder, read)
+        self._bench.jobs.start(
+            Job("workspace", "opening the workspace", work, self._found,
+                self._bench.listeners.failed)
+        )  # fmt: skip
+
+    def _find(
+        self,
+        path: str,
+        folder: str,
+        read: Callable[[Progress], Workspace],
+        progress: Progress,
+    ) -> Opened:
+        workspace = read(progress)
+        found = find_recordings(
+            workspace,
+            folder,
+            self._contents,
+            progress=lambda share: progress.report(0.5 * share),
+            stopped=progress.stopped,
+        )
+        return Opened(path or workspace.file, found, _trials_of(found, progress))
+
+    def _found(self, opened: Opened) -> None:
+        missing = opened.found.missing
+        if missing and self.ask_missing is not None:
+            self.ask_missing(opened.found, partial(self._shown_where, opened))
+        else:
+            self._adopt(opened)
+
+    def _shown_where(self, opened: Opened, places: dict[str, str]) -> None:
+        """Go on once somebody said where the missing recordings are (or that they do not know)."""
+        if not places:
+            self._adopt(opened)
+            return
+        workspace = relocated(opened.found.workspace, places)
+        self._start_opening(opened.file, lambda _progress: workspace)
+
+    def _adopt(self, opened: Opened) -> None:
+        workspace, trials = opened.found.workspace, opened.trials
+        state = state_of(workspace, trials)
+        self._bench.adopt(Intent("open the workspace", lambda _state, _snapshot: state), trials)
+        self.file = opened.file
+        self._saved = self._bench.state
+        for warning in opened.found.warnings:
+            self._bench.listeners.message(warning)
+        for name, count in (lost_trials(workspace, trials) if trials else {}).items():
+            words = {"a": "A", "b": "B"}.get(name, name)
+            self._bench.listeners.message(
+                f"{count} trials of {words} are not in the recording any more"
+            )
+        self.told()
+
+    # -- keeping aside ------------------------------------------------------------------------
+
+    def keep_aside(self) -> None:
+        """Write the recovery file if it is due; beside the window."""
+        if self._recovery is None or not self._recovery.due() or not self.unsaved:
+            return
+        workspace = self._workspace_now()
+        if workspace is not None:
+            work = partial(_save_aside, self._recovery, workspace)
+            self._bench.jobs.start(
+                Job("aside", "keeping work aside", work, _nothing, self._bench.listeners.failed)
+            )
+
+    def _workspace_now(self) -> Workspace | None:
+        state = self._bench.state
+        trials = self._bench.trials_of(state)
+        if trials is None and (state.a.n or state.b.n or state.excluded.n):
+            return None  # being read again; the next change or minute comes round
+        known = {place: self._contents.known(place) for place in paths_of(state)}
+        contents = {place: content for place, content in known.items() if content is not None}
+        return to_workspace(state, trials, contents, file=self.file)
+
+    def close(self) -> None:
+        """The program ends in order: unsaved work is kept for the next start, else nothing."""
+        if self._recovery is None:
+            return
+        if self.unsaved:
+            workspace = self._workspace_now()
+            if workspace is not None:
+                self._recovery.save(workspace)
+        else:
+            self._recovery.clear()
+
+
+def _made(state: State) -> tuple[object, ...]:
+    """What a person made, as against where they looked."""
+    desks = tuple(desk for desk in state.desks if desk.a.who or desk.b.who or desk.excluded.who)
+    subsets = tuple(x for x in (state.a, state.b, state.excluded) if x.n)
+    return subsets, state.named, state.notes, desks
+
+
+def _read(path: str, _progress: Progress) -> Workspace:
+    return read_workspace(path)
+
+
+def _save_aside(recovery: Recovery, workspace: Workspace, _progress: Progress) -> None:
+    recovery.save(workspace)
+
+
+def _nothing(_answer: object) -> None:
+    return None
+
+
+def _trials_of(found: Found, progress: Progress) -> Trials | None:
+    """Trials of the recording that was open, cut as before; None where it is missing."""
+    state = found.workspace.state
+    gone = {kept.path for kept in found.missing}
+    if not state.recording or state.cut is None or state.recording in gone:
+        return None
+    recording = opening.open_recording(state.recording, progress)
+    return opening.cut(recording, state.cut, progress)
