@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 import pyqtgraph as pg
-from platformdirs import user_config_path
+from platformdirs import user_config_path, user_data_path
 from PySide6.QtCore import QEventLoop, QSettings
 from PySide6.QtWidgets import QApplication
 
@@ -18,6 +18,7 @@ from phasebrush.gui import theme
 from phasebrush.gui.background import ThreadRunner
 from phasebrush.gui.main_window import MainWindow
 from phasebrush.model import intents
+from phasebrush.model.recovery import Recovery, offers
 from phasebrush.model.workbench import Workbench
 
 LONGEST_PICTURE_S = 300.0
@@ -78,6 +79,11 @@ def settings() -> QSettings:
     return QSettings(str(folder / "window.ini"), QSettings.Format.IniFormat)
 
 
+def recovery_folder() -> Path:
+    """Where unsaved work is kept aside, readable by its owner alone."""
+    return user_data_path("phasebrush", appauthor=False) / "recovery"
+
+
 def run(wish: Wish) -> int:
     """Open the window; returns the exit status.
 
@@ -97,7 +103,9 @@ def run(wish: Wish) -> int:
         named = str(kept.value("look", "system"))
     look = theme.look_named(named)
     runner = ThreadRunner()
-    window = MainWindow(Workbench(runner), look, kept)
+    folder = None if wish.picture else recovery_folder()
+    recovery = Recovery(folder) if folder is not None else None
+    window = MainWindow(Workbench(runner), look, kept, recovery)
     app.aboutToQuit.connect(window.shut_down)
     window.resize(*wish.size)
     if not wish.picture:
@@ -109,6 +117,8 @@ def run(wish: Wish) -> int:
             return 0
         if wish.path:
             window.open_path(wish.path)
+        if folder is not None:
+            window.offer(offers(folder))
         return app.exec()
     finally:
         window.close()

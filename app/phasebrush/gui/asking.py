@@ -19,13 +19,20 @@ from phasebrush.model import intents
 from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from phasebrush.core.trials import Cut
     from phasebrush.gui.main_window import MainWindow
     from phasebrush.gui.view import RowMenu
     from phasebrush.model.intents import Intent
+    from phasebrush.model.workspace_search import Found
     from phasebrush.recordings import Recording
 
-FILES = "Recordings (*.fif *.fif.gz *.edf *.bdf *.vhdr *.npz);;All files (*)"
+FILES = (
+    "Recordings and workspaces (*.fif *.fif.gz *.edf *.bdf *.vhdr *.npz *.phasebrush.json);;"
+    "All files (*)"
+)
+WORK = "Workspace (*.phasebrush.json)"
 
 
 class Asking:
@@ -142,6 +149,34 @@ class Asking:
         mask = dialog.chosen()
         if mask.any():
             self._window.workbench.do(intents.exclude(mask))
+
+    def save_work(self) -> None:
+        """Save where it was saved before, else ask where."""
+        file = self._window.keeper.file
+        if file:
+            self._window.keeper.save(file)
+        else:
+            self.save_work_as()
+
+    def save_work_as(self) -> None:
+        """Ask where the workspace goes."""
+        path, _kind = QFileDialog.getSaveFileName(
+            self._window, "Save the workspace", "work.phasebrush.json", WORK
+        )
+        if path:
+            named = path if path.endswith(".phasebrush.json") else f"{path}.phasebrush.json"
+            self._window.keeper.save(named)
+
+    def where_is(self, found: Found, answer: Callable[[dict[str, str]], None]) -> None:
+        """Ask where the missing recordings of a workspace are; none that is not shown is opened."""
+        places: dict[str, str] = {}
+        for kept in found.missing:
+            path, _kind = QFileDialog.getOpenFileName(
+                self._window, f"Where is {kept.name}?", "", FILES
+            )
+            if path:
+                places[kept.path] = path
+        answer(places)
 
     def keys(self) -> None:
         """Show the page of keys and gestures."""

@@ -132,7 +132,8 @@ class Bench(QWidget):
 
     def show_legend(self, snapshot: Snapshot, look: Look) -> None:
         """Line styles and counts of the three sets."""
-        parts = [(f"— all {snapshot.n_trials}", look.text)]
+        n_used = snapshot.n_trials - snapshot.state.excluded.n
+        parts = [(f"— all {n_used}", look.text)]
         for letter, mark in (("A", "■ A"), ("B", "● B")):
             n = snapshot.state.subset(letter).n  # type: ignore[arg-type]
             if n:

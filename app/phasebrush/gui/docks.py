@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QHBoxLayout, QMainWindow, QMenu, QToolButton, QWidget
 
+from phasebrush.gui.drawer import Drawer
 from phasebrush.gui.panel import PanelDock
 from phasebrush.gui.views.channel_list import ChannelList
 from phasebrush.gui.views.head_map import HeadMap
@@ -26,6 +27,7 @@ if TYPE_CHECKING:
 
 LEFT = Qt.DockWidgetArea.LeftDockWidgetArea
 RIGHT = Qt.DockWidgetArea.RightDockWidgetArea
+BOTTOM = Qt.DockWidgetArea.BottomDockWidgetArea
 MAPS_SHOW: tuple[tuple[MapsShow, str, str], ...] = (
     ("all", "all", "Maps show all trials (1)"),
     ("A", "A", "Maps show A (2)"),
@@ -85,6 +87,11 @@ class Docks:
         self.power = self._dock("power", "Power", RIGHT, views.power_map, views.power_trace)
         self.dial = self._dock("dial", "Phase at the spot", RIGHT, views.dial)
         self.readout = self._dock("readout", "At the spot", RIGHT, views.readout)
+        self.drawer_content = Drawer()
+        self.drawer = self._dock("drawer", "Drawer", BOTTOM, self.drawer_content)
+        self.drawer.title_line.add(self.drawer_content.tabs)
+        # The left column keeps its height: its fields cannot be pressed together.
+        window.setCorner(Qt.Corner.BottomLeftCorner, LEFT)
         self.map_buttons = {which: self._map_button(words, tip) for which, words, tip in MAPS_SHOW}
 
     @property
@@ -92,7 +99,7 @@ class Docks:
         """Every dock, in reading order."""
         return (
             self.recordings, self.channel, self.order, self.subsets, self.itc, self.power,
-            self.dial, self.readout,
+            self.dial, self.readout, self.drawer,
         )  # fmt: skip
 
     def _dock(self, name: str, title: str, area: Qt.DockWidgetArea, *parts: QWidget) -> PanelDock:
@@ -112,8 +119,8 @@ class Docks:
         window = self._window
         for dock in self.docks:
             dock.setFloating(False)
-            window.addDockWidget(LEFT if dock in self.docks[:4] else RIGHT, dock)
-            dock.show()
+            window.addDockWidget(self._home(dock), dock)
+            dock.setVisible(dock is not self.drawer)
         window.splitDockWidget(self.dial, self.readout, Qt.Orientation.Horizontal)
         width, height = window.width(), window.height()
         left = 216 if width < 1500 else 248
@@ -132,6 +139,23 @@ class Docks:
             [self.dial, self.readout], [round(right * 0.44), round(right * 0.56)],
             Qt.Orientation.Horizontal,
         )  # fmt: skip
+
+    def _home(self, dock: PanelDock) -> Qt.DockWidgetArea:
+        if dock is self.drawer:
+            return BOTTOM
+        return LEFT if dock in self.docks[:4] else RIGHT
+
+    def toggle_drawer(self) -> None:
+        """Open the drawer at a useful height, or close it."""
+        opening = not self.drawer.isVisible()
+        self.drawer.setVisible(opening)
+        if opening:
+            tall = round(max(230, self._window.height() * 0.28))
+            self._window.resizeDocks([self.drawer], [tall], Qt.Orientation.Vertical)
+
+    def all_views(self) -> tuple[View, ...]:
+        """The views in every dock, the drawer's among them."""
+        return (*self.views.all(), *self.drawer_content.views.all())
 
     def menu(self, parent: QWidget) -> QMenu:
         """A line a panel, and the way back to the first arrangement."""

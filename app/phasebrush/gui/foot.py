@@ -4,10 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import Qt, QTimer
+from PySide6.QtCore import QTimer
 from PySide6.QtWidgets import (
-    QFrame,
-    QHBoxLayout,
     QLabel,
     QProgressBar,
     QStatusBar,
@@ -24,57 +22,6 @@ if TYPE_CHECKING:
     from phasebrush.model.results import Snapshot
 
 POLL_MS = 100
-
-
-class MessageBar(QFrame):
-    """One line that says what happened; the same line is not said twice in a row."""
-
-    def __init__(self, parent: QWidget | None = None) -> None:
-        super().__init__(parent)
-        self.setObjectName("messageBar")
-        self._waiting: list[str] = []
-        self._words = QLabel(self)
-        self._words.setTextFormat(Qt.TextFormat.PlainText)
-        self._words.setWordWrap(True)
-        self._words.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
-        self._close = QToolButton(self)
-        self._close.setToolTip("Dismiss this message")
-        self._close.setAccessibleName("dismiss this message")
-        self._close.clicked.connect(self.dismiss)
-        layout = QHBoxLayout(self)
-        layout.setContentsMargins(8, 4, 4, 4)
-        layout.addWidget(self._words, 1)
-        layout.addWidget(self._close)
-        self.hide()
-
-    @property
-    def text(self) -> str:
-        """The message that is shown."""
-        return self._words.text() if not self.isHidden() else ""
-
-    def say(self, line: str) -> None:
-        """Show a line, after those that wait to be read."""
-        if line not in self._waiting:
-            self._waiting.append(line)
-        self._show()
-
-    def dismiss(self) -> None:
-        """Show the next line, or nothing."""
-        if self._waiting:
-            self._waiting.pop(0)
-        self._show()
-
-    def clear(self) -> None:
-        """Drop every line: another recording lies on the table."""
-        self._waiting.clear()
-        self._show()
-
-    def _show(self) -> None:
-        self.setVisible(bool(self._waiting))
-        if self._waiting:
-            self._words.setText(self._waiting[0])
-            more = len(self._waiting) - 1
-            self._close.setText(f"dismiss ({more} more)" if more else "dismiss")
 
 
 class Foot(QStatusBar):
@@ -113,6 +60,7 @@ class Foot(QStatusBar):
         words = ""
         if snapshot.trials is not None:
             words = f"  {snapshot.n_trials} trials · A {state.a.n} · B {state.b.n}"
+            words += f" · {state.excluded.n} excluded" if state.excluded.n else ""
         self._counts.set_words(words)
         self._outdated = bool(snapshot.outdated) and snapshot.trials is not None
         if self._outdated or self._button.isVisible():

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+from datetime import datetime
 from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -22,8 +24,9 @@ from phasebrush.gui.actions import Actions
 from phasebrush.gui.asking import Asking
 from phasebrush.gui.bench import Bench
 from phasebrush.gui.docks import Docks
-from phasebrush.gui.foot import Foot, MessageBar
+from phasebrush.gui.foot import Foot
 from phasebrush.gui.frame_clock import FrameClock
+from phasebrush.gui.message_bar import MessageBar
 from phasebrush.gui.view import Ways
 from phasebrush.gui.view_board import ViewBoard
 from phasebrush.gui.welcome import SAMPLES, Welcome
@@ -31,6 +34,8 @@ from phasebrush.look.tokens import DARK, LIGHT, Look
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
 from phasebrush.model.state import Shelved
+from phasebrush.model.work_keeper import WorkKeeper
+from phasebrush.model.workspace_file import WORKSPACE_ENDING
 from phasebrush.sample_files import default_sample, sample_recordings
 
 if TYPE_CHECKING:
@@ -38,12 +43,16 @@ if TYPE_CHECKING:
 
     from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
 
+    from phasebrush.core.rule import Rule
+    from phasebrush.gui.view import View
+    from phasebrush.model.recovery import Offer, Recovery
     from phasebrush.model.results import Snapshot
-    from phasebrush.model.state import MapsShow
+    from phasebrush.model.state import Letter, MapsShow
     from phasebrush.model.workbench import Workbench
 
 
 NARROW = 1180
+ASIDE_MS = 2000
 TITLES = frozenset(
     {Result.TRIALS, Result.CHANNEL, Result.KEY, Result.STACK, Result.SUBSETS, Result.MAPS,
      Result.DIAL}
@@ -61,9 +70,17 @@ class MainWindow(QMainWindow):
         Light or dark.
     settings : QSettings, optional
         Where the arrangement is remembered; not at all where none is given.
+    recovery : Recovery, optional
+        Where unsaved work is kept aside; nowhere where none is given.
     """
 
-    def __init__(self, workbench: Workbench, look: Look, settings: QSettings | None = None) -> None:
+    def __init__(
+        self,
+        workbench: Workbench,
+        look: Look,
+        settings: QSettings | None = None,
+        recovery: Recovery | None = None,
+    ) -> None:
         super().__init__()
         self.setObjectName("phasebrush")
         self.setWindowTitle("Phasebrush")
@@ -72,11 +89,13 @@ class MainWindow(QMainWindow):
         self.setMinimumSize(900, 600)
         self.setContentsMargins(theme.GRID, 0, theme.GRID, 0)
         self.workbench = workbench
+        self.keeper = WorkKeeper(workbench, recovery)
         self.look = look
         self._settings = settings
         self._folded: list[QWidget] = []
         self._arranged = False
         self._closed = False
+        self._flipped_from: MapsShow | None = None
         self.clock = FrameClock(self._flush, self)
         self.asking = Asking(self)
         self.actions_ = Actions(self, self._slots())
@@ -98,9 +117,14 @@ class MainWindow(QMainWindow):
         self.setCentralWidget(centre)
         bench = self.bench
         self.board = ViewBoard(
-            (*self.docks.views.all(), bench.average, bench.stack, bench.strip, bench.corner)
+            (*self.docks.all_views(), bench.average, bench.stack, bench.strip, bench.corner)
         )
         self._wire()
+        self._aside = QTimer(self)
+        self._aside.setInterval(ASIDE_MS)
+        self._aside.timeout.connect(self.keeper.keep_aside)
+        if recovery is not None:
+            self._aside.start()
         self.set_look(look)
         self._show_page(open_now=False)
         self.clock.request()
@@ -117,6 +141,8 @@ class MainWindow(QMainWindow):
         }
         return slots | {
             "open": self.asking.choose_file,
+            "save": self.asking.save_work,
+            "save_as": self.asking.save_work_as,
             "open_folder": self.asking.choose_folder,
             "samples": self._open_samples,
             "cut": self.asking.cut_dialog,
@@ -124,6 +150,7 @@ class MainWindow(QMainWindow):
             "undo": self.workbench.undo,
             "redo": self.workbench.redo,
             "panels": self._panels_menu,
+            "drawer": self.toggle_drawer,
             "picture": self.asking.choose_picture,
             "theme": self.toggle_look,
             "keys": self.asking.keys,
@@ -145,6 +172,8 @@ class MainWindow(QMainWindow):
         listeners.jobs = self.foot.show_jobs
         listeners.message = self.message_bar.say
         listeners.failed = self._tell_fault
+        self.keeper.told = self._show_name
+        self.keeper.ask_missing = self.asking.where_is
         listeners.recording_read = self.asking.ask_cut
         for view in self.board.views:
             view.ways = Ways(
@@ -154,7 +183,9 @@ class MainWindow(QMainWindow):
                 hint=self.foot.hint,
                 row_menu=self.asking.open_row_menu,
                 missed=self.board.catch_up,
+                seen=self._seen,
             )
+        self.docks.drawer_content.views.notes.apply_rule = self._apply_rule
         self.docks.views.recordings.open_listed = workbench.open_listed
         for which, button in self.docks.map_buttons.items():
             button.clicked.connect(partial(self._maps_show, which))
@@ -174,16 +205,57 @@ class MainWindow(QMainWindow):
         self._name_step("undo", history.undo_name)
         self._name_step("redo", history.redo_name)
 
+    def _seen(self, view: View, seen: bool) -> None:
+        """Steps are worked out only while somebody looks at them."""
+        if view is self.docks.drawer_content.views.steps:
+            self.workbench.want_steps(wanted=seen)
+
+    def _apply_rule(self, letter: Letter, rule: Rule) -> None:
+        """Sort as the rule does, then pick whom it gives by now."""
+        here = replace(rule, channel=self.workbench.state.channel) if rule.key else rule
+        self.workbench.do(intents.prepare_rule(here))
+        self.clock.flush_now()
+        self.workbench.do(intents.apply_rule(letter, here))
+
     def _show_words(self, snapshot: Snapshot) -> None:
         self.docks.show_titles(snapshot)
         self.bench.show_titles(snapshot)
         self.bench.show_legend(snapshot, self.look)
         trials = snapshot.trials
-        title = f"{trials.source.title} · Phasebrush" if trials is not None else "Phasebrush"
+        self._show_name()
+        for name in (
+            "save",
+            "save_as",
+            "cut",
+            "transform",
+            "suspects",
+            "thirds",
+            "halves",
+            "quarters",
+            "swap",
+        ):
+            self.actions_[name].setEnabled(trials is not None)
+
+    def _show_name(self) -> None:
+        """The recording and the workspace, with a dot while something is unsaved."""
+        trials = self.workbench.snapshot.trials
+        parts = [trials.source.title] if trials is not None else []
+        if self.keeper.file:
+            parts.append(Path(self.keeper.file).name)
+        dot = "• " if self.keeper.unsaved else ""
+        title = dot + " · ".join((*parts, "Phasebrush"))
         if title != self.windowTitle():
             self.setWindowTitle(title)
-        for name in ("cut", "transform", "suspects", "thirds", "halves", "quarters", "swap"):
-            self.actions_[name].setEnabled(trials is not None)
+
+    def offer(self, found: tuple[Offer, ...]) -> None:
+        """Offer work that was left unsaved by an earlier run."""
+        for one in found:
+            when = datetime.fromtimestamp(one.saved_at_s).astimezone().strftime("%d %b, %H:%M")
+            self.message_bar.say(
+                f"unsaved work of {when} is there",
+                ("go on with it", partial(self.keeper.recover, one)),
+                ("forget it", one.discard),
+            )
 
     def _name_step(self, action: str, step: str) -> None:
         item = self.actions_[action]
@@ -210,6 +282,9 @@ class MainWindow(QMainWindow):
     def open_path(self, path: str, *, ask: bool = False) -> None:
         """Open a file or folder; a sample session brings the other ones along on the list."""
         self.message_bar.clear()
+        if path.lower().endswith(WORKSPACE_ENDING):
+            self.keeper.open(path)
+            return
         samples = [str(sample) for sample in sample_recordings()]
         whole = str(Path(path).resolve())
         if whole in samples:
@@ -248,8 +323,31 @@ class MainWindow(QMainWindow):
         if event.key() == Qt.Key.Key_Escape:
             self.workbench.do(intents.clear())
             event.accept()
+        elif event.key() == Qt.Key.Key_F and not event.isAutoRepeat():
+            self._flip()
+            event.accept()
         else:
             super().keyPressEvent(event)
+
+    def keyReleaseEvent(self, event: QKeyEvent) -> None:
+        """The key that flips A and B was let go."""
+        if event.key() == Qt.Key.Key_F and not event.isAutoRepeat():
+            self._flip_back()
+            event.accept()
+        else:
+            super().keyReleaseEvent(event)
+
+    def _flip(self) -> None:
+        """Show the other subset in the maps while a key is held: a blink comparison."""
+        shown = self.workbench.state.maps_show
+        self._flipped_from = shown
+        other: MapsShow = "B" if shown == "A" else "A"
+        self.workbench.do(intents.show_in_maps(other, fleeting=True))
+
+    def _flip_back(self) -> None:
+        if self._flipped_from is not None:
+            self.workbench.do(intents.show_in_maps(self._flipped_from, fleeting=True))
+            self._flipped_from = None
 
     def _maps_show(self, which: MapsShow, _checked: object = None) -> None:
         self.workbench.do(intents.show_in_maps(which))
@@ -277,6 +375,11 @@ class MainWindow(QMainWindow):
         if trials is not None and channel in trials.ch_names:
             at = (trials.ch_names.index(channel) + step) % len(trials.ch_names)
             self.workbench.do(intents.show_channel(trials.ch_names[at]))
+
+    def toggle_drawer(self) -> None:
+        """Open or close the drawer."""
+        if self.workbench.snapshot.trials is not None:
+            self.docks.toggle_drawer()
 
     def _panels_menu(self) -> None:
         menu: QMenu = self.docks.menu(self)
@@ -364,6 +467,8 @@ class MainWindow(QMainWindow):
             self._settings.setValue("look", self.look.name)
             self._settings.sync()
         self.clock.stop()
+        self._aside.stop()
+        self.keeper.close()
         self.foot.close_foot()
         self.asking.close()
         self.workbench.close()

@@ -160,6 +160,12 @@ def style_sheet(look: Look) -> str:
         min-width: 24px; }}
     QScrollBar::add-line, QScrollBar::sub-line {{ width: 0; height: 0; }}
     QScrollBar::add-page, QScrollBar::sub-page {{ background: transparent; }}
+    QTabBar#drawerTabs {{ background: {look.panel}; border: none; }}
+    QTabBar#drawerTabs::tab {{ background: transparent; color: {look.muted}; border: none;
+        border-bottom: 2px solid transparent; padding: 3px 10px; margin-right: 4px; }}
+    QTabBar#drawerTabs::tab:hover {{ color: {look.text}; }}
+    QTabBar#drawerTabs::tab:selected {{ color: {look.text}; border-bottom-color: {look.focus}; }}
+    QTabBar#drawerTabs::tab:focus {{ border-bottom-color: {look.text}; }}
     #messageBar {{ background: {look.panel}; border: 1px solid {look.hairline};
         border-left: 3px solid {look.caution}; border-radius: 4px; }}
     """

@@ -13,7 +13,7 @@ from phasebrush.model.stale import Result
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from PySide6.QtGui import QShowEvent
+    from PySide6.QtGui import QHideEvent, QShowEvent
 
     from phasebrush.model.intents import Intent
     from phasebrush.model.results import Snapshot
@@ -45,6 +45,7 @@ class Ways:
     hint: Callable[[str], None] = lambda _text: None
     row_menu: Callable[[RowMenu], None] = lambda _wish: None
     missed: Callable[[View], None] = lambda _view: None
+    seen: Callable[[View, bool], None] = lambda _view, _seen: None
 
 
 class View(QWidget):
@@ -76,8 +77,14 @@ class View(QWidget):
     def showEvent(self, event: QShowEvent) -> None:
         """Catch up with what was missed while hidden."""
         super().showEvent(event)
+        self.ways.seen(self, True)
         if self.missed:
             self.ways.missed(self)
+
+    def hideEvent(self, event: QHideEvent) -> None:
+        """Nobody looks: slower work for this view can rest."""
+        super().hideEvent(event)
+        self.ways.seen(self, False)
 
     def close_view(self) -> None:
         """Let go of everything that could call back."""

@@ -37,10 +37,10 @@ def read_text(file: Path) -> str:
             "check that you may read it",
             file,
         ) from fault
-    if not data.strip():
-        raise MisfitError("the content", "is empty")
     if len(data) > MOST_BYTES:
         raise MisfitError("the content", f"has more than {MOST_BYTES // 1_000_000} MB")
+    if not data.strip():
+        raise MisfitError("the content", "is empty")
     try:
         return data.decode("utf-8-sig")
     except UnicodeDecodeError:

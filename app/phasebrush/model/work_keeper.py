@@ -12,10 +12,16 @@ from phasebrush.model import opening
 from phasebrush.model.intents import Intent
 from phasebrush.model.jobs import Job, Progress
 from phasebrush.model.recording_hash import Content, ContentShelf
-from phasebrush.model.workspace import Workspace, lost_trials, state_of, to_workspace
+from phasebrush.model.workspace import (
+    Workspace,
+    lost_trials,
+    relocated,
+    state_of,
+    to_workspace,
+)
 from phasebrush.model.workspace_file import read_workspace, save_workspace
 from phasebrush.model.workspace_paths import paths_of
-from phasebrush.model.workspace_search import Found, find_recordings, relocated
+from phasebrush.model.workspace_search import Found, find_recordings
 
 if TYPE_CHECKING:
     from phasebrush.core.trials import Trials

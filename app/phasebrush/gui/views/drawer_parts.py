@@ -127,8 +127,10 @@ def table_sheet(look: Look) -> str:
     return f"""
     QHeaderView {{ background: {look.panel}; }}
     QHeaderView::section {{ background: {look.panel}; color: {look.muted}; border: none;
-        border-bottom: 1px solid {look.hairline}; padding: 2px 8px; }}
+        border-bottom: 1px solid {look.hairline}; padding: 2px 10px; }}
+    QHeaderView::up-arrow, QHeaderView::down-arrow {{ subcontrol-origin: border;
+        subcontrol-position: center left; width: 8px; height: 8px; left: 1px; }}
     QTableView {{ selection-background-color: {chosen}; selection-color: {look.text}; }}
-    QTableView::item {{ padding: 0px 8px; border: none; }}
+    QTableView::item {{ padding: 0px 10px; border: none; }}
     QTableView::item:focus {{ border-bottom: 1px solid {look.focus}; }}
     """

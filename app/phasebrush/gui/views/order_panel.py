@@ -201,7 +201,7 @@ class OrderPanel(View):
     def _turned(self, item: int) -> None:
         self.ways.do(intents.turn_order(descending=item == 1))
 
-    def _grouped(self, on: bool) -> None:  # noqa: FBT001 - Qt's own signature
+    def _grouped(self, on: bool) -> None:
         self.ways.do(intents.order_by_label(on=on))
 
     def _signed(self, item: int) -> None:

@@ -10,10 +10,12 @@ import numpy as np
 from PySide6.QtCore import QPointF, QSignalBlocker, Qt
 from PySide6.QtWidgets import QStackedWidget, QVBoxLayout, QWidget
 
+from phasebrush.gui import theme
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
 from phasebrush.gui.view import View
 from phasebrush.gui.views.drawer_parts import empty_state, muted_label, quiet_choice, top_line
 from phasebrush.gui.views.scatter_dots import Dots, PickBox
+from phasebrush.gui.words import ElidedLabel
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS, Letter
@@ -114,6 +116,9 @@ class ScatterView(View):
             "y": self._choice("y", "Number along the vertical axis, one a trial"),
         }
         self._counts = muted_label("", self)
+        self._y_name = ElidedLabel("", self)
+        self._y_name.setProperty("muted", True)
+        self._y_name.setFont(theme.font(8.0))
         self.plot = TimePlot("scatter_area", Margins(), self)
         self.dots, self.box = Dots(), PickBox()
         self._shape_plot()
@@ -143,7 +148,13 @@ class ScatterView(View):
         names = [muted_label(words, self) for words in ("across", "up")]
         self._pages = QStackedWidget(self)
         self._pages.addWidget(empty_state("Open a recording to see its trials as dots", self))
-        self._pages.addWidget(self.plot)
+        plot = QWidget(self)
+        column = QVBoxLayout(plot)
+        column.setContentsMargins(theme.GRID, 0, 0, 0)
+        column.setSpacing(0)
+        column.addWidget(self._y_name)
+        column.addWidget(self.plot, 1)
+        self._pages.addWidget(plot)
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(0)
@@ -193,8 +204,10 @@ class ScatterView(View):
         )
         self.plot.set_time_range(*self._x.span())
         self.plot.set_value_range(*self._y.span())
-        # An axis reads its name as rich text, and a column's name comes from the file.
-        self.plot.name_axes(*(html.escape(m.title, quote=False) for m in (self._y, self._x)))
+        # An axis reads its name as rich text, and a column's name comes from the file. The name
+        # of the vertical one stands above it: upright it would be cut off in a low drawer.
+        self.plot.name_axes("", html.escape(self._x.title, quote=False))
+        self._y_name.set_words(self._y.title)
 
     def _draw(self) -> None:
         snapshot = self._snapshot
@@ -204,8 +217,8 @@ class ScatterView(View):
         used = ~snapshot.state.excluded.mask_of(n_trials)
         known = np.isfinite(self._x.values) & np.isfinite(self._y.values)
         self._drawn = used & known
-        masks = (snapshot.state.subset(letter).mask_of(n_trials) for letter in LETTERS)
-        self.dots.set_points(self._x.values, self._y.values, *masks, self._drawn)
+        in_a, in_b = (snapshot.state.subset(letter).mask_of(n_trials) for letter in LETTERS)
+        self.dots.set_points(self._x.values, self._y.values, in_a, in_b, self._drawn)
         self._say_counts(int(self._drawn.sum()), int((used & ~known).sum()), int((~used).sum()))
 
     def _say_counts(self, drawn: int, missing: int, excluded: int) -> None:

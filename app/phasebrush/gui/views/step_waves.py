@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 import pyqtgraph as pg
 from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
-from PySide6.QtGui import QColor
+from PySide6.QtGui import QColor, QFontMetricsF
 
 from phasebrush.gui import theme
 from phasebrush.gui.curves import Line
@@ -22,7 +22,7 @@ if TYPE_CHECKING:
 
     from phasebrush.model.results import Steps
 
-RANGE_WIDTH = 116
+RANGE_WIDTH = 60
 OVERLAP = 0.75
 BAR_PIXELS = 8
 
@@ -173,8 +173,16 @@ class StepWaves(TimePlot):
         levels = [level * self.spacing_uv for level in range(len(steps.of))]
         axis = self.getPlotItem().getAxis("left")
         axis.setTicks([[(y, f"{number + 1}") for number, y in enumerate(levels)]])
-        self._ranges_axis.setTicks([list(zip(levels, self.range_words, strict=True))])
+        self._write_ranges(levels)
         self.set_look(self.look)
+
+    def _write_ranges(self, levels: list[float]) -> None:
+        """Write the ranges beside their lines; an axis drops words that do not fit."""
+        words = self.range_words
+        metrics = QFontMetricsF(theme.font(8.0))
+        wide = max((metrics.horizontalAdvance(line) for line in words), default=0.0)
+        self._ranges_axis.setWidth(max(RANGE_WIDTH, math.ceil(wide) + 2 * theme.GRID))
+        self._ranges_axis.setTicks([list(zip(levels, words, strict=True))])
 
     def _space_out(self, steps: Steps) -> None:
         """Levels as far apart as the largest waveform is high, less a little overlap."""

@@ -17,13 +17,17 @@ from phasebrush.model import intents
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from PySide6.QtGui import QHideEvent, QShowEvent
+
     from phasebrush.gui.time_plot import Pointer
     from phasebrush.look.tokens import Look
     from phasebrush.model.results import Snapshot, Steps
 
 NO_RECORDING = "Open a recording to cut its trials into steps of the sort key"
 NO_STEPS = (
-    "There are no steps yet: they need the transform of the channel and a sort key with a value "
+    "No steps yet: they come once the channel is transformed, and need a sort key with a value "
     "for at least as many trials as steps"
 )
 DEFINITION = (
@@ -33,7 +37,11 @@ DEFINITION = (
 
 
 class StepsPlot(View):
-    """Average waveforms of the steps at the left; ITC, PPC and power at the right."""
+    """Average waveforms of the steps at the left; ITC, PPC and power at the right.
+
+    ``want_steps`` is called with ``wanted=True`` when the view comes into sight and with
+    ``wanted=False`` when it goes: the steps are slow work that nobody else needs.
+    """
 
     needs: ClassVar[frozenset[Result]] = frozenset(
         {Result.STEPS, Result.CURSOR, Result.TRIALS, Result.SHOWN}
@@ -43,6 +51,7 @@ class StepsPlot(View):
         super().__init__(parent)
         self.setObjectName("steps_plot")
         self.setAccessibleName("steps of the sort key: average waveform, ITC, PPC and power")
+        self.want_steps: Callable[..., None] | None = None
         self._steps: Steps | None = None
         self.count = QSpinBox(self)
         self.count.setRange(FEWEST_STEPS, MOST_STEPS)
@@ -83,6 +92,23 @@ class StepsPlot(View):
         layout.addLayout(line)
         layout.addWidget(self._pages, 1)
 
+    def showEvent(self, event: QShowEvent) -> None:
+        """Somebody looks: steps are wanted."""
+        if self.want_steps is not None:
+            self.want_steps(wanted=True)
+        super().showEvent(event)
+
+    def hideEvent(self, event: QHideEvent) -> None:
+        """Nobody looks any more."""
+        if self.want_steps is not None:
+            self.want_steps(wanted=False)
+        super().hideEvent(event)
+
+    def close_view(self) -> None:
+        """Let go of everything that could call back."""
+        self.want_steps = None
+        super().close_view()
+
     # -- data in ------------------------------------------------------------------------------
 
     def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
@@ -117,9 +143,10 @@ class StepsPlot(View):
             return ""
         sizes = sorted({step.n for step in steps.of})
         each = f"{sizes[0]} to {sizes[-1]}" if len(sizes) > 1 else f"{sizes[0]}"
+        time_s = f"{steps.time_s:.2f}".replace("-", "−")
         words = (
             f"by {steps.key_title}, {each} trials each · ITC, PPC, power at "
-            f"{steps.freq_hz:.1f} Hz, {steps.time_s:.2f} s".replace("-0", "−0")
+            f"{steps.freq_hz:.1f} Hz, {time_s} s"
         )
         return f"{words} · an earlier choice, being computed" if faded else words
 

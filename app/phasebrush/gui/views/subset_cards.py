@@ -86,10 +86,11 @@ class SubsetCards(View):
     def show_snapshot(self, snapshot: Snapshot, _changed: frozenset[Result]) -> None:
         """Write counts and rules."""
         sizes = {}
+        n_used = snapshot.n_trials - snapshot.state.excluded.n
         for letter, card in self._cards.items():
             subset = snapshot.state.subset(letter)
             sizes[letter] = subset.n
-            card.count.set_words(f"{subset.n} of {snapshot.n_trials}")
+            card.count.set_words(f"{subset.n} of {n_used}")
             card.words.set_words(subset_words(subset))
             card.clear.setEnabled(subset.n > 0)
         self._swap.setEnabled(any(sizes.values()))

@@ -6,8 +6,16 @@ from typing import TYPE_CHECKING, ClassVar, cast
 
 import numpy as np
 from PySide6.QtCore import QItemSelection, QItemSelectionModel, QSignalBlocker, Qt, QTimer
-from PySide6.QtGui import QAction, QGuiApplication, QKeySequence, QShortcut
-from PySide6.QtWidgets import QAbstractItemView, QStackedWidget, QTableView, QVBoxLayout, QWidget
+from PySide6.QtGui import QAction, QGuiApplication, QKeySequence, QPalette, QShortcut
+from PySide6.QtWidgets import (
+    QAbstractItemView,
+    QStackedWidget,
+    QStyledItemDelegate,
+    QStyleOptionViewItem,
+    QTableView,
+    QVBoxLayout,
+    QWidget,
+)
 
 from phasebrush.gui import theme
 from phasebrush.gui.brush import runs
@@ -22,13 +30,14 @@ from phasebrush.gui.views.drawer_parts import (
     top_line,
 )
 from phasebrush.gui.views.trial_columns import EXCLUDED, sets_of
-from phasebrush.gui.views.trial_rows import TrialRows
+from phasebrush.gui.views.trial_rows import SET_COLUMN, TrialRows
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS, Letter
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
+    from PySide6.QtCore import QModelIndex, QPersistentModelIndex
     from PySide6.QtWidgets import QToolButton
 
     from phasebrush.core.trials import Trials
@@ -40,7 +49,21 @@ if TYPE_CHECKING:
 
 REST_MS = 150
 ROW_HEIGHT = 20
+WIDEST, SET_WIDTH = 360, 88
 MARKS = {"A": "■ A", "B": "● B"}
+
+
+class _OwnInk(QStyledItemDelegate):
+    """Keeps the colour of a cell's words where its row is selected."""
+
+    def initStyleOption(  # noqa: N802 - the library's own name
+        self, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex
+    ) -> None:
+        """Write selected words in the cell's own colour."""
+        super().initStyleOption(option, index)
+        palette: QPalette = option.palette
+        palette.setColor(QPalette.ColorRole.HighlightedText, palette.color(QPalette.ColorRole.Text))
+        option.palette = palette
 
 
 class TrialTable(View):
@@ -99,7 +122,9 @@ class TrialTable(View):
         table.verticalHeader().setDefaultSectionSize(ROW_HEIGHT)
         table.verticalHeader().setMinimumSectionSize(ROW_HEIGHT)
         header = table.horizontalHeader()
+        table.setItemDelegateForColumn(SET_COLUMN, _OwnInk(self))
         header.setHighlightSections(False)
+        header.setTextElideMode(Qt.TextElideMode.ElideMiddle)
         header.setDefaultSectionSize(96)
         header.setSortIndicator(0, Qt.SortOrder.AscendingOrder)
         table.setSortingEnabled(True)
@@ -169,9 +194,9 @@ class TrialTable(View):
         self._pages.setCurrentIndex(0 if snapshot.trials is None else 1)
         header = self.table.horizontalHeader()
         for column in range(self.rows.columnCount()):
-            hint = self.table.sizeHintForColumn(column)
-            wide = max(hint, header.sectionSizeHint(column)) + theme.GRID
-            header.resizeSection(column, min(max(wide, 56), 220))
+            hint = max(self.table.sizeHintForColumn(column), header.sectionSizeHint(column))
+            header.resizeSection(column, min(max(hint + 2 * theme.GRID, 56), WIDEST))
+        header.resizeSection(SET_COLUMN, SET_WIDTH)
         self._selected()
 
     def _note_members(self, snapshot: Snapshot, n_trials: int) -> None:
@@ -218,7 +243,7 @@ class TrialTable(View):
     def selected_trials(self) -> Mask:
         """Which trials are selected, bool of shape (trials,)."""
         mask = np.zeros(self.rows.rowCount(), dtype=bool)
-        for block in self.table.selectionModel().selection():
+        for block in self.table.selectionModel().selection().toList():
             mask[self.rows.trials_of_rows(slice(block.top(), block.bottom() + 1))] = True
         return mask
 
@@ -279,10 +304,10 @@ class TrialTable(View):
             text = self.rows.text(mask if mask.any() else np.ones(len(mask), dtype=bool))
             QGuiApplication.clipboard().setText(text)
 
-    def _follow_a(self, on: bool) -> None:  # noqa: FBT001 - the signal gives it so
+    def _follow_a(self, on: bool) -> None:
         self._follow_one("A", on=on)
 
-    def _follow_b(self, on: bool) -> None:  # noqa: FBT001 - the signal gives it so
+    def _follow_b(self, on: bool) -> None:
         self._follow_one("B", on=on)
 
     def _follow_one(self, letter: Letter, *, on: bool) -> None:

@@ -78,10 +78,10 @@ def move_spot(spot: Spot, *, source: str = "", gesture: int = 0) -> Intent:
     return Intent("move the spot", change, source, gesture)
 
 
-def show_in_maps(which: MapsShow) -> Intent:
+def show_in_maps(which: MapsShow, *, fleeting: bool = False) -> Intent:
     """Draw all trials, A, B or A - B in the maps."""
     name = f"maps show {which.replace('-', ' − ')}"
-    return Intent(name, lambda state, _: replace(state, maps_show=which))
+    return Intent(name, lambda state, _: replace(state, maps_show=which), fleeting=fleeting)
 
 
 def move_cursor(time_s: float, *, source: str = "") -> Intent:
