@@ -66,6 +66,8 @@ class Recovery:
     """The recovery file of this process.
 
     Nothing is written before the first `save`. The methods may be called from two threads.
+    Keep it as long as the work goes on: let go of without `clear`, its file counts as left
+    behind.
 
     Parameters
     ----------
