@@ -67,7 +67,11 @@ def _size(text: str) -> tuple[int, int]:
 
 def _open_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
-        "path", nargs="?", default="", metavar="PATH", help="a recording, or a folder of recordings"
+        "path",
+        nargs="?",
+        default="",
+        metavar="PATH",
+        help="a recording, a folder of recordings, or a workspace (.phasebrush.json)",
     )
     parser.add_argument(
         "--picture",
@@ -179,6 +183,12 @@ def _measure_arguments(parser: argparse.ArgumentParser) -> None:
         help="window of the sort key, seconds (default -0.5 0)",
     )
     add(
+        "--key-sign",
+        choices=("positive", "negative"),
+        default="positive",
+        help="sign of the peak for latency (default positive)",
+    )
+    add(
         "--spot",
         nargs=4,
         type=float,
@@ -216,6 +226,7 @@ def _key(arguments: argparse.Namespace) -> SortKey | None:
         column=column,
         band_hz=tuple(arguments.key_band),
         window_s=tuple(arguments.key_window),
+        sign=1 if arguments.key_sign == "positive" else -1,
     )
 
 

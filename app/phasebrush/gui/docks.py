@@ -149,8 +149,12 @@ class Docks:
         """Open the drawer at a useful height, or close it."""
         opening = not self.drawer.isVisible()
         self.drawer.setVisible(opening)
-        if opening:
-            tall = round(max(230, self._window.height() * 0.28))
+        self.fit_drawer()
+
+    def fit_drawer(self) -> None:
+        """A quarter of the window for the drawer: the maps above it must stay readable."""
+        if self.drawer.isVisible() and not self.drawer.isFloating():
+            tall = round(max(190, self._window.height() * 0.26))
             self._window.resizeDocks([self.drawer], [tall], Qt.Orientation.Vertical)
 
     def all_views(self) -> tuple[View, ...]:

@@ -416,6 +416,8 @@ class MainWindow(QMainWindow):
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Below the smallest useful width the left column folds away."""
         super().resizeEvent(event)
+        if event.size().height() != event.oldSize().height():
+            self.docks.fit_drawer()
         narrow = self.width() < NARROW
         if narrow and not self._folded:
             self._folded = [dock for dock in self.docks.docks[:4] if dock.isVisible()]

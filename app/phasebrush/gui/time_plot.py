@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF, Qt
-from PySide6.QtGui import QColor, QGuiApplication, QMouseEvent, QPen, QWheelEvent
+from PySide6.QtGui import QColor, QGuiApplication, QMouseEvent, QPen, QResizeEvent, QWheelEvent
 
 from phasebrush.gui import theme
 from phasebrush.look.tokens import LIGHT, Look
@@ -88,6 +88,9 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
     must not change its range by itself.
     """
 
+    # The library resizes the plot before its own constructor is done.
+    _left_names = ("", "")
+
     def __init__(self, name: str, margins: Margins, parent: QWidget | None = None) -> None:
         axes = {"left": Axis("left"), "bottom": Axis("bottom")}
         super().__init__(parent=parent, enableMenu=False, axisItems=axes)
@@ -136,14 +139,30 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         item.getAxis("left").setWidth(self.margins.left)
         item.getAxis("bottom").setHeight(self.margins.bottom)
 
-    def name_axes(self, left: str, bottom: str) -> None:
-        """Names with units; an empty name leaves the ticks alone."""
+    def name_axes(self, left: str, bottom: str, short: str = "") -> None:
+        """Names with units; an empty name leaves the ticks alone.
+
+        ``short`` stands in for the left name where the plot is too low for it.
+        """
+        self._left_names = (left, short or left)
         item = self.getPlotItem()
         size = {"font-size": "8pt", "color": self.look.muted}
         item.getAxis("left").setLabel(left or None, **size)
         item.getAxis("left").showLabel(bool(left))
         item.getAxis("bottom").setLabel(bottom or None, **size)
         item.getAxis("bottom").showLabel(bool(bottom))
+
+    def resizeEvent(self, event: QResizeEvent | None) -> None:
+        """A low plot has room for a short name only."""
+        super().resizeEvent(event)
+        left, short = self._left_names
+        if short == left:
+            return
+        room = self.height() - self.margins.top - self.margins.bottom
+        words = left if room >= self.fontMetrics().horizontalAdvance(left) else short
+        axis = self.getPlotItem().getAxis("left")
+        if axis.labelText != words:
+            axis.setLabel(words, **{"font-size": "8pt", "color": self.look.muted})
 
     def hide_bottom_ticks(self) -> None:
         """Leave the time axis to the plot below, which shares it."""

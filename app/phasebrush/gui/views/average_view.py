@@ -34,7 +34,7 @@ class AverageView(View):
         layout = QHBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.addWidget(self.plot)
-        self.plot.name_axes("voltage (µV)", "")
+        self.plot.name_axes("voltage (µV)", "", short="µV")
         self.lines = {name: Line(name) for name in SET_NAMES}
         self.bands = Bands()
         self.plot.add(self.bands, *self.lines.values())

@@ -49,7 +49,7 @@ class MapView(View):
         layout.setSpacing(0)
         layout.addWidget(self.plot, 1)
         layout.addWidget(self.bar, 0)
-        self.plot.name_axes("frequency (Hz)", "")
+        self.plot.name_axes("frequency (Hz)", "", short="Hz")
         self.plot.hide_bottom_ticks()
         self._image, self._hatch = PixelImage(), PixelImage(layer=-5)
         self._extent = QRectF()
