@@ -164,6 +164,15 @@ def test_a_file_that_cannot_be_read_is_missing(study, monkeypatch):
     assert names(found_in(study).missing) == ["one.npz", "two.npz"]
 
 
+def test_without_a_folder_nothing_is_searched(study, monkeypatch):
+    """Work that was never saved has no folder; the one that happens to be current is none."""
+    monkeypatch.chdir(study)
+    (study / "deep" / "two.npz").rename(study / "two.npz")
+    found = find_recordings(read_workspace(study / NAME), None, ContentShelf())
+    assert names(found.missing) == ["two.npz"]
+    assert found.workspace.state.recording == str(study / "one.npz")
+
+
 def test_it_tells_how_far_it_is(study):
     told = []
     found_in(study, progress=told.append)

@@ -55,7 +55,7 @@ class Found:
 
 def find_recordings(
     workspace: Workspace,
-    folder: str | Path,
+    folder: str | Path | None,
     contents: ContentShelf,
     *,
     progress: Callable[[float], None] | None = None,
@@ -72,8 +72,9 @@ def find_recordings(
     ----------
     workspace : Workspace
         As `read_workspace` gives it.
-    folder : str or Path
-        The workspace's folder.
+    folder : str or Path or None
+        The workspace's folder; None where there is none to search, as after a crash of work
+        that was never saved.
     contents : ContentShelf
         What recordings hold; those that it does not know yet are read from end to end.
     progress : callable, optional
@@ -86,7 +87,7 @@ def find_recordings(
     JobStopped
         If ``stopped`` said so.
     """
-    search = _Search(workspace, Path(folder), contents, progress, stopped)
+    search = _Search(workspace, folder, contents, progress, stopped)
     places: dict[str, str] = {}
     missing, changed, moved = [], [], []
     for number, kept in enumerate(workspace.recordings):
@@ -110,14 +111,15 @@ class _Search:
     def __init__(
         self,
         workspace: Workspace,
-        folder: Path,
+        folder: str | Path | None,
         contents: ContentShelf,
         progress: Callable[[float], None] | None,
         stopped: Callable[[], bool] | None,
     ) -> None:
         self._count = len(workspace.recordings)
         self._names = {kept.name for kept in workspace.recordings}
-        self._folder = Path(os.path.abspath(folder))  # noqa: PTH100 - as paths of recordings are
+        # Spelt as paths of recordings are, to which its files are compared.
+        self._folders = [Path(os.path.abspath(folder))] if folder is not None else []  # noqa: PTH100
         self._contents = contents
         self._progress = progress
         self._stopped = stopped
@@ -176,7 +178,7 @@ class _Search:
 
     def _walk(self) -> Iterable[Path]:
         """Files of the folder and two levels below, nearest first, hidden folders left out."""
-        level, seen = [self._folder], 0
+        level, seen = self._folders, 0
         for _ in range(DEEPEST_FOLDER + 1):
             below: list[Path] = []
             for folder in level:
