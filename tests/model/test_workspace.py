@@ -85,6 +85,15 @@ def test_without_trials_the_open_recording_lies_on_its_desk(state, trials):
     assert (back.named, back.notes, back.spot) == (state.named, state.notes, state.spot)
 
 
+def test_an_earlier_desk_of_the_open_recording_gives_way(state, trials):
+    """The recording was put away and opened again: what lies on the table is the newer choice."""
+    earlier = replace(state.desks[0], recording=state.recording, channel="Fz")
+    state = replace(state, desks=(*state.desks, earlier))
+    back = state_of(to_workspace(state, trials, {}), None)
+    assert [desk.recording for desk in back.desks] == list(paths_of(state))[::-1]
+    assert back.desk(state.recording).channel == "Pz"
+
+
 def test_from_the_desk_the_workbench_lays_it_all_out_again(trials):
     """The way in which a window opens a workspace whose recording is still to be read."""
     first = bench_with(trials)

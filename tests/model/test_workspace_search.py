@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 from typing import TYPE_CHECKING
 
 import pytest
@@ -80,6 +81,15 @@ def test_it_is_not_looked_for_deeper_or_in_hidden_folders(study, place):
     found = found_in(study)
     assert names(found.missing) == ["two.npz"]
     assert found.warnings == ("two.npz is missing; show where it is",)
+
+
+@pytest.mark.skipif(os.name != "posix", reason="making links needs a right on other systems")
+def test_a_linked_folder_is_not_searched(study, tmp_path):
+    """It may lead anywhere, and round in a circle."""
+    (tmp_path / "far").mkdir()
+    (study / "deep" / "two.npz").rename(tmp_path / "far" / "two.npz")
+    (study / "link").symlink_to(tmp_path / "far", target_is_directory=True)
+    assert names(found_in(study).missing) == ["two.npz"]
 
 
 def test_the_same_content_is_taken_before_another_of_that_name(study):
