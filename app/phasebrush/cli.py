@@ -199,6 +199,12 @@ def _measure_arguments(parser: argparse.ArgumentParser) -> None:
     add("--out", metavar="FILE", required=True, help="file to write: .npz or .csv")
 
 
+def _count(text: str) -> int:
+    if not text.isdecimal():
+        raise ValueError(f"--freqs needs a whole number of frequencies, not {text}")
+    return int(text)
+
+
 def _part(words: Sequence[str] | None) -> Part | None:
     if words is None:
         return None
@@ -250,7 +256,7 @@ def _run_measure(arguments: argparse.Namespace) -> int:
             settings=TransformSettings(
                 low_hz=float(low),
                 high_hz=float(high),
-                count=int(count),
+                count=_count(count),
                 low_cycles=arguments.cycles[0],
                 high_cycles=arguments.cycles[1],
             ),
@@ -358,6 +364,13 @@ def main(arguments: Sequence[str] | None = None) -> int:
         if not hasattr(parsed, "run"):
             parsed = _parser().parse_args(["open"])
         return int(parsed.run(parsed))
+    except MemoryError:
+        print(  # noqa: T201
+            "phasebrush: this needs more memory than there is; choose a shorter window, fewer "
+            "channels or fewer frequencies",
+            file=sys.stderr,
+        )
+        return USAGE
     except PersonError as error:
         print(f"phasebrush: {error.line}", file=sys.stderr)  # noqa: T201
         return USAGE

@@ -122,6 +122,7 @@ def run(wish: Wish) -> int:
         return app.exec()
     finally:
         window.close()
+        window.deleteLater()
         app.processEvents()
         theme.forget_pixmaps()
 
@@ -134,7 +135,7 @@ def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
         window.open_path(wish.path)
         _wait(app, window)
         if failures:
-            raise failures[0]
+            raise _named(failures[0], wish.path)
     trials = bench.snapshot.trials
     if wish.channel and trials is not None:
         if wish.channel not in trials.ch_names:
@@ -149,6 +150,13 @@ def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
         bench.do(intents.pick_parts(dict(wish.parts)))  # type: ignore[arg-type]
         _wait(app, window)
     _swap_in_picture(window, Path(wish.picture))
+
+
+def _named(fault: Exception, path: str) -> Exception:
+    """The fault with the name of its file, where it lacks one."""
+    if isinstance(fault, InputError) and not fault.file:
+        return InputError(fault.wrong, fault.remedy, path)
+    return fault
 
 
 def _swap_in_picture(window: MainWindow, target: Path) -> None:

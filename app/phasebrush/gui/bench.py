@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+import numpy as np
 from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
 from PySide6.QtWidgets import QHBoxLayout, QSplitter, QVBoxLayout, QWidget
@@ -47,6 +48,12 @@ class MiniScale(QWidget):
             self.setToolTip(f"Stack colours run from {-limit_uv:.3g} to {limit_uv:.3g} µV")
             self.update()
 
+    @staticmethod
+    def _words(value: float) -> str:
+        if abs(value) >= 1000:
+            return f"{value:.1e}".replace("e+0", "e").replace("-", "−")
+        return number(value, 0 if abs(value) >= 10 else 1)
+
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Draw the scale between its two ends."""
         if self._limit_uv <= 0:
@@ -58,11 +65,10 @@ class MiniScale(QWidget):
         bar = QRectF(46, 6, 62, 8)
         painter.drawImage(bar, picture)
         painter.setPen(QColor(self.look.muted))
-        places = 0 if self._limit_uv >= 10 else 1
-        left = number(-self._limit_uv, places)
+        left = self._words(-self._limit_uv)
         flags = Qt.AlignmentFlag.AlignVCenter
         painter.drawText(QRectF(0, 0, 42, 20), flags | Qt.AlignmentFlag.AlignRight, left)
-        right = f"{number(self._limit_uv, places)} µV"
+        right = f"{self._words(self._limit_uv)} µV"
         painter.drawText(QRectF(112, 0, 56, 20), flags | Qt.AlignmentFlag.AlignLeft, right)
         painter.end()
 
@@ -122,7 +128,9 @@ class Bench(QWidget):
         """Say what is drawn: channel, counts, key, scale."""
         channel = snapshot.state.channel
         self._average_panel.title_line.set_title(f"Average · {channel}, µV")
-        self._stack_panel.title_line.set_title(f"Trial stack · {channel}")
+        dots = snapshot.stack is not None and np.isfinite(snapshot.stack.response_times_s).any()
+        words = f"Trial stack · {channel}" + (" · dots: response times" if dots else "")
+        self._stack_panel.title_line.set_title(words)
         if snapshot.stack is not None:
             self._scale.show_limit(snapshot.stack.limit_uv)
         key = snapshot.key

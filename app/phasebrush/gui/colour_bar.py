@@ -49,6 +49,12 @@ class ColourBar(QWidget):
         """As wide as it is, as high as the map."""
         return QSize(WIDTH, 60)
 
+    def name_unit(self, unit: str) -> None:
+        """Change the unit's name: a difference says that it is one."""
+        if unit != self._unit:
+            self._unit = unit
+            self.update()
+
     def show_scale(
         self, low: float, high: float, table: NDArray[np.uint8], look: Look, chance: float
     ) -> None:

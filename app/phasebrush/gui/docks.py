@@ -122,6 +122,11 @@ class Docks:
             window.addDockWidget(self._home(dock), dock)
             dock.setVisible(dock is not self.drawer)
         window.splitDockWidget(self.dial, self.readout, Qt.Orientation.Horizontal)
+        self.share_room()
+
+    def share_room(self) -> None:
+        """Give each dock its share of the window, wherever it lies."""
+        window = self._window
         width, height = window.width(), window.height()
         left = 216 if width < 1500 else 248
         right = round(min(520.0, max(400.0, width * 0.345)))
@@ -183,7 +188,7 @@ class Docks:
             start, end = maps.baseline_s
             self.itc.title_line.set_title(f"ITC · {words}{n}")
             self.power.title_line.set_title(
-                f"Power · {words}{n}, dB from {seconds(start)[:-2]} to {seconds(end)}"
+                f"Power · {words}{n}, dB re baseline {seconds(start)[:-2]} to {seconds(end)}"
             )
             for which, button in self.map_buttons.items():
                 button.setChecked(which == state.maps_show)
@@ -193,4 +198,5 @@ class Docks:
             where = f"{seconds(dial.time_s)}, {dial.freq_hz:.1f} Hz"
             trust = "" if dial.valid else " (not to be trusted)"
             self.dial.title_line.set_title(f"Phase at {where}{trust}")
-            self.readout.title_line.set_title(f"At the spot, {where}{trust}")
+            picked = " · picked here" if snapshot.circles.at_spot else ""
+            self.readout.title_line.set_title(f"At the spot, {where}{trust}{picked}")

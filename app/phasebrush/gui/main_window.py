@@ -10,7 +10,10 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
 from PySide6.QtWidgets import (
+    QAbstractSpinBox,
     QApplication,
+    QComboBox,
+    QLineEdit,
     QMainWindow,
     QMenu,
     QStackedWidget,
@@ -55,7 +58,7 @@ NARROW = 1180
 ASIDE_MS = 2000
 TITLES = frozenset(
     {Result.TRIALS, Result.CHANNEL, Result.KEY, Result.STACK, Result.SUBSETS, Result.MAPS,
-     Result.DIAL}
+     Result.DIAL, Result.READOUT}
 )  # fmt: skip
 
 
@@ -171,6 +174,7 @@ class MainWindow(QMainWindow):
         listeners.dirty = self.clock.request
         listeners.jobs = self.foot.show_jobs
         listeners.message = self.message_bar.say
+        listeners.fresh = self.message_bar.clear
         listeners.failed = self._tell_fault
         self.keeper.told = self._show_name
         self.keeper.ask_missing = self.asking.where_is
@@ -321,7 +325,10 @@ class MainWindow(QMainWindow):
     def keyPressEvent(self, event: QKeyEvent) -> None:
         """Escape empties A and B where no drag took it."""
         if event.key() == Qt.Key.Key_Escape:
-            self.workbench.do(intents.clear())
+            if isinstance(QApplication.focusWidget(), QLineEdit | QAbstractSpinBox | QComboBox):
+                self.bench.stack.setFocus()  # leaving a field must not cost the pick
+            else:
+                self.workbench.do(intents.clear())
             event.accept()
         elif event.key() == Qt.Key.Key_F and not event.isAutoRepeat():
             self._flip()
@@ -427,6 +434,8 @@ class MainWindow(QMainWindow):
             for dock in self._folded:
                 dock.show()
             self._folded = []
+            # Docks that were pressed together do not grow back by themselves.
+            QTimer.singleShot(0, self, self.docks.share_room)
 
     def _restore_arrangement(self) -> bool:
         if self._settings is None:
@@ -475,4 +484,3 @@ class MainWindow(QMainWindow):
         self.asking.close()
         self.workbench.close()
         self.board.close()
-        QTimer.singleShot(0, self, self.deleteLater)

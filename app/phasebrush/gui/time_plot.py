@@ -155,6 +155,13 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
     def resizeEvent(self, event: QResizeEvent | None) -> None:
         """A low plot has room for a short name only."""
         super().resizeEvent(event)
+        if event is None:
+            return
+        for side in ("left", "bottom"):
+            axis = self.getPlotItem().getAxis(side)
+            # Kept pictures of an axis outlive a size at which it could not be drawn.
+            axis.setCacheMode(axis.CacheMode.NoCache)
+            axis.setCacheMode(axis.CacheMode.DeviceCoordinateCache)
         left, short = self._left_names
         if short == left:
             return

@@ -24,6 +24,7 @@ from phasebrush.model.results import (
     SET_NAMES,
     Average,
     Averages,
+    Circles,
     Dial,
     KeyValues,
     Maps,
@@ -37,6 +38,7 @@ from phasebrush.model.results import (
     Trace,
     Traces,
 )
+from phasebrush.model.state import LETTERS
 from phasebrush.model.subset import Subset
 
 if TYPE_CHECKING:
@@ -48,6 +50,7 @@ if TYPE_CHECKING:
     from phasebrush.core.rule import Rule
     from phasebrush.core.running_sums import RunningSums
     from phasebrush.core.spot import Spot
+    from phasebrush.core.transform_settings import TransformSettings
     from phasebrush.core.trials import Trials
     from phasebrush.model.channel_work import ChannelWork
     from phasebrush.model.state import State
@@ -125,9 +128,19 @@ def derive_stack(state: State, work: ChannelWork, key: KeyValues, rows: Rows) ->
     return Stack(
         image_uv=image,
         times_s=work.times_s,
-        limit_uv=stack_image.symmetric_limit(image),
+        limit_uv=stack_image.symmetric_limit(_tame_rows(image)),
         response_times_s=work.question.trials.response_times_s[rows.trial_of_row],
     )
+
+
+def _tame_rows(image: NDArray[np.float32]) -> NDArray[np.float32]:
+    """Leave out rows that span ten times what a row typically spans.
+
+    One wild trial must not blank all others.
+    """
+    spans = np.ptp(image, axis=1)
+    tame = spans <= 10 * np.median(spans)
+    return image[tame] if tame.any() else image
 
 
 def derive_average(sums: RunningSums) -> Average:
@@ -195,8 +208,10 @@ def map_limits(
         with np.errstate(invalid="ignore"):
             db = [(of["A"].power_db - of["B"].power_db)[valid]]
     else:
-        itc = max(float(maps.itc[valid].max()) for maps in of.values())
-        db = [maps.power_db[valid] for maps in of.values()]
+        # Maps of a few trials are wild: their scale would wash out all others.
+        sound = [maps for maps in of.values() if maps.n >= SOLID_N] or list(of.values())
+        itc = max(float(maps.itc[valid].max()) for maps in sound)
+        db = [maps.power_db[valid] for maps in sound]
     finite = [np.abs(values[np.isfinite(values)]) for values in db]
     largest = max((float(np.percentile(x, 99)) for x in finite if x.size), default=3.0)
     itc_limit = min(1.0, max(0.1, float(np.ceil(itc * 10)) / 10))
@@ -322,8 +337,9 @@ def derive_readout(state: State, maps: Maps, coefficients: Coefficients) -> Read
 
 
 def _read(item: SetMaps, row: int, column: int, box: NDArray[np.bool_]) -> SetReadout:
-    itc = float(item.itc[row, column])
     n_phase = int(np.broadcast_to(item.n_phase, item.itc.shape)[row, column])
+    # One phasor always agrees with itself: that says nothing.
+    itc = float(item.itc[row, column]) if n_phase > 1 else float("nan")
     total = float(item.power_uv2[row, column])
     return SetReadout(
         n=item.n,
@@ -361,6 +377,32 @@ def _rule_can_be_checked(rule: Rule, state: State, key: KeyValues | None) -> boo
     if key is None or key.fault or rule.key != state.key or rule.channel != state.channel:
         return False
     return not KINDS[state.key.kind].uses_spot or rule.spot == state.spot
+
+
+def find_circles(state: State, settings: TransformSettings) -> Circles:
+    """Say which subsets were picked by the very thing that is read off.
+
+    A pick's footprint is its key's band and window, widened by two standard deviations of the
+    wavelets. Where it meets the spot, phase and power there follow from the pick; where a pick
+    by power meets the baseline of the dB scale, the subset's dB are shifted by it.
+    """
+    at_spot, in_baseline = [], []
+    for letter in LETTERS:
+        subset = state.subset(letter)
+        rule = subset.rule
+        if rule is None or rule.key is None or not subset.n or rule.channel != state.channel:
+            continue
+        found = footprint(rule.key, rule.spot or state.spot, settings)
+        if found is None:
+            continue
+        spot, (start_s, end_s) = state.spot, state.baseline_s
+        in_band = found.low_hz <= spot.high_hz and found.high_hz >= spot.low_hz
+        if in_band and found.start_s <= spot.end_s and found.end_s >= spot.start_s:
+            at_spot.append(letter)
+        by_power = rule.key.kind in {"band-power", "spot-power"}
+        if by_power and found.start_s <= end_s and found.end_s >= start_s:
+            in_baseline.append(letter)
+    return Circles(tuple(at_spot), tuple(in_baseline))
 
 
 def default_channel(trials: Trials, wished: str = "") -> str:

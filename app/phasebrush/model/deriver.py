@@ -270,7 +270,8 @@ class Deriver:
         if self._work is None or maps is None:
             return False
         readout = derive.derive_readout(state, maps, self._work.coefficients)
-        self.snapshot = replace(self.snapshot, readout=readout)
+        circles = derive.find_circles(state, self._work.coefficients.settings)
+        self.snapshot = replace(self.snapshot, readout=readout, circles=circles)
         return True
 
     def _steps_of_key(self, state: State) -> bool:

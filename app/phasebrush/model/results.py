@@ -277,6 +277,34 @@ class Readout:
     of: Mapping[SetName, SetReadout]
 
 
+@dataclass(frozen=True)
+class Circles:
+    """Subsets that were picked by what is read off.
+
+    Parameters
+    ----------
+    at_spot : tuple of str
+        Subsets whose footprint meets the spot: their numbers there are circular.
+    in_baseline : tuple of str
+        Subsets that were picked by power in the baseline of the dB scale.
+    """
+
+    at_spot: tuple[str, ...] = ()
+    in_baseline: tuple[str, ...] = ()
+
+    @property
+    def words(self) -> tuple[str, ...]:
+        """What the person should know, a line each."""
+        said = []
+        if self.at_spot:
+            who = " and ".join(self.at_spot)
+            said.append(f"{who}: picked by what is read at the spot, circular there")
+        if self.in_baseline:
+            who = " and ".join(self.in_baseline)
+            said.append(f"{who}: picked by power in the baseline, which shifts their dB")
+        return tuple(said)
+
+
 @dataclass(frozen=True, eq=False)
 class Steps:
     """The used trials cut into equal-count steps of the sort key, lowest first.
@@ -329,6 +357,7 @@ class Snapshot:
     dial: Dial | None = None
     readout: Readout | None = None
     steps: Steps | None = None
+    circles: Circles = field(default_factory=Circles)
     rule_checks: Mapping[str, str] = field(default_factory=dict)
     outdated: frozenset[Result] = frozenset()
 

@@ -60,6 +60,7 @@ class Listeners:
     jobs: Callable[[], None] = _nothing
     message: Callable[[str], None] = _nothing
     changed: Callable[[], None] = _nothing
+    fresh: Callable[[], None] = _nothing
     failed: Callable[[Exception], None] = _nothing
     recording_read: Callable[[Recording, Cut], None] | None = None
 
@@ -296,8 +297,9 @@ class Workbench:
         self.do(intents.take_trials(trials, before, fleeting=fleeting))
         self._mark({Result.TRIALS}, "")
         if before is not trials and not fleeting:
+            self.listeners.fresh()
             for warning in trials.warnings:
-                self.listeners.message(warning)
+                self.listeners.message(f"{trials.source.title}: {warning}")
 
     def _margin_s(self) -> float:
         """Margin for the lowest wavelet, in whole tenths so that small changes re-use the cut."""

@@ -21,7 +21,11 @@ from phasebrush.recordings.events_table import events_table_beside, read_events_
 from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
 from phasebrush.recordings.positions import positions_for
 from phasebrush.recordings.recording import Recording
-from phasebrush.recordings.triggers import read_trigger_events, trigger_channel
+from phasebrush.recordings.triggers import (
+    named_as_trigger,
+    read_trigger_events,
+    trigger_channel,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -177,7 +181,11 @@ def _marks(
             np.concatenate([listed_marks.bad_spans, noted.bad_spans]),
             np.union1d(listed_marks.breaks, noted.breaks),
         )
-    stim = [n for n, k in zip(raw.ch_names, raw.get_channel_types(), strict=True) if k == "stim"]
+    stim = [
+        name
+        for name, kind in zip(raw.ch_names, raw.get_channel_types(), strict=True)
+        if kind == "stim" or named_as_trigger(name)
+    ]
     name = trigger_channel(stim)
     if len(noted.events) or name is None:
         return noted

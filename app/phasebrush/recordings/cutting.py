@@ -11,7 +11,7 @@ from phasebrush.errors import InputError, JobStopped
 from phasebrush.recordings.blocks import Blocks, Referencing
 from phasebrush.recordings.filtering import design_filter
 from phasebrush.recordings.plan import Plan, plan_cut
-from phasebrush.recordings.quality import data_warnings, marked_warnings
+from phasebrush.recordings.quality import check_size, data_warnings, marked_warnings
 from phasebrush.recordings.ready_cut import fill_from_ready
 
 if TYPE_CHECKING:
@@ -75,9 +75,12 @@ def cut_trials(
         keep = fill_from_ready(recording.ready, plan, data, tell, stop)
     if not keep.any():
         raise InputError(
-            "every trial holds samples that are no number", "check the export", recording.path
+            "every trial holds samples that are no number",
+            "check the export, or keep only sound channels when cutting",
+            recording.path,
         )
     data = data if keep.all() else data[keep]
+    check_size(data, recording.path)
     trials = _assemble(recording, cut, plan, data, keep)
     tell(1.0)
     return trials

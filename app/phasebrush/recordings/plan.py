@@ -98,10 +98,13 @@ class Plan:
         """
         resampled = self.grid.apply(values)
         if self.baseline is None:
-            out[...] = resampled
+            with np.errstate(over="ignore"):
+                out[...] = resampled
         else:
             level = resampled[..., self.baseline].mean(axis=-1, keepdims=True)
-            np.subtract(resampled, level, out=out, casting="same_kind")
+            # What single precision cannot hold is refused once all trials are there.
+            with np.errstate(over="ignore"):
+                np.subtract(resampled, level, out=out, casting="same_kind")
 
 
 def preview_cut(recording: Recording, cut: Cut) -> CutPreview:

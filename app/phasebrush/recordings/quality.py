@@ -6,9 +6,12 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from phasebrush.errors import InputError
 from phasebrush.recordings.channels import listed
 
 if TYPE_CHECKING:
+    from pathlib import Path
+
     from numpy.typing import NDArray
 
     from phasebrush.recordings.recording import Recording
@@ -16,9 +19,28 @@ if TYPE_CHECKING:
 # Common practice, no source: scalp EEG spans some 10 to 200 microvolts in a trial.
 SMALLEST_UV = 0.05
 LARGEST_UV = 5_000.0
+IMPOSSIBLE_UV = 1e9
+"""A thousand volts: no amplifier gives it, and sums of its squares lose their digits."""
 # A channel is flat when it spans less than this part of what the others span: an absolute
 # limit would call every channel flat where only the unit is wrong.
 _FLAT_PART = 1e-4
+
+
+def check_size(data_uv: NDArray[np.float32], path: Path) -> None:
+    """Refuse voltages that no amplifier gives.
+
+    Raises
+    ------
+    InputError
+        If a sample is beyond a thousand volts.
+    """
+    largest = float(max(data_uv.max(), -data_uv.min()))
+    if not largest < IMPOSSIBLE_UV:
+        raise InputError(
+            f"its voltages reach {largest:.3g} µV, which no amplifier gives",
+            "check the unit or the export",
+            path,
+        )
 
 
 def data_warnings(

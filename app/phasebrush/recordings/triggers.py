@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -16,6 +17,13 @@ if TYPE_CHECKING:
 
 _PREFERRED = ("STI 014", "STI101", "STI 101", "Status")
 _BLOCK = 2_000_000
+# Formats without types of channels leave only the name to go by (common practice, no source).
+_NAMED = re.compile(r"^(status|trig(ger)?s?|sti|stim|ttl|markers?)(?![a-z])", re.IGNORECASE)
+
+
+def named_as_trigger(name: str) -> bool:
+    """Whether a channel's name says that it holds trigger codes."""
+    return bool(_NAMED.match(name.strip()))
 
 
 def trigger_channel(names: list[str]) -> str | None:

@@ -108,8 +108,8 @@ class CutDialog(QDialog):
             set() if isinstance(how.reference, str) else set(how.reference),
             "Channels whose mean is the reference",
         )
-        self._start = number_box(-100, 100, 0.1, 2, "s", "start of the window, s from the event")
-        self._end = number_box(-100, 100, 0.1, 2, "s", "end of the window, s from the event")
+        self._start = number_box(-100, 100, 0.1, 3, "s", "start of the window, s from the event")
+        self._end = number_box(-100, 100, 0.1, 3, "s", "end of the window, s from the event")
         self._base_start = number_box(-100, 100, 0.1, 2, "s", "start of the voltage baseline, s")
         self._base_end = number_box(-100, 100, 0.1, 2, "s", "end of the voltage baseline, s")
         self._baseline = QCheckBox("voltage baseline")

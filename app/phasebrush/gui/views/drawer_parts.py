@@ -122,7 +122,7 @@ def set_on(control: Any, *, on: bool) -> None:
 
 
 def table_sheet(look: Look) -> str:
-    """Style of a table or list with headings: hairlines, muted headings, a quiet selection."""
+    """Style of a table or list with headings, and of the arrows beside its buttons."""
     chosen = mixed(look.panel, look.hairline, 0.9)
     return f"""
     QHeaderView {{ background: {look.panel}; }}
@@ -132,5 +132,6 @@ def table_sheet(look: Look) -> str:
         subcontrol-position: center left; width: 8px; height: 8px; left: 1px; }}
     QTableView {{ selection-background-color: {chosen}; selection-color: {look.text}; }}
     QTableView::item {{ padding: 0px 10px; border: none; }}
+    QToolButton::menu-button {{ border: none; width: 14px; }}
     QTableView::item:focus {{ border-bottom: 1px solid {look.focus}; }}
     """

@@ -43,6 +43,7 @@ class MapView(View):
         super().__init__(parent)
         self.setObjectName(name)
         self.plot = TimePlot(f"{name}_area", MAP_MARGINS, self)
+        self._unit = unit
         self.bar = ColourBar(unit, MAP_MARGINS.top, MAP_MARGINS.bottom, self)
         layout = QHBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
@@ -135,6 +136,7 @@ class MapView(View):
         cells = np.rint((self.values(maps) - low) * (255 / (high - low)))
         cells = np.clip(np.nan_to_num(cells, nan=127.0), 0, 255).astype(np.uint8)
         table = self.table(maps)
+        self.bar.name_unit(self._unit + (", A − B" if maps.shown == "A-B" else ""))
         self._image.show_cells(cells, packed(table), self._extent)
         self.bar.show_scale(low, high, table, self.look, self.chance(maps))
 

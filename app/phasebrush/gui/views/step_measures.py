@@ -12,6 +12,7 @@ from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QColor, QPainter
 
 from phasebrush.core.phase import chance_itc
+from phasebrush.gui import theme
 from phasebrush.gui.time_plot import Margins, TimePlot, pen
 from phasebrush.look.tokens import LIGHT, Look
 
@@ -86,6 +87,7 @@ class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
     def __init__(self) -> None:
         super().__init__()
         self._look = LIGHT
+        self._font = theme.font(7.5)
         self.values: tuple[float, ...] = ()
         self.bands: tuple[tuple[float, float], ...] = ()
         self.chances: tuple[float, ...] = ()
@@ -133,6 +135,9 @@ class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
         for step, level in enumerate(self.chances, start=1):
             if math.isfinite(level):
                 painter.drawLine(QLineF(at(step - 0.45, level), at(step + 0.45, level)))
+        if self.chances and math.isfinite(self.chances[0]):
+            painter.setFont(self._font)
+            painter.drawText(at(0.55, self.chances[0]) + QPointF(0, -3), "chance 5 %")
         painter.setPen(pen(self._look.muted))
         for step, (low, high) in enumerate(self.bands, start=1):
             if math.isfinite(low) and math.isfinite(high):

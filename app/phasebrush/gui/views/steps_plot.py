@@ -17,10 +17,6 @@ from phasebrush.model import intents
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
-
-    from PySide6.QtGui import QHideEvent, QShowEvent
-
     from phasebrush.gui.time_plot import Pointer
     from phasebrush.look.tokens import Look
     from phasebrush.model.results import Snapshot, Steps
@@ -39,8 +35,7 @@ DEFINITION = (
 class StepsPlot(View):
     """Average waveforms of the steps at the left; ITC, PPC and power at the right.
 
-    ``want_steps`` is called with ``wanted=True`` when the view comes into sight and with
-    ``wanted=False`` when it goes: the steps are slow work that nobody else needs.
+    The steps are slow work that nobody else needs: they are worked out while this view is seen.
     """
 
     needs: ClassVar[frozenset[Result]] = frozenset(
@@ -51,7 +46,6 @@ class StepsPlot(View):
         super().__init__(parent)
         self.setObjectName("steps_plot")
         self.setAccessibleName("steps of the sort key: average waveform, ITC, PPC and power")
-        self.want_steps: Callable[..., None] | None = None
         self._steps: Steps | None = None
         self.count = QSpinBox(self)
         self.count.setRange(FEWEST_STEPS, MOST_STEPS)
@@ -92,23 +86,6 @@ class StepsPlot(View):
         layout.addLayout(line)
         layout.addWidget(self._pages, 1)
 
-    def showEvent(self, event: QShowEvent) -> None:
-        """Somebody looks: steps are wanted."""
-        if self.want_steps is not None:
-            self.want_steps(wanted=True)
-        super().showEvent(event)
-
-    def hideEvent(self, event: QHideEvent) -> None:
-        """Nobody looks any more."""
-        if self.want_steps is not None:
-            self.want_steps(wanted=False)
-        super().hideEvent(event)
-
-    def close_view(self) -> None:
-        """Let go of everything that could call back."""
-        self.want_steps = None
-        super().close_view()
-
     # -- data in ------------------------------------------------------------------------------
 
     def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
@@ -148,7 +125,7 @@ class StepsPlot(View):
             f"by {steps.key_title}, {each} trials each · ITC, PPC, power at "
             f"{steps.freq_hz:.1f} Hz, {time_s} s"
         )
-        return f"{words} · an earlier choice, being computed" if faded else words
+        return f"{words} · dimmed: of an earlier choice" if faded else words
 
     def _tip(self) -> str:
         """Definition, and what each step is made of."""

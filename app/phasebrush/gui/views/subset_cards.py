@@ -60,7 +60,7 @@ class _Card(QWidget):
 class SubsetCards(View):
     """A and B with their counts."""
 
-    needs: ClassVar[frozenset[Result]] = frozenset({Result.TRIALS, Result.SUBSETS})
+    needs: ClassVar[frozenset[Result]] = frozenset({Result.TRIALS, Result.SUBSETS, Result.READOUT})
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -69,7 +69,7 @@ class SubsetCards(View):
         self._swap = QPushButton("swap A and B", self)
         self._swap.setObjectName("quiet")
         self._swap.setToolTip("A becomes B and B becomes A (X)")
-        self._caution = ElidedLabel(parent=self, lines=2)
+        self._caution = ElidedLabel(parent=self, lines=4)
         self._caution.setProperty("caution", True)
         grid = QGridLayout(self)
         grid.setContentsMargins(0, 0, 0, 4)
@@ -98,17 +98,19 @@ class SubsetCards(View):
 
     @staticmethod
     def _cautions(snapshot: Snapshot, sizes: dict[Letter, int]) -> str:
-        few = [letter for letter, n in sizes.items() if 0 < n < CAUTION_BELOW]
-        words = [f"{' and '.join(few)}: fewer than {CAUTION_BELOW} trials"] if few else []
-        low, high = min(sizes.values()), max(sizes.values())
-        if low and high > 1.1 * low:
-            words.append("n differs by more than 10 %: compare PPC, not ITC")
+        words = list(snapshot.circles.words)
         if all(sizes.values()):
             n_trials = snapshot.n_trials
             masks = [snapshot.state.subset(letter).mask_of(n_trials) for letter in LETTERS]
             shared = int((masks[0] & masks[1]).sum())
             if shared:
                 words.append(f"{shared} trials are in both A and B")
+        few = [letter for letter, n in sizes.items() if 0 < n < CAUTION_BELOW]
+        if few:
+            words.append(f"{' and '.join(few)}: fewer than {CAUTION_BELOW} trials")
+        low, high = min(sizes.values()), max(sizes.values())
+        if low and high > 1.1 * low:
+            words.append("n differs by more than 10 %: compare PPC, not ITC")
         return "; ".join(words)
 
     def set_look(self, look: Look) -> None:

@@ -131,8 +131,7 @@ class TrialRows(QAbstractTableModel):
         order = self._order()
         if np.array_equal(order, self._trial_of_row):
             return
-        hint = QAbstractTableModel.LayoutChangeHint.VerticalSortHint
-        self.layoutAboutToBeChanged.emit([], hint)
+        self.layoutAboutToBeChanged.emit()
         before = self.persistentIndexList()
         trials = self._trial_of_row
         row_of_trial = np.empty(len(order), dtype=np.intp)
@@ -140,7 +139,7 @@ class TrialRows(QAbstractTableModel):
         after = [self.index(int(row_of_trial[trials[i.row()]]), i.column()) for i in before]
         self._trial_of_row = order
         self.changePersistentIndexList(before, after)
-        self.layoutChanged.emit([], hint)
+        self.layoutChanged.emit()
 
     # -- what the view asks -------------------------------------------------------------------
 
@@ -148,6 +147,11 @@ class TrialRows(QAbstractTableModel):
     def sorted_by_set(self) -> bool:
         """Whether the order hangs on A and B."""
         return self._sorted_by == SET_COLUMN
+
+    @property
+    def key_heading(self) -> str:
+        """Heading of the sort key; empty while there is no table."""
+        return self._columns[KEY_COLUMN].name if self._columns else ""
 
     @property
     def sets(self) -> NDArray[np.uint8]:

@@ -5,20 +5,14 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, ClassVar, cast
 
 import numpy as np
-from PySide6.QtCore import QItemSelection, QItemSelectionModel, QSignalBlocker, Qt, QTimer
-from PySide6.QtGui import QAction, QGuiApplication, QKeySequence, QPalette, QShortcut
+from PySide6.QtCore import QSignalBlocker, Qt, QTimer
+from PySide6.QtGui import QAction, QGuiApplication, QKeySequence, QShortcut
 from PySide6.QtWidgets import (
-    QAbstractItemView,
     QStackedWidget,
-    QStyledItemDelegate,
-    QStyleOptionViewItem,
-    QTableView,
     QVBoxLayout,
     QWidget,
 )
 
-from phasebrush.gui import theme
-from phasebrush.gui.brush import runs
 from phasebrush.gui.view import View
 from phasebrush.gui.views.drawer_parts import (
     add_how_menu,
@@ -30,14 +24,14 @@ from phasebrush.gui.views.drawer_parts import (
     top_line,
 )
 from phasebrush.gui.views.trial_columns import EXCLUDED, sets_of
-from phasebrush.gui.views.trial_rows import SET_COLUMN, TrialRows
+from phasebrush.gui.views.trial_grid import TrialGrid
+from phasebrush.gui.views.trial_rows import KEY_COLUMN, TrialRows
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS, Letter
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
-    from PySide6.QtCore import QModelIndex, QPersistentModelIndex
     from PySide6.QtWidgets import QToolButton
 
     from phasebrush.core.trials import Trials
@@ -51,19 +45,6 @@ REST_MS = 150
 ROW_HEIGHT = 20
 WIDEST, SET_WIDTH = 360, 88
 MARKS = {"A": "■ A", "B": "● B"}
-
-
-class _OwnInk(QStyledItemDelegate):
-    """Keeps the colour of a cell's words where its row is selected."""
-
-    def initStyleOption(  # noqa: N802 - the library's own name
-        self, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex
-    ) -> None:
-        """Write selected words in the cell's own colour."""
-        super().initStyleOption(option, index)
-        palette: QPalette = option.palette
-        palette.setColor(QPalette.ColorRole.HighlightedText, palette.color(QPalette.ColorRole.Text))
-        option.palette = palette
 
 
 class TrialTable(View):
@@ -80,8 +61,7 @@ class TrialTable(View):
         self._trials: Trials | None = None
         self._members: dict[Letter, Mask] = {letter: np.zeros(0, dtype=bool) for letter in LETTERS}
         self.rows = TrialRows(self)
-        self.table = QTableView(self)
-        self._shape_table()
+        self.table = TrialGrid(self.rows, self)
         self._picks = {letter: self._pick_button(letter) for letter in LETTERS}
         self._exclude = self._tool("exclude", "Exclude the selected trials from every number")
         self._take_back = self._tool("take back", "Take selected trials that are excluded back in")
@@ -102,32 +82,6 @@ class TrialTable(View):
         self._selected()
 
     # -- parts --------------------------------------------------------------------------------
-
-    def _shape_table(self) -> None:
-        table = self.table
-        table.setModel(self.rows)
-        table.setAccessibleName("trials, one a row")
-        table.setToolTip(
-            "One row a trial. Select rows, then send them to A or B. Set: ■ A, ● B. "
-            "A heading sorts."
-        )
-        table.setFont(theme.font(9.0))
-        table.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        table.setSelectionMode(QAbstractItemView.SelectionMode.ExtendedSelection)
-        table.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        table.setTabKeyNavigation(False)
-        table.setShowGrid(False)
-        table.setWordWrap(False)
-        table.verticalHeader().hide()
-        table.verticalHeader().setDefaultSectionSize(ROW_HEIGHT)
-        table.verticalHeader().setMinimumSectionSize(ROW_HEIGHT)
-        header = table.horizontalHeader()
-        table.setItemDelegateForColumn(SET_COLUMN, _OwnInk(self))
-        header.setHighlightSections(False)
-        header.setTextElideMode(Qt.TextElideMode.ElideMiddle)
-        header.setDefaultSectionSize(96)
-        header.setSortIndicator(0, Qt.SortOrder.AscendingOrder)
-        table.setSortingEnabled(True)
 
     def _tool(self, words: str, tip: str) -> QToolButton:
         return quiet_button(words, tip, self, name=f"{words} selected trials")
@@ -184,7 +138,10 @@ class TrialTable(View):
             self._take_trials(snapshot, sets)
         else:
             if Result.KEY in changed:
+                heading = self.rows.key_heading
                 self.rows.take_key(snapshot.key, faded=Result.KEY in snapshot.outdated)
+                if self.rows.key_heading != heading:
+                    self.table.fit_column(KEY_COLUMN)
             self.rows.take_sets(sets)
         self._note_members(snapshot, n_trials)
 
@@ -192,11 +149,7 @@ class TrialTable(View):
         self._trials = snapshot.trials
         self.rows.take_trials(snapshot.trials, snapshot.key, sets)
         self._pages.setCurrentIndex(0 if snapshot.trials is None else 1)
-        header = self.table.horizontalHeader()
-        for column in range(self.rows.columnCount()):
-            hint = max(self.table.sizeHintForColumn(column), header.sectionSizeHint(column))
-            header.resizeSection(column, min(max(hint + 2 * theme.GRID, 56), WIDEST))
-        header.resizeSection(SET_COLUMN, SET_WIDTH)
+        self.table.fit_columns()
         self._selected()
 
     def _note_members(self, snapshot: Snapshot, n_trials: int) -> None:
@@ -222,33 +175,12 @@ class TrialTable(View):
     def _follow(self) -> None:
         for letter in LETTERS:
             if self._follows[letter].isChecked():
-                self._select(self._members[letter])
-
-    def _select(self, mask: Mask) -> None:
-        """Select trials, and scroll to the first where none of them can be seen."""
-        if len(mask) != self.rows.rowCount():
-            return
-        chosen = QItemSelection()
-        last_column = max(0, self.rows.columnCount() - 1)
-        blocks = runs(self.rows.rows_of(mask))
-        for first, last in blocks:
-            chosen.select(self.rows.index(first, 0), self.rows.index(last, last_column))
-        flags = QItemSelectionModel.SelectionFlag
-        self.table.selectionModel().select(chosen, flags.ClearAndSelect)
-        if blocks:
-            self.table.scrollTo(self.rows.index(blocks[0][0], 0))
+                self.table.select_trials(self._members[letter])
 
     # -- what is selected ---------------------------------------------------------------------
 
-    def selected_trials(self) -> Mask:
-        """Which trials are selected, bool of shape (trials,)."""
-        mask = np.zeros(self.rows.rowCount(), dtype=bool)
-        for block in self.table.selectionModel().selection().toList():
-            mask[self.rows.trials_of_rows(slice(block.top(), block.bottom() + 1))] = True
-        return mask
-
     def _selected(self, *_selections: object) -> None:
-        mask = self.selected_trials()
+        mask = self.table.selected_trials()
         n = int(np.count_nonzero(mask))
         out = self.rows.sets[mask] == EXCLUDED if n else np.zeros(0, dtype=bool)
         words = f"{n} of {len(mask)} selected" if len(mask) else ""
@@ -263,7 +195,7 @@ class TrialTable(View):
     # -- intents out --------------------------------------------------------------------------
 
     def _pick(self, letter: Letter, how: How) -> None:
-        mask = self.selected_trials()
+        mask = self.table.selected_trials()
         if mask.any():
             before = self._members[letter]
             after = {
@@ -289,17 +221,17 @@ class TrialTable(View):
         self._pick("B", cast("How", action.data()))
 
     def _leave_out(self) -> None:
-        mask = self.selected_trials()
+        mask = self.table.selected_trials()
         for letter in LETTERS:
             self._members[letter] = self._members[letter] & ~mask
         self.ways.do(intents.exclude(mask))
 
     def _take_in(self) -> None:
-        self.ways.do(intents.exclude(self.selected_trials(), back=True))
+        self.ways.do(intents.exclude(self.table.selected_trials(), back=True))
 
     def copy(self) -> None:
         """Put the selected rows, or all where none is, on the clipboard."""
-        mask = self.selected_trials()
+        mask = self.table.selected_trials()
         if len(mask):
             text = self.rows.text(mask if mask.any() else np.ones(len(mask), dtype=bool))
             QGuiApplication.clipboard().setText(text)
@@ -323,7 +255,7 @@ class TrialTable(View):
         """Take the colours of a theme."""
         super().set_look(look)
         self.rows.set_look(look)
-        self.table.setStyleSheet(table_sheet(look))
+        self.setStyleSheet(table_sheet(look))
         self.table.viewport().update()
 
     def close_view(self) -> None:
