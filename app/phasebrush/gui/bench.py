@@ -136,7 +136,11 @@ class Bench(QWidget):
         key = snapshot.key
         chosen = snapshot.state.key
         words = chosen.column or KINDS[chosen.kind].title
-        self._strip_panel.title_line.set_title(words.capitalize() if key is not None else "Key")
+        missing = snapshot.rows.n_missing if snapshot.rows is not None else 0
+        none = f" · {missing} without" if missing else ""
+        self._strip_panel.title_line.set_title(
+            words[:1].upper() + words[1:] + none if key is not None else "Key"
+        )
 
     def show_legend(self, snapshot: Snapshot, look: Look) -> None:
         """Line styles and counts of the three sets."""

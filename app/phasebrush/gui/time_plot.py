@@ -166,7 +166,8 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         if short == left:
             return
         room = self.height() - self.margins.top - self.margins.bottom
-        words = left if room >= self.fontMetrics().horizontalAdvance(left) else short
+        # A little more than the words take: they are set in another font and turned.
+        words = left if room >= 1.2 * self.fontMetrics().horizontalAdvance(left) else short
         axis = self.getPlotItem().getAxis("left")
         if axis.labelText != words:
             axis.setLabel(words, **{"font-size": "8pt", "color": self.look.muted})
