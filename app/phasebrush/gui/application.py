@@ -12,6 +12,7 @@ import pyqtgraph as pg
 from platformdirs import user_config_path, user_data_path
 from PySide6.QtCore import QEventLoop, QSettings
 from PySide6.QtWidgets import QApplication
+from shiboken6 import isValid
 
 from phasebrush.errors import InputError
 from phasebrush.gui import theme
@@ -121,8 +122,8 @@ def run(wish: Wish) -> int:
             window.offer(offers(folder))
         return app.exec()
     finally:
-        window.close()
-        window.deleteLater()
+        if isValid(window):  # closed by the person, it is gone by now
+            window.close()
         app.processEvents()
         theme.forget_pixmaps()
 

@@ -484,3 +484,4 @@ class MainWindow(QMainWindow):
         self.asking.close()
         self.workbench.close()
         self.board.close()
+        QTimer.singleShot(0, self, self.deleteLater)

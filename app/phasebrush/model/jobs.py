@@ -132,10 +132,11 @@ class JobBoard:
             earlier.stop()
             self._changed()
 
-    def drop_all(self) -> None:
-        """Tell every job to stop, and forget the answers."""
+    def drop_all(self, *, but: frozenset[str] = frozenset()) -> None:
+        """Tell every job to stop, but those kinds, and forget the answers."""
         for kind in tuple(self._running):
-            self.drop(kind)
+            if kind not in but:
+                self.drop(kind)
 
     def close(self) -> None:
         """Stop everything and take no more jobs."""

@@ -145,6 +145,10 @@ class Recovery:
     def clear(self) -> None:
         """The program ends in order: take the file away."""
         self.saved_by_hand()
+        self.leave()
+
+    def leave(self) -> None:
+        """The program ends with work that is in no other file: it is offered at the next start."""
         with self._writing:
             if self._held is not None:
                 self._held.let_go()

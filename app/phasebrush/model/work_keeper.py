@@ -2,25 +2,28 @@
 
 from __future__ import annotations
 
+import contextlib
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from phasebrush.errors import InputError
 from phasebrush.model import opening
 from phasebrush.model.intents import Intent
 from phasebrush.model.jobs import Job, Progress
 from phasebrush.model.recording_hash import Content, ContentShelf
 from phasebrush.model.workspace import (
     Workspace,
+    contents_of,
     lost_trials,
     relocated,
     state_of,
     to_workspace,
 )
 from phasebrush.model.workspace_file import read_workspace, save_workspace
-from phasebrush.model.workspace_paths import paths_of
+from phasebrush.model.workspace_paths import worked_on
 from phasebrush.model.workspace_search import Found, find_recordings
 
 if TYPE_CHECKING:
@@ -34,11 +37,17 @@ AskMissing = Callable[[Found, Callable[[dict[str, str]], None]], None]
 
 @dataclass(frozen=True, eq=False)
 class Opened:
-    """A workspace as read: where its recordings are, and the trials of the open one."""
+    """A workspace as read: where its recordings are, and the trials of the open one.
+
+    ``fault`` says why the recording that was open could not be cut again; ``offer`` is the
+    recovery file that it came from.
+    """
 
     file: str
     found: Found
     trials: Trials | None
+    fault: str = ""
+    offer: Offer | None = None
 
 
 class WorkKeeper:
@@ -56,6 +65,7 @@ class WorkKeeper:
         self._bench = bench
         self._recovery = recovery
         self._contents = ContentShelf()
+        self._known: dict[str, Content] = {}
         self._saved: State | None = None
         self.file = ""
         self.ask_missing: AskMissing | None = None
@@ -86,16 +96,24 @@ class WorkKeeper:
             Job("save", f"saving {Path(path).name}", work, done, self._bench.listeners.failed)
         )
 
-    def _write(self, path: str, state: State, trials: Trials | None, progress: Progress) -> None:
-        contents: dict[str, Content] = {}
-        for place in paths_of(state):
-            if Path(place).exists():
-                contents[place] = self._contents.read(place, stopped=progress.stopped)
-        save_workspace(path, to_workspace(state, trials, contents, file=path))
+    def _write(
+        self, path: str, state: State, trials: Trials | None, progress: Progress
+    ) -> dict[str, Content]:
+        """Write the work with what its recordings hold; gives what is known of them."""
+        known = dict(self._known)
+        places = worked_on(state)
+        for done, place in enumerate(places):
+            # One that cannot be read just now keeps what was known of it.
+            with contextlib.suppress(InputError):
+                known[place] = self._contents.read(place, stopped=progress.stopped)
+            progress.report((done + 1) / (len(places) + 1))
+        save_workspace(path, to_workspace(state, trials, known, file=path))
+        return known
 
-    def _written(self, path: str, state: State, _answer: object) -> None:
-        self.file, self._saved = path, state
-        if self._recovery is not None:
+    def _written(self, path: str, state: State, known: dict[str, Content]) -> None:
+        self.file, self._saved, self._known = path, state, known
+        # What was changed while the recordings were read is not in the file.
+        if self._recovery is not None and self._bench.state == state:
             self._recovery.saved_by_hand()
         self._bench.listeners.message(f"{Path(path).name} is saved")
         self.told()
@@ -108,11 +126,12 @@ class WorkKeeper:
 
     def recover(self, offer: Offer) -> None:
         """Go on with work that a crash left behind."""
-        self._start_opening("", lambda _progress: offer.read())
+        self._start_opening("", lambda _progress: offer.read(), offer)
 
-    def _start_opening(self, path: str, read: Callable[[Progress], Workspace]) -> None:
-        folder = str(Path(path).parent) if path else "."
-        work = partial(self._find, path, folder, read)
+    def _start_opening(
+        self, path: str, read: Callable[[Progress], Workspace], offer: Offer | None = None
+    ) -> None:
+        work = partial(self._find, path, read, offer)
         self._bench.jobs.start(
             Job("workspace", "opening the workspace", work, self._found,
                 self._bench.listeners.failed)
@@ -121,19 +140,23 @@ class WorkKeeper:
     def _find(
         self,
         path: str,
-        folder: str,
         read: Callable[[Progress], Workspace],
+        offer: Offer | None,
         progress: Progress,
     ) -> Opened:
         workspace = read(progress)
+        file = path or workspace.file
         found = find_recordings(
             workspace,
-            folder,
+            Path(file).parent if file else None,
             self._contents,
             progress=lambda share: progress.report(0.5 * share),
             stopped=progress.stopped,
         )
-        return Opened(path or workspace.file, found, _trials_of(found, progress))
+        try:
+            return Opened(file, found, _trials_of(found, progress), offer=offer)
+        except InputError as fault:
+            return Opened(file, found, None, fault=fault.line, offer=offer)
 
     def _found(self, opened: Opened) -> None:
         missing = opened.found.missing
@@ -147,15 +170,27 @@ class WorkKeeper:
         if not places:
             self._adopt(opened)
             return
-        workspace = relocated(opened.found.workspace, places)
-        self._start_opening(opened.file, lambda _progress: workspace)
+        try:
+            workspace = relocated(opened.found.workspace, places)
+        except ValueError:
+            self._bench.listeners.message(
+                "one file was shown for two recordings; open the workspace again and show each"
+            )
+            return
+        self._start_opening(opened.file, lambda _progress: workspace, opened.offer)
 
     def _adopt(self, opened: Opened) -> None:
         workspace, trials = opened.found.workspace, opened.trials
         state = state_of(workspace, trials)
         self._bench.adopt(Intent("open the workspace", lambda _state, _snapshot: state), trials)
         self.file = opened.file
-        self._saved = self._bench.state
+        self._known = contents_of(workspace)
+        if opened.offer is None:
+            self._saved = self._bench.state
+        else:
+            self._take_over(opened.offer)
+        if opened.fault:
+            self._bench.listeners.message(opened.fault)
         for warning in opened.found.warnings:
             self._bench.listeners.message(warning)
         for name, count in (lost_trials(workspace, trials) if trials else {}).items():
@@ -165,11 +200,19 @@ class WorkKeeper:
             )
         self.told()
 
+    def _take_over(self, offer: Offer) -> None:
+        """Recovered work is unsaved still: keep it aside under this process, then let go."""
+        self._saved = None
+        workspace = self._workspace_now()
+        if self._recovery is not None and workspace is not None:
+            self._recovery.save(workspace)
+            offer.discard()
+
     # -- keeping aside ------------------------------------------------------------------------
 
     def keep_aside(self) -> None:
         """Write the recovery file if it is due; beside the window."""
-        if self._recovery is None or not self._recovery.due() or not self.unsaved:
+        if self._recovery is None or not self._recovery.due():
             return
         workspace = self._workspace_now()
         if workspace is not None:
@@ -183,9 +226,7 @@ class WorkKeeper:
         trials = self._bench.trials_of(state)
         if trials is None and (state.a.n or state.b.n or state.excluded.n):
             return None  # being read again; the next change or minute comes round
-        known = {place: self._contents.known(place) for place in paths_of(state)}
-        contents = {place: content for place, content in known.items() if content is not None}
-        return to_workspace(state, trials, contents, file=self.file)
+        return to_workspace(state, trials, self._known, file=self.file)
 
     def close(self) -> None:
         """The program ends in order: unsaved work is kept for the next start, else nothing."""
@@ -194,7 +235,10 @@ class WorkKeeper:
         if self.unsaved:
             workspace = self._workspace_now()
             if workspace is not None:
-                self._recovery.save(workspace)
+                # Nobody is left to tell; what was kept aside before stays.
+                with contextlib.suppress(InputError):
+                    self._recovery.save(workspace)
+            self._recovery.leave()
         else:
             self._recovery.clear()
 

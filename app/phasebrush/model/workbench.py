@@ -27,6 +27,8 @@ if TYPE_CHECKING:
     from phasebrush.recordings import Recording
 
 EVERYTHING = frozenset(Result)
+SAVING = frozenset({"save", "aside"})
+"""Jobs that go on when work is stopped: what a person asked to keep is kept."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -399,7 +401,7 @@ class Workbench:
     def stop(self) -> None:
         """Stop every job; what was shown stays, marked as outdated."""
         if self.jobs.running:
-            self.jobs.drop_all()
+            self.jobs.drop_all(but=SAVING)
             self._deriver.forget_question()
             self._deriver.forget_steps()
             self.listeners.message("stopped; what is drawn dimmed belongs to the earlier choice")
