@@ -16,11 +16,24 @@ def ini(tmp_path):
 
 
 def visible(window) -> dict[str, bool]:
-    return {dock.objectName(): dock.isVisible() for dock in window.docks.docks}
+    """The panels; the drawer, which is closed at first, is looked at on its own."""
+    docks = [dock for dock in window.docks.docks if dock is not window.docks.drawer]
+    return {dock.objectName(): dock.isVisible() for dock in docks}
 
 
-def test_a_first_start_shows_every_panel(window):
+def test_a_first_start_shows_every_panel_but_the_drawer(window):
     assert set(visible(window).values()) == {True}
+    assert not window.docks.drawer.isVisible()
+
+
+def test_an_open_drawer_stays_open(open_window, trials, ini):
+    window = open_window(trials, settings=ini())
+    key(window, Qt.Key.Key_D)
+    settle(window)
+    assert window.docks.drawer.isVisible()
+    window.close()
+    turn()
+    assert open_window(trials, settings=ini()).docks.drawer.isVisible()
 
 
 @pytest.mark.parametrize("name", ["itc", "order", "readout"])
@@ -54,14 +67,15 @@ def test_a_panel_moved_to_the_other_side_stays_there(open_window, trials, ini):
 
 def test_arranging_as_at_first_brings_everything_back(open_window, trials, ini):
     window = open_window(trials, settings=ini())
-    before = {d.objectName(): d.geometry() for d in window.docks.docks}
-    for dock in window.docks.docks[::2]:
+    panels = [dock for dock in window.docks.docks if dock is not window.docks.drawer]
+    before = {d.objectName(): d.geometry() for d in panels}
+    for dock in panels[::2]:
         dock.close()
     settle(window)
     window.docks.arrange()
     settle(window)
     assert set(visible(window).values()) == {True}
-    for dock in window.docks.docks:
+    for dock in panels:
         was = before[dock.objectName()]
         assert abs(dock.width() - was.width()) <= 12, dock.objectName()
 

@@ -45,6 +45,7 @@ class Drawer(QWidget):
         self.tabs.setObjectName("drawerTabs")
         self.tabs.setDrawBase(False)
         self.tabs.setExpanding(False)
+        self.tabs.setUsesScrollButtons(False)
         self.tabs.setFocusPolicy(Qt.FocusPolicy.TabFocus)
         self.tabs.setAccessibleName("drawer: trials, steps, scatter, notes")
         self._pages = QStackedWidget(self)

@@ -61,7 +61,10 @@ class Histogram(QWidget):
         if key is not None and finite.any():
             values = key.values[finite]
             bins = max(4, min(MOST_BINS, round(np.sqrt(len(values)))))
-            edges = np.histogram_bin_edges(values, bins=bins)
+            low, high = float(values.min()), float(values.max())
+            if high - low <= 1e-6 * max(abs(low), abs(high), 1e-6):
+                low, high = low - 0.5, high + 0.5  # all but one value: no bins between them
+            edges = np.linspace(low, high, bins + 1)
             for name, chosen in (("all", finite), ("A", finite & in_a), ("B", finite & in_b)):
                 self._counts[name] = np.histogram(key.values[chosen], bins=edges)[0]
             self._range = (float(edges[0]), float(edges[-1]))
