@@ -94,7 +94,9 @@ def test_the_plots_hold_what_they_draw(view):
         assert max(ends) <= high
         left, right = measure.getPlotItem().vb.viewRange()[0]
         assert (left, right) == (0.5, 5.5)
-        assert measure.getPlotItem().getAxis("left").labelText == measure.measured.name
+        words = measure.getPlotItem().getAxis("left").labelText
+        assert words in {measure.measured.name, measure.measured.short}
+        assert measure.fontMetrics().horizontalAdvance(words) <= measure.plot_area().height()
     low, high = view.waves.getPlotItem().vb.viewRange()[1]
     for line in view.waves.lines:
         _times, drawn = line.points

@@ -12,7 +12,6 @@ from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QColor, QPainter
 
 from phasebrush.core.phase import chance_itc
-from phasebrush.gui import theme
 from phasebrush.gui.time_plot import Margins, TimePlot, pen
 from phasebrush.look.tokens import LIGHT, Look
 
@@ -36,6 +35,8 @@ class Measured:
     ----------
     name : str
         On the axis, with its unit.
+    short : str
+        On the axis of a low plot.
     tip : str
         Definition.
     value : callable
@@ -47,6 +48,7 @@ class Measured:
     """
 
     name: str
+    short: str
     tip: str
     value: Callable[[StepStats], float]
     band: Callable[[StepStats], tuple[float, float]]
@@ -57,6 +59,7 @@ BAND_WORDS = "Bars: 95 % bootstrap band over the step's trials"
 MEASURES: tuple[Measured, ...] = (
     Measured(
         "ITC",
+        "ITC",
         "ITC at the spot's centre: length of the mean unit phasor, 0 to 1. Dotted: the ITC that "
         f"chance exceeds once in 20 at the step's n (Rayleigh, Zar). {BAND_WORDS}.",
         lambda step: step.itc,
@@ -64,6 +67,7 @@ MEASURES: tuple[Measured, ...] = (
         zero=True,
     ),
     Measured(
+        "PPC",
         "PPC",
         "PPC at the spot's centre: mean cosine over all pairs of trials; does not depend on n "
         f"(Vinck et al. 2010). {BAND_WORDS}.",
@@ -73,6 +77,7 @@ MEASURES: tuple[Measured, ...] = (
     ),
     Measured(
         "power (dB re 1 µV²)",
+        "dB",
         f"Mean |X|² at the spot's centre, dB of 1 µV². {BAND_WORDS}.",
         lambda step: step.power_db,
         lambda step: step.power_band_db,
@@ -87,7 +92,6 @@ class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
     def __init__(self) -> None:
         super().__init__()
         self._look = LIGHT
-        self._font = theme.font(7.5)
         self.values: tuple[float, ...] = ()
         self.bands: tuple[tuple[float, float], ...] = ()
         self.chances: tuple[float, ...] = ()
@@ -135,9 +139,6 @@ class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
         for step, level in enumerate(self.chances, start=1):
             if math.isfinite(level):
                 painter.drawLine(QLineF(at(step - 0.45, level), at(step + 0.45, level)))
-        if self.chances and math.isfinite(self.chances[0]):
-            painter.setFont(self._font)
-            painter.drawText(at(0.55, self.chances[0]) + QPointF(0, -3), "chance 5 %")
         painter.setPen(pen(self._look.muted))
         for step, (low, high) in enumerate(self.bands, start=1):
             if math.isfinite(low) and math.isfinite(high):
@@ -170,7 +171,7 @@ class StepMeasure(TimePlot):
         self.level = pg.InfiniteLine(0.0, angle=0, movable=False)
         self.add(self.level)
         self.level.setVisible(measured.zero)
-        self.name_axes(measured.name, "step")
+        self.name_axes(measured.name, "step", short=measured.short)
         self.setToolTip(measured.tip)
         self.setAccessibleName(f"{measured.name} by step")
 

@@ -123,7 +123,7 @@ class StepsPlot(View):
         time_s = f"{steps.time_s:.2f}".replace("-", "−")
         words = (
             f"by {steps.key_title}, {each} trials each · ITC, PPC, power at "
-            f"{steps.freq_hz:.1f} Hz, {time_s} s"
+            f"{steps.freq_hz:.1f} Hz, {time_s} s · dotted: ITC that chance exceeds once in 20"
         )
         return f"{words} · dimmed: of an earlier choice" if faded else words
 
