@@ -158,6 +158,17 @@ def reference_step(trials: Trials, n_used: int) -> float:
 def main() -> None:
     """Print the table."""
     medians = {}
+    bench = Bench(1000)
+    bench.window.toggle_drawer()
+    for tab in ("trials", "scatter", "notes", "steps"):
+        bench.window.docks.drawer_content.open_tab(tab)
+        bench.settle()
+        seconds = bench.steps()
+        print(
+            f"1000 trials, drawer open at {tab}: step median {1000 * np.median(seconds):.1f} ms, "
+            f"95th percentile {1000 * np.percentile(seconds, 95):.1f} ms"
+        )
+    bench.close()
     for n_trials in (1000, 5000):
         bench = Bench(n_trials)
         coefficients = bench.window.workbench.snapshot.coefficients

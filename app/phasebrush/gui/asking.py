@@ -152,6 +152,7 @@ class Asking:
 
     def save_work(self) -> None:
         """Save where it was saved before, else ask where."""
+        self._window.finish_notes()
         file = self._window.keeper.file
         if file:
             self._window.keeper.save(file)
@@ -160,6 +161,7 @@ class Asking:
 
     def save_work_as(self) -> None:
         """Ask where the workspace goes."""
+        self._window.finish_notes()
         path, _kind = QFileDialog.getSaveFileName(
             self._window, "Save the workspace", "work.phasebrush.json", WORK
         )

@@ -464,6 +464,10 @@ class MainWindow(QMainWindow):
         event.accept()
         super().closeEvent(event)
 
+    def finish_notes(self) -> None:
+        """Take over what is being typed: it must not miss the file that is written next."""
+        self.docks.drawer_content.views.notes.commit()
+
     def shut_down(self) -> None:
         """Take no more jobs, stop timers, cancel, disconnect. Safe to call twice."""
         if self._closed:
@@ -477,6 +481,7 @@ class MainWindow(QMainWindow):
                 self._settings.setValue("arrangement", self.saveState())
             self._settings.setValue("look", self.look.name)
             self._settings.sync()
+        self.finish_notes()
         self.clock.stop()
         self._aside.stop()
         self.keeper.close()
