@@ -47,6 +47,7 @@ def controls(window) -> list:
         for kind in CONTROLS
         for widget in window.findChildren(kind)
         if not widget.objectName().startswith("qt_")
+        and widget.objectName() not in {"ScrollLeftButton", "ScrollRightButton"}  # a tab bar's own
         and not isinstance(widget.parent(), (QLineEdit, QAbstractSpinBox, QComboBox))
         and not widget.window().inherits("QComboBoxPrivateContainer")
     ]

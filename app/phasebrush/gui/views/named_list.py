@@ -106,6 +106,8 @@ class NameField(QLineEdit):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setMaxLength(LONGEST_NAME)
+        self.setToolTip("Name of the subset: Enter keeps it, Escape leaves")
+        self.setAccessibleName("name of the subset")
         self.hide()
 
     def ask(self, letter: str, n: int) -> None:

@@ -58,6 +58,7 @@ class NotesPanel(View):
         super().__init__(parent)
         self.setObjectName("notes_panel")
         self.setAccessibleName("named subsets and notes")
+        self.setToolTip("Subsets kept under a name, with their rule, and free text")
         self.apply_rule: Callable[[Letter, Rule], None] | None = None
         self._state: State | None = None
         self._asking: Letter = "A"

@@ -59,6 +59,10 @@ class ScatterView(View):
         super().__init__(parent)
         self.setObjectName("scatter_plot")
         self.setAccessibleName("scatter: two numbers a trial; drag a box to pick trials")
+        self.setToolTip(
+            "Scatter: two numbers a trial, each in its unit. Drag a box to pick for A, with "
+            "Shift for B; Ctrl adds, Alt takes away, both keep what is common."
+        )
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self._snapshot: Snapshot | None = None
         self._trials: Trials | None = None

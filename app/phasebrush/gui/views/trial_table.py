@@ -58,6 +58,10 @@ class TrialTable(View):
         super().__init__(parent)
         self.setObjectName("trial_table")
         self.setAccessibleName("trial table")
+        self.setToolTip(
+            "Trial table: one row a trial, onset and response time in s, the sort key in its "
+            "unit. A click on a head sorts; chosen rows go to A or B, or are excluded."
+        )
         self._trials: Trials | None = None
         self._members: dict[Letter, Mask] = {letter: np.zeros(0, dtype=bool) for letter in LETTERS}
         self.rows = TrialRows(self)
