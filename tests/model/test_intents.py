@@ -9,11 +9,13 @@ import numpy as np
 import pytest
 from small_bench import FEW_WAVELETS, SPOT, bench_with, picked, small_trials
 
+from phasebrush.core.rule import rule_words
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
 from phasebrush.model import intents
 from phasebrush.model.results import Snapshot
-from phasebrush.model.state import NOBODY, Shelved, State, Subset
+from phasebrush.model.state import Shelved, State
+from phasebrush.model.subset import NOBODY, Subset
 
 
 def rows_of(subset: Subset, snapshot: Snapshot) -> list[int]:
@@ -24,8 +26,8 @@ def test_a_brush_picks_the_trials_of_its_rows_both_ends_included(state, snapshot
     after = picked(state, snapshot, intents.brush_rows("A", 3, 6))
     assert rows_of(after.a, snapshot) == [3, 4, 5, 6]
     assert after.b == NOBODY
-    assert "rows 4 to 7 by alpha power" in after.a.rule
-    assert after.a.rule.endswith(", Oz")
+    assert "rows 4 to 7 of 24 by alpha power" in rule_words(after.a.rule)
+    assert rule_words(after.a.rule).endswith(", Oz")
 
 
 def test_a_brush_upwards_and_downwards_pick_the_same(state, snapshot):
@@ -39,7 +41,7 @@ def test_add_and_take_away_work_on_what_is_picked(state, snapshot):
     first = intents.brush_rows("A", 3, 6)
     added = picked(state, snapshot, first, intents.brush_rows("A", 10, 11, how="add"))
     assert rows_of(added.a, snapshot) == [3, 4, 5, 6, 10, 11]
-    assert added.a.rule == ""  # no longer one range of rows
+    assert added.a.rule is None  # no longer one range of rows
     less = picked(added, snapshot, intents.brush_rows("A", 5, 10, how="take away"))
     assert rows_of(less.a, snapshot) == [3, 4, 11]
 
@@ -55,7 +57,7 @@ def test_a_brush_beyond_the_stack_is_clamped(state, snapshot):
     assert rows_of(after.a, snapshot) == [0, 1, 2]
     everything = picked(state, snapshot, intents.brush_rows("A", -50, 500))
     assert everything.a.n == 24
-    assert "rows 1 to 24" in everything.a.rule
+    assert "rows 1 to 24 of 24" in rule_words(everything.a.rule)
 
 
 def test_without_a_stack_a_brush_and_its_like_change_nothing():
@@ -86,7 +88,7 @@ def test_opposite_thirds_hold_equally_many_and_the_extreme_keys(n_trials):
     order = np.sort(key)
     assert np.array_equal(np.sort(key[after.a.mask]), order[-after.a.n :])
     assert np.array_equal(np.sort(key[after.b.mask]), order[: after.b.n])
-    assert after.a.rule.startswith("highest third of alpha power 8-13 Hz")
+    assert rule_words(after.a.rule).startswith("highest third of alpha power 8-13 Hz")
 
 
 def test_parts_of_a_key_that_cannot_be_had_change_nothing():

@@ -11,6 +11,7 @@ from small_bench import FEW_WAVELETS
 from phasebrush.core.sort_keys import KINDS, SortKey
 from phasebrush.core.spot import Spot
 from phasebrush.core.trials import Cut
+from phasebrush.model.members import Members
 from phasebrush.model.stale import (
     FROM_FIELD,
     FROM_RESULT,
@@ -19,10 +20,11 @@ from phasebrush.model.stale import (
     stale_after,
     with_followers,
 )
-from phasebrush.model.state import Desk, Shelved, State, Subset
+from phasebrush.model.state import Desk, Named, Note, Shelved, State
+from phasebrush.model.subset import Subset
 
 AFTER_BRUSH = {"subsets", "average", "maps", "traces", "dial", "readout"}
-OF_KEY = {"key", "rows", "stack"}
+OF_KEY = {"key", "rows", "stack", "steps", "named"}
 OF_CHANNEL = {"channel", "average", "maps", "traces", "dial", "readout"} | OF_KEY
 PICKED = Subset(np.array([True, False]))
 
@@ -39,11 +41,16 @@ EXPECTED = {
     "smoothing": (9, {"stack"}),
     "a": (PICKED, AFTER_BRUSH),
     "b": (PICKED, AFTER_BRUSH),
-    "spot": (Spot(4, 7, 0.1, 0.2), {"spot", "traces", "dial", "readout"}),
+    "excluded": (PICKED, AFTER_BRUSH | OF_KEY),
+    "by_label": (True, {"rows", "stack"}),
+    "named": ((Named("fast", "p", Members()),), {"named"}),
+    "notes": ((Note("p", "words"),), {"named"}),
+    "steps": (4, {"steps"}),
+    "spot": (Spot(4, 7, 0.1, 0.2), {"spot", "traces", "dial", "readout", "steps"}),
     "maps_show": ("B", {"maps", "traces", "readout"}),
     "cursor_s": (0.123, {"cursor"}),
     "shown_s": ((0.0, 0.5), {"shown"}),
-    "desks": ((Desk("p", Cut(), "Oz", PICKED, PICKED),), set()),
+    "desks": ((Desk("p", Cut(), "Oz", Members(), Members(), Members()),), set()),
 }
 
 
@@ -103,7 +110,9 @@ def test_a_moved_spot_reaches_the_order_only_where_the_key_is_read_at_the_spot(k
     state = State(key=SortKey(kind, column="n"))
     stale = stale_after(state, replace(state, spot=Spot(4, 7, 0.1, 0.2)))
     # Written out, so that a wrong flag in the table of kinds shows here.
-    assert (set(OF_KEY) <= {str(result) for result in stale}) == (kind in {"phase", "spot-power"})
+    assert ({"key", "rows", "stack"} <= {str(result) for result in stale}) == (
+        kind in {"phase", "spot-power", "alignment"}
+    )
 
 
 @pytest.mark.parametrize("result", Result)

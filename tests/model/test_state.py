@@ -7,7 +7,14 @@ from dataclasses import FrozenInstanceError, fields, replace
 import numpy as np
 import pytest
 
-from phasebrush.model.state import NOBODY, Desk, Shelved, State, Subset, changed_fields, subset_of
+from phasebrush.core.rule import Rule, RuleKind
+from phasebrush.model.members import Members
+from phasebrush.model.state import Desk, Named, Note, Shelved, State, changed_fields
+from phasebrush.model.subset import NOBODY, Subset, subset_of
+
+GREEN = Rule(RuleKind.LABELS, labels=("green",))
+WHITE = Rule(RuleKind.LABELS, labels=("white",))
+NO_ONE = Members()
 
 
 @pytest.mark.parametrize("name", [item.name for item in fields(State)])
@@ -17,7 +24,16 @@ def test_no_field_of_the_record_can_be_set(name):
 
 
 @pytest.mark.parametrize(
-    "record", [Subset(), Shelved("p", "t"), Desk("p", None, "", NOBODY, NOBODY)]
+    "record",
+    [
+        Subset(),
+        GREEN,
+        NO_ONE,
+        Shelved("p", "t"),
+        Desk("p", None, "", NO_ONE, NO_ONE, NO_ONE),
+        Named("fast", "p", NO_ONE),
+        Note("p", "words"),
+    ],
 )
 def test_the_records_inside_are_frozen_too(record):
     with pytest.raises(FrozenInstanceError):
@@ -33,7 +49,9 @@ def test_a_subsets_mask_cannot_be_written():
 def test_subsets_are_equal_by_mask_and_rule():
     mask = np.array([True, False, True])
     assert Subset(mask.copy()) == Subset(mask.copy())
-    assert Subset(mask.copy(), "rule") != Subset(mask.copy())
+    assert Subset(mask.copy(), GREEN) == Subset(mask.copy(), replace(GREEN))
+    assert Subset(mask.copy(), GREEN) != Subset(mask.copy())
+    assert Subset(mask.copy(), GREEN) != Subset(mask.copy(), WHITE)
     assert Subset(mask.copy()) != Subset(~mask)
     assert Subset(mask.copy()) != Subset(mask[:2].copy())
     assert Subset(mask.copy()) != "something else"
@@ -41,7 +59,7 @@ def test_subsets_are_equal_by_mask_and_rule():
 
 def test_equal_subsets_have_equal_hashes():
     mask = np.array([True, False, True])
-    assert hash(Subset(mask.copy(), "r")) == hash(Subset(mask.copy(), "r"))
+    assert hash(Subset(mask.copy(), GREEN)) == hash(Subset(mask.copy(), replace(GREEN)))
     assert len({Subset(mask.copy()), Subset(mask.copy()), Subset(~mask)}) == 2
 
 
@@ -74,10 +92,12 @@ def test_a_subset_by_hand_holds_the_trials_it_was_given():
 
 
 def test_the_record_finds_desk_and_subset():
-    desk = Desk("p", None, "Oz", NOBODY, NOBODY)
+    desk = Desk("p", None, "Oz", NO_ONE, NO_ONE, NO_ONE)
     a, b = Subset(np.array([True])), Subset(np.array([False]))
-    state = State(a=a, b=b, desks=(desk,))
+    state = State(a=a, b=b, desks=(desk,), notes=(Note("q", "other"), Note("p", "mine")))
     assert state.subset("A") is a
     assert state.subset("B") is b
     assert state.desk("p") is desk
     assert state.desk("q") is None
+    assert state.note("p") == "mine"
+    assert state.note("nowhere") == ""

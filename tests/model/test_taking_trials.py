@@ -62,7 +62,8 @@ class TestTakingTrials:
         assert (bench.state.a, bench.state.b) == (NOBODY, NOBODY)
         assert bench.state.channel == "Pz"  # it exists here too
         desk = bench.state.desk("one.npz")
-        assert (desk.channel, desk.a, desk.cut) == ("Pz", first.a, first.cut)
+        assert (desk.channel, desk.cut) == ("Pz", first.cut)
+        assert (len(desk.a.who), desk.a.rule) == (6, first.a.rule)
         bench.do(intents.show_channel("Fz"))
         bench.do(intents.brush_rows("B", 0, 2))
         bench.flush()
@@ -70,16 +71,24 @@ class TestTakingTrials:
         bench.flush()
         assert (bench.state.a, bench.state.b, bench.state.channel) == (first.a, NOBODY, "Pz")
         assert bench.snapshot.averages.of["A"].n == 6
-        assert bench.state.desk("two.npz").b.n == 3
+        assert len(bench.state.desk("two.npz").b.who) == 3
         assert len(bench.state.shelf) == 2
 
-    def test_a_desk_of_another_cut_gives_no_subsets_to_the_wrong_trials(self):
+    def test_a_desk_of_another_cut_finds_the_same_trials_by_onset_and_label(self):
         bench = bench_with(small_trials(path="one.npz"))
         bench.do(intents.brush_rows("A", 0, 5))
         bench.flush()
+        wished = bench.state.a.mask
         bench.take_trials(small_trials(path="two.npz", seed=2))
         bench.flush()
         bench.take_trials(small_trials(path="one.npz", cut=Cut(window_s=(-0.5, 0.5))))
+        bench.flush()
+        assert np.array_equal(bench.state.a.mask, wished)
+        other = small_trials(path="two.npz", onset_samples=np.arange(24) * 9 + 1)
+        bench.take_trials(small_trials(path="two.npz", seed=2))
+        bench.do(intents.brush_rows("A", 0, 5))
+        bench.flush()
+        bench.take_trials(other)  # events elsewhere: nobody is found again
         bench.flush()
         assert bench.state.a == NOBODY
 

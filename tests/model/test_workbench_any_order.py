@@ -157,7 +157,8 @@ def test_at_rest_everything_belongs_to_the_record(folder, seed):
         person.come_to_rest()
         assert_at_rest(person)
     assert all(
-        message.startswith(("missing.npz: ", "event times")) for message in person.told.messages
+        message.startswith(("missing.npz: ", "one: event times", "two: event times"))
+        for message in person.told.messages
     )
 
 

@@ -36,7 +36,7 @@ class TestOpening:
         assert snapshot.n_trials == 24
         assert snapshot.state.channel == "Oz"
         assert [(line.title, line.n_trials) for line in snapshot.state.shelf] == [("one", 24)]
-        assert told.messages == list(snapshot.trials.warnings)
+        assert told.messages == [f"one: {line}" for line in snapshot.trials.warnings]
 
     def test_a_folder_lists_every_recording_and_opens_the_first(self, folder):
         bench = bench_without_trials()

@@ -78,7 +78,7 @@ def _rows_rule(state: State, rows: Rows, low: int, high: int) -> Rule | None:
     """Rows of the stack as places in ascending order of the key, where that says the same."""
     n_known = len(rows.trial_of_row) - rows.n_excluded - rows.n_missing
     low, high = low - rows.n_excluded, high - rows.n_excluded
-    if state.by_label or low < 0 or high >= n_known:
+    if state.by_label or low < 0 or high >= n_known or high < low:
         return None
     if state.descending:
         low, high = n_known - 1 - high, n_known - 1 - low
