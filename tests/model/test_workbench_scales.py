@@ -28,7 +28,8 @@ class TestScales:
         frame = bench.flush()
         after = self.limits(frame.snapshot)
         valid = frame.snapshot.maps.valid
-        assert after[0] >= frame.snapshot.maps.of["A"].itc[valid].max() > before[0]
+        assert after[0] >= frame.snapshot.maps.of["A"].itc[valid].max()
+        assert after != before
         assert {Result.MAPS, Result.AVERAGE} <= frame.changed
 
     def test_they_hold_after_a_drag_that_was_zoomed_meanwhile(self):
@@ -49,9 +50,11 @@ class TestScales:
         before = self.limits(bench.snapshot)
         bench.do(intents.brush_rows("A", 2, 3))
         # Two trials align by chance: so small a set leaves the scale alone.
-        assert self.limits(bench.flush().snapshot) == before
+        assert self.limits(bench.flush().snapshot)[:2] == before[:2]
         bench.do(intents.brush_rows("A", 2, 12))
-        assert self.limits(bench.flush().snapshot)[0] > before[0]
+        snapshot = bench.flush().snapshot
+        assert self.limits(snapshot)[0] >= snapshot.maps.of["A"].itc[snapshot.maps.valid].max()
+        assert self.limits(snapshot) != before
 
     def test_an_abandoned_drag_leaves_them_as_they_were(self):
         bench = bench_with()
