@@ -41,6 +41,12 @@ def members_of(subset: Subset, trials: Trials) -> Members:
     return Members(who, subset.rule)
 
 
+def found_excluded(members: Members, trials: Trials) -> Subset:
+    """The excluded trials among these; nobody where nobody else would be left."""
+    found = found_again(members, trials)
+    return NOBODY if found.n == len(trials) else found
+
+
 def found_again(members: Members, trials: Trials) -> Subset:
     """The subset of these trials that has the identities; those that are gone are left out."""
     if not members.who:

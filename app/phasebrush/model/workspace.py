@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from phasebrush.model.members import Members, found_again, members_of
+from phasebrush.model.members import Members, found_again, found_excluded, members_of
 from phasebrush.model.state import Desk, Shelved, State
 from phasebrush.model.subset import NOBODY, Subset
 from phasebrush.model.workspace_paths import absolute, paths_of, with_paths
@@ -200,7 +200,7 @@ def state_of(workspace: Workspace, trials: Trials | None) -> State:
         shelf=shelf,
         a=found_again(workspace.a, trials),
         b=found_again(workspace.b, trials),
-        excluded=found_again(workspace.excluded, trials),
+        excluded=found_excluded(workspace.excluded, trials),
     )
 
 

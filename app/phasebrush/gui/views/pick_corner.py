@@ -87,8 +87,9 @@ class PickCorner(View):
             self._handles(state),
         )
         usable = key is not None and not key.fault
-        for button in (self._thirds, self._halves, self._quarters, self._more):
+        for button in (self._thirds, self._halves, self._quarters):
             button.setEnabled(usable)
+        self._more.setEnabled(snapshot.trials is not None)
         self._clear.setEnabled(state.a.n + state.b.n > 0)
 
     @staticmethod

@@ -11,8 +11,9 @@ import numpy as np
 
 from phasebrush.core.matching import pick_matched
 from phasebrush.core.rule import Rule, RuleKind, rule_mask
-from phasebrush.core.sort_keys import SortKey
+from phasebrush.core.sort_keys import KINDS, SortKey
 from phasebrush.model.intents.intent import How, Intent
+from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS, Letter, State
 from phasebrush.model.subset import NOBODY, Subset
 
@@ -21,7 +22,12 @@ if TYPE_CHECKING:
 
     from numpy.typing import NDArray
 
-    from phasebrush.model.results import Rows, Snapshot
+    from phasebrush.model.results import Snapshot
+
+
+KEY_FIELDS = ("recording", "cut", "channel", "transform", "key", "excluded", "descending",
+              "by_label")  # fmt: skip
+DIAL_FIELDS = ("recording", "cut", "channel", "transform", "spot")
 
 
 def _with_subset(state: State, letter: Letter, subset: Subset) -> State:
@@ -68,14 +74,40 @@ def brush_rows(
         low, high = max(min(first, last), 0), min(max(first, last), n_trials - 1)
         mask = np.zeros(n_trials, dtype=bool)
         mask[rows.trial_of_row[low : high + 1]] = True
-        rule = _rows_rule(state, rows, low, high)
+        rule = _rows_rule(state, snapshot, low, high) if key_is_current(state, snapshot) else None
         return combined(state, letter, mask, how, rule)
 
     return Intent(f"brush {letter}", change, source, gesture)
 
 
-def _rows_rule(state: State, rows: Rows, low: int, high: int) -> Rule | None:
+def key_is_current(state: State, snapshot: Snapshot) -> bool:
+    """Whether the key that was worked out last is the one that the record asks for.
+
+    While another channel is transformed, or before the frame is flushed, it is not: a pick
+    must not claim a rule that it did not follow.
+    """
+    seen = snapshot.state
+    same = all(getattr(seen, name) == getattr(state, name) for name in KEY_FIELDS)
+    at_spot = KINDS[state.key.kind].uses_spot
+    fresh = not snapshot.outdated & {Result.KEY, Result.ROWS}
+    return same and fresh and (not at_spot or seen.spot == state.spot)
+
+
+def dial_is_current(state: State, snapshot: Snapshot) -> bool:
+    """Whether the phases that were worked out last are those that the record asks for."""
+    seen = snapshot.state
+    same = all(getattr(seen, name) == getattr(state, name) for name in DIAL_FIELDS)
+    return same and Result.DIAL not in snapshot.outdated
+
+
+def _rows_rule(state: State, snapshot: Snapshot, low: int, high: int) -> Rule | None:
     """Rows of the stack as places in ascending order of the key, where that says the same."""
+    rows, key = snapshot.rows, snapshot.key
+    if rows is None or key is None:
+        return None
+    known = key.values[np.isfinite(key.values)]
+    if state.descending and len(np.unique(known)) < len(known):
+        return None  # equal values keep the recording's order either way round
     n_known = len(rows.trial_of_row) - rows.n_excluded - rows.n_missing
     low, high = low - rows.n_excluded, high - rows.n_excluded
     if state.by_label or low < 0 or high >= n_known or high < low:
@@ -102,10 +134,16 @@ def pick_by(
 
     def change(state: State, snapshot: Snapshot) -> State:
         key, trials = snapshot.key, snapshot.trials
-        if key is None or key.fault or trials is None or len(key.values) != len(trials):
+        if trials is None:
             return state
         rule = rule_for(state)
-        mask = rule_mask(rule, key.values, trials.labels, used_trials(state, len(trials)))
+        values = None
+        if rule.key is not None:
+            fits = key is not None and not key.fault and len(key.values) == len(trials)
+            if key is None or not fits or not key_is_current(state, snapshot):
+                return state
+            values = key.values
+        mask = rule_mask(rule, values, trials.labels, used_trials(state, len(trials)))
         return combined(state, letter, mask, how, rule)
 
     return Intent(f"pick for {letter}", change, source, gesture)
@@ -184,6 +222,8 @@ def pick_sector(
 
     def change(state: State, snapshot: Snapshot) -> State:
         if snapshot.dial is None or snapshot.trials is None:
+            return state
+        if not dial_is_current(state, snapshot):
             return state
         rule = Rule(
             kind=RuleKind.SECTOR,

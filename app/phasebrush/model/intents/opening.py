@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from phasebrush.model.derive import default_channel
 from phasebrush.model.intents.intent import Intent
-from phasebrush.model.members import found_again, members_of
+from phasebrush.model.members import found_again, found_excluded, members_of
 from phasebrush.model.state import Desk, Shelved, State
 from phasebrush.model.subset import NOBODY
 
@@ -38,15 +38,15 @@ def take_trials(trials: Trials, before: Trials | None, *, fleeting: bool = False
         channel, desks = state.channel, state.desks
         a = b = excluded = NOBODY
         if state.recording == path and before is not None:
-            sets = (state.a, state.b, state.excluded)
-            a, b, excluded = (found_again(members_of(x, before), trials) for x in sets)
+            a, b = (found_again(members_of(x, before), trials) for x in (state.a, state.b))
+            excluded = found_excluded(members_of(state.excluded, before), trials)
         elif state.recording and state.cut is not None and before is not None:
             left = _desk(state, state.cut, before)
             desks = (*(desk for desk in desks if desk.recording != left.recording), left)
         desk = state.desk(path)
         if desk is not None and state.recording != path:
             a, b = found_again(desk.a, trials), found_again(desk.b, trials)
-            excluded, channel = found_again(desk.excluded, trials), desk.channel
+            excluded, channel = found_excluded(desk.excluded, trials), desk.channel
         line = Shelved(path, trials.source.title, len(trials))
         shelf = tuple(line if item.path == path else item for item in state.shelf)
         if line not in shelf:
