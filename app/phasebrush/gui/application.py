@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import os
 import sys
 import time
@@ -61,6 +62,8 @@ def application() -> QApplication:
     if not has_display():
         os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
     pg.setConfigOptions(antialias=False, imageAxisOrder="row-major", useNumba=False)
+    # A collection costs a brush step about a millisecond; cycles are few and small here.
+    gc.set_threshold(50_000, 20, 20)
     made = QApplication(sys.argv[:1])
     made.setApplicationName("Phasebrush")
     made.setDesktopFileName("phasebrush")
