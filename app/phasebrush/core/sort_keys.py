@@ -29,6 +29,7 @@ __all__ = [
     "key_title",
     "key_unit",
     "key_values",
+    "same_key",
     "sorted_order",
 ]
 
@@ -57,6 +58,19 @@ def key_title(key: SortKey, spot: Spot) -> str:
 def key_unit(key: SortKey) -> str:
     """Give the unit of a key's values; empty where there is none."""
     return KINDS[key.kind].unit
+
+
+def same_key(one: SortKey | None, other: SortKey | None) -> bool:
+    """Whether two keys order trials the same way: what a kind does not use is not compared."""
+    if one is None or other is None or one.kind != other.kind:
+        return one is other
+    kind = KINDS[one.kind]
+    return (
+        (one.column == other.column or one.kind != "column")
+        and (one.band_hz == other.band_hz or not kind.uses_band)
+        and (one.window_s == other.window_s or not kind.uses_window)
+        and (one.sign == other.sign or not kind.uses_sign)
+    )
 
 
 def footprint(key: SortKey, spot: Spot, settings: TransformSettings) -> Footprint | None:

@@ -16,6 +16,7 @@ from phasebrush.core.sort_keys import (
     key_title,
     key_unit,
     key_values,
+    same_key,
     sorted_order,
 )
 from phasebrush.errors import InputError
@@ -374,7 +375,8 @@ def check_rules(state: State, trials: Trials, key: KeyValues | None) -> dict[str
 
 
 def _rule_can_be_checked(rule: Rule, state: State, key: KeyValues | None) -> bool:
-    if key is None or key.fault or rule.key != state.key or rule.channel != state.channel:
+    here = rule.channel == state.channel and same_key(rule.key, state.key)
+    if key is None or key.fault or not here:
         return False
     return not KINDS[state.key.kind].uses_spot or rule.spot == state.spot
 

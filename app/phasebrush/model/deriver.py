@@ -132,6 +132,12 @@ class Deriver:
         """The transform was stopped or failed: it may be asked for again."""
         self._asked = None
 
+    def no_steps(self, question: StepsQuestion) -> None:
+        """The steps cannot be had: that is the answer, until another question is asked."""
+        if question.same_as(self._steps_asked):
+            self._steps_asked, self._steps_answered = None, question
+            self.snapshot = replace(self.snapshot, steps=None)
+
     def forget_steps(self) -> None:
         """The work on steps was stopped or failed: it may be asked for again."""
         self._steps_asked = None
@@ -149,13 +155,18 @@ class Deriver:
         trials = self._find_trials(state) if state.recording else None
         before = self.snapshot.trials
         if trials is not before:
-            self._work = None
+            self._let_go()
             self._asked = None
             if before is None or trials is None or not before.same_events(trials):
                 self.snapshot = Snapshot(state=state)
             # The same trials cut anew: what is drawn stays until the new cut is transformed.
             self.snapshot = replace(self.snapshot, trials=trials, coefficients=None)
         return trials is not None
+
+    def _let_go(self) -> None:
+        """Let go of the transformed channel, and of the questions that hold on to it."""
+        self._work = None
+        self._steps_asked = self._steps_answered = None
 
     def _channel(self, state: State) -> bool:
         trials = self.snapshot.trials
@@ -166,7 +177,7 @@ class Deriver:
             self._asked = None
         elif not question.same_as(self._asked):
             # The old coefficients go first: two sets of them may not fit into memory.
-            self._work = None
+            self._let_go()
             self.snapshot = replace(self.snapshot, coefficients=None)
             self._asked = question
             self._ask_transform(question)
@@ -294,6 +305,8 @@ class Deriver:
     def _named(self, state: State) -> bool:
         trials = self.snapshot.trials
         if trials is not None:
-            checks = derive.check_rules(state, trials, self.snapshot.key)
+            # A key that is still worked out belongs to an earlier record: nothing to check by.
+            key = None if self._work is None else self.snapshot.key
+            checks = derive.check_rules(state, trials, key)
             self.snapshot = replace(self.snapshot, rule_checks=checks)
         return True

@@ -7,6 +7,7 @@ from functools import partial
 from typing import TYPE_CHECKING
 
 from phasebrush.core.suspects import suspects
+from phasebrush.errors import InputError
 from phasebrush.model import intents, opening
 from phasebrush.model.channel_work import ChannelQuestion, ChannelWork, transform_channel
 from phasebrush.model.deriver import Deriver
@@ -370,12 +371,16 @@ class Workbench:
                 "steps of the sort key",
                 partial(work_out_steps, question),
                 partial(self._steps_done, question),
-                self._steps_failed,
+                partial(self._steps_failed, question),
             )
         )
 
-    def _steps_failed(self, error: Exception) -> None:
-        self._deriver.forget_steps()
+    def _steps_failed(self, question: StepsQuestion, error: Exception) -> None:
+        if isinstance(error, InputError):
+            self._deriver.no_steps(question)
+            self._mark({Result.STEPS}, "")
+        else:
+            self._deriver.forget_steps()
         self._failed(error)
 
     def _steps_done(self, question: StepsQuestion, steps: Steps) -> None:

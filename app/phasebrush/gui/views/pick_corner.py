@@ -11,6 +11,7 @@ from PySide6.QtWidgets import QMenu, QPushButton, QVBoxLayout, QWidget
 
 from phasebrush.core.parts import PARTS
 from phasebrush.core.rule import RuleKind
+from phasebrush.core.sort_keys import same_key
 from phasebrush.gui.time_plot import how_of
 from phasebrush.gui.view import View
 from phasebrush.gui.views.key_histogram import Histogram
@@ -98,7 +99,7 @@ class PickCorner(View):
         rule = state.a.rule
         if rule is None or rule.kind != RuleKind.RANGE:
             return None
-        same = (rule.key, rule.channel) == (state.key, state.channel)
+        same = rule.channel == state.channel and same_key(rule.key, state.key)
         return (rule.low, rule.high) if same else None
 
     def set_look(self, look: Look) -> None:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
+from phasebrush.core.sort_keys import KINDS, same_key
 from phasebrush.model.intents.choosing import combined, pick_by
 from phasebrush.model.intents.intent import Intent
 from phasebrush.model.members import found_again, members_of
@@ -55,8 +56,11 @@ def apply_rule(letter: Letter, rule: Rule) -> Intent:
     """
 
     def change(state: State, snapshot: Snapshot) -> State:
-        if rule.key is not None and (state.key, state.spot) != (rule.key, rule.spot):
-            return state
+        if rule.key is not None:
+            at_spot = KINDS[rule.key.kind].uses_spot and rule.spot != state.spot
+            here = rule.channel == state.channel and same_key(rule.key, state.key)
+            if at_spot or not here:
+                return state
         return pick_by(letter, lambda _state: rule).change(state, snapshot)
 
     return Intent(f"apply the rule to {letter}", change)
