@@ -83,9 +83,8 @@ class Dots(_OverPlot):
         look = self._look
         painter.save()
         painter.resetTransform()
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         for name, colour, size, square in (
-            ("rest", mixed(look.muted, look.panel, 0.25), REST_SIZE, False),
+            ("rest", mixed(look.muted, look.panel, 0.25), REST_SIZE, True),
             ("A", look.subset_a, A_SIZE, True),
             ("B", look.subset_b, B_SIZE, False),
             ("both", look.subset_b, BOTH_SIZE, False),
@@ -101,6 +100,8 @@ class Dots(_OverPlot):
         self._points.resize(len(x))
         places = self._points.ndarray()
         places[:, 0], places[:, 1] = x, y
+        # Smooth round dots take ten times as long as squares: only B needs to be round.
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, on=not square)
         dot = QPen(QColor(colour), size)
         dot.setCapStyle(Qt.PenCapStyle.SquareCap if square else Qt.PenCapStyle.RoundCap)
         painter.setPen(dot)

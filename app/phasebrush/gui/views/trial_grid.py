@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 import numpy as np
-from PySide6.QtCore import QItemSelection, QItemSelectionModel, Qt
+from PySide6.QtCore import QItemSelection, QItemSelectionModel, QRect, Qt
 from PySide6.QtGui import QPalette
 from PySide6.QtWidgets import (
     QAbstractItemView,
@@ -20,6 +20,8 @@ from phasebrush.gui.brush import runs
 from phasebrush.gui.views.trial_rows import SET_COLUMN, TrialRows
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from numpy.typing import NDArray
     from PySide6.QtCore import QModelIndex, QPersistentModelIndex
 
@@ -71,6 +73,20 @@ class TrialGrid(QTableView):
         header.setDefaultSectionSize(96)
         header.setSortIndicator(0, Qt.SortOrder.AscendingOrder)
         self.setSortingEnabled(True)
+
+    def dataChanged(  # noqa: N802 - the library's own name
+        self,
+        first: QModelIndex | QPersistentModelIndex,
+        last: QModelIndex | QPersistentModelIndex,
+        roles: Sequence[int] = (),
+    ) -> None:
+        """Repaint the column that changed, not the whole table: it changes at every brush step."""
+        if first.isValid() and first.column() == last.column() and first.row() != last.row():
+            column = first.column()
+            left, width = self.columnViewportPosition(column), self.columnWidth(column)
+            self.viewport().update(QRect(left, 0, width, self.viewport().height()))
+        else:
+            super().dataChanged(first, last, roles)
 
     def fit_columns(self) -> None:
         """Make the columns as wide as what can be seen of them."""
