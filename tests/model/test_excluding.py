@@ -228,7 +228,7 @@ class TestExcluding:
         data_uv = wild.data_uv.copy()
         data_uv[7] *= 60
         bench = bench_with(replace(wild, data_uv=data_uv))
-        assert [suspect.trial for suspect in bench.suspects()][0] == 7
+        assert next(suspect.trial for suspect in bench.suspects()) == 7
         bench.do(intents.exclude(mask_of(7)))
         bench.flush()
         assert 7 not in [suspect.trial for suspect in bench.suspects()]
