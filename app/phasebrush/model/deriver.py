@@ -49,6 +49,7 @@ class Deriver:
         self.wants_steps = False
         self._steps_asked: StepsQuestion | None = None
         self._steps_answered: StepsQuestion | None = None
+        self._steps_refused: StepsQuestion | None = None
         self._work: ChannelWork | None = None
         self._asked: ChannelQuestion | None = None
         self._phases: tuple[Spot, NDArray[np.float64]] | None = None
@@ -133,20 +134,22 @@ class Deriver:
         self._asked = None
 
     def no_steps(self, question: StepsQuestion) -> None:
-        """The steps cannot be had: that is the answer, until another question is asked."""
+        """The steps cannot be had: not asked again until something is different.
+
+        The earlier ones stay, marked as outdated.
+        """
         if question.same_as(self._steps_asked):
-            self._steps_asked, self._steps_answered = None, question
-            self.snapshot = replace(self.snapshot, steps=None)
+            self._steps_asked, self._steps_refused = None, question
 
     def forget_steps(self) -> None:
         """The work on steps was stopped or failed: it may be asked for again."""
-        self._steps_asked = None
+        self._steps_asked = self._steps_refused = None
 
     def close(self) -> None:
         """Let go of the arrays."""
         self._work = None
         self._asked = None
-        self._steps_asked = self._steps_answered = None
+        self._steps_asked = self._steps_answered = self._steps_refused = None
         self._averages.clear()
         self._maps.clear()
         self.snapshot = Snapshot()
@@ -166,7 +169,7 @@ class Deriver:
     def _let_go(self) -> None:
         """Let go of the transformed channel, and of the questions that hold on to it."""
         self._work = None
-        self._steps_asked = self._steps_answered = None
+        self._steps_asked = self._steps_answered = self._steps_refused = None
 
     def _channel(self, state: State) -> bool:
         trials = self.snapshot.trials
@@ -288,7 +291,7 @@ class Deriver:
     def _steps_of_key(self, state: State) -> bool:
         key = self.snapshot.key
         if not self.wants_steps:
-            self._steps_asked = self._steps_answered = None
+            self._steps_asked = self._steps_answered = self._steps_refused = None
             self.snapshot = replace(self.snapshot, steps=None)
             return True
         if self._work is None or key is None or self._keep_scales:
@@ -297,6 +300,8 @@ class Deriver:
         question = StepsQuestion(self._work, key, state.spot, used, state.steps)
         if question.same_as(self._steps_answered):
             return True
+        if question.same_as(self._steps_refused):
+            return False
         if not question.same_as(self._steps_asked):
             self._steps_asked = question
             self._ask_steps(question)

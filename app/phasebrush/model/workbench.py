@@ -378,7 +378,6 @@ class Workbench:
     def _steps_failed(self, question: StepsQuestion, error: Exception) -> None:
         if isinstance(error, InputError):
             self._deriver.no_steps(question)
-            self._mark({Result.STEPS}, "")
         else:
             self._deriver.forget_steps()
         self._failed(error)
