@@ -169,9 +169,9 @@ class TestNumbers:
         assert told.faults == []
         assert len(told.messages) == 1
         assert "5 steps need at least 5" in told.messages[0]
-        # Those of the earlier trials are not left standing, and nothing more is to come.
-        assert snapshot.steps is None
-        assert Result.STEPS not in snapshot.outdated
+        # Those of the earlier trials stay, marked as outdated: drawn dimmed, never blank.
+        assert snapshot.steps.count == 5
+        assert Result.STEPS in snapshot.outdated
         assert snapshot.averages.of["all"].n == 3
         for row in (21, 22, 23):  # a drag that has nothing to do with them
             bench.do(intents.brush_rows("A", 21, row, gesture=8))
