@@ -44,6 +44,12 @@ def number_box(
     return box
 
 
+def show_number(box: QDoubleSpinBox, value: float) -> None:
+    """Show a number, unless it is there: setting it again would undo what is being typed."""
+    if abs(box.value() - value) > 0.5 * 10.0 ** -box.decimals():
+        box.setValue(value)
+
+
 def pair_row(first: QWidget, second: QWidget) -> QWidget:
     """Two fields, from and to."""
     row = QWidget()
@@ -167,10 +173,10 @@ class OrderPanel(View):
             if tuple(self._choice.itemData(item)) == (key.kind, key.column):
                 self._choice.setCurrentIndex(item)
         self._choice.setToolTip(f"Sort key: {kind.definition}")
-        self._low.setValue(key.band_hz[0])
-        self._high.setValue(key.band_hz[1])
-        self._start.setValue(key.window_s[0])
-        self._end.setValue(key.window_s[1])
+        show_number(self._low, key.band_hz[0])
+        show_number(self._high, key.band_hz[1])
+        show_number(self._start, key.window_s[0])
+        show_number(self._end, key.window_s[1])
         for name, row, used in (
             ("band", self._band_row, kind.uses_band),
             ("window", self._window_row, kind.uses_window),
@@ -181,7 +187,8 @@ class OrderPanel(View):
         self._way.setCurrentIndex(1 if state.descending else 0)
         self._by_label.setChecked(state.by_label)
         self._sign.setCurrentIndex(0 if key.sign > 0 else 1)
-        self._smooth.setValue(state.smoothing)
+        if self._smooth.value() != state.smoothing:
+            self._smooth.setValue(state.smoothing)
 
     def _chosen(self, item: int) -> None:
         if self._state is not None:
