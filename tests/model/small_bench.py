@@ -103,7 +103,12 @@ def picked(state: State, snapshot: Snapshot, *wishes: intents.Intent) -> State:
 
 
 class ManualRunner:
-    """Keeps work until it is told to run it, and answers until they are let in."""
+    """Keeps work until it is told to run it, and answers until they are let in.
+
+    It never waits until the mouse rests: a test says itself when work is done.
+    """
+
+    beside = False
 
     def __init__(self) -> None:
         self.waiting: list[Callable[[], Outcome]] = []

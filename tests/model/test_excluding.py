@@ -105,7 +105,7 @@ class TestAsIfNeverThere:
                 found.averages.of[name].band_uv, expected.averages.of[name].band_uv, atol=1e-4
             )
             np.testing.assert_allclose(
-                found.traces.of[name].itc, expected.traces.of[name].itc, atol=1e-6
+                found.traces.of[name].locking, expected.traces.of[name].locking, atol=1e-6
             )
             mine, theirs = found.readout.of[name], expected.readout.of[name]
             assert mine.n == theirs.n

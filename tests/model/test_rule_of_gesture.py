@@ -12,6 +12,7 @@ from phasebrush.core.parts import PARTS
 from phasebrush.core.rule import RuleKind, rule_mask, rule_words
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
+from phasebrush.core.trials import Cut
 from phasebrush.model import intents
 from phasebrush.model.intents import used_trials
 from phasebrush.model.subset import NOBODY
@@ -240,3 +241,47 @@ class TestWhileSomethingElseIsWorkedOut:
         runner.settle(bench)
         if bench.state.a.n and bench.state.a.rule is not None:
             np.testing.assert_array_equal(given(bench), bench.state.a.mask)
+
+
+@pytest.mark.parametrize(
+    "wish",
+    [
+        intents.brush_rows("A", 0, 99, how="add"),
+        intents.pick_parts({"A": "highest-third"}),
+        intents.pick_range("A", -100.0, 100.0),
+        intents.pick_labels("A", ("green",)),
+        intents.pick_trials("A", np.ones(N, dtype=bool)),
+        intents.pick_sector("A", 0.0, 6.3),
+        intents.rest_to_b(),
+        intents.match_counts(),
+        intents.exclude(mask_of(1)),
+    ],
+    ids=lambda wish: wish.name,
+)
+def test_a_wish_between_a_new_cut_and_its_frame_meets_no_trials_that_are_gone(bench, wish):
+    """The last snapshot still shows 24 trials; ten lie on the table by now."""
+    bench.do(intents.pick_trials("A", mask_of(10, 11, 12, 13)))
+    bench.do(intents.pick_trials("B", mask_of(14, 15)))
+    bench.do(intents.exclude(mask_of(16)))
+    trials = bench.flush().snapshot.trials
+    kept = slice(10, 20)
+    bench.take_trials(
+        replace(
+            trials,
+            data_uv=trials.data_uv[kept],
+            labels=trials.labels[kept],
+            onset_samples=trials.onset_samples[kept],
+            onsets_s=trials.onsets_s[kept],
+            response_times_s=trials.response_times_s[kept],
+            columns={"effort": trials.columns["effort"][kept]},
+            cut=Cut(window_s=(-0.5, 0.8)),
+        )
+    )
+    bench.do(wish)
+    for subset in (bench.state.a, bench.state.b, bench.state.excluded):
+        assert len(subset.mask) in (0, 10)
+    snapshot = bench.flush().snapshot
+    for letter in ("A", "B"):
+        n = snapshot.state.subset(letter).n
+        assert n == (snapshot.averages.of[letter].n if letter in snapshot.averages.of else 0)
+    assert snapshot.averages.of["all"].n == 10 - snapshot.state.excluded.n

@@ -152,7 +152,7 @@ def test_the_box_is_the_mean_over_its_valid_points(brushed, name):
 def test_traces_are_the_maps_means_over_the_band(brushed, name):
     spot, maps, trace = brushed.state.spot, brushed.maps, brushed.traces.of[name]
     rows = (maps.freqs_hz >= spot.low_hz) & (maps.freqs_hz <= spot.high_hz)
-    np.testing.assert_allclose(trace.itc, maps.of[name].itc[rows].mean(axis=0))
+    np.testing.assert_allclose(trace.locking, maps.of[name].itc[rows].mean(axis=0))
     np.testing.assert_allclose(trace.power_db, maps.of[name].power_db[rows].mean(axis=0))
     assert trace.n == maps.of[name].n
     assert brushed.traces.band_hz == (maps.freqs_hz[rows][0], maps.freqs_hz[rows][-1])
@@ -220,7 +220,7 @@ def test_a_spot_between_the_frequencies_reads_the_nearest_one():
     bench.do(intents.move_spot(between))
     snapshot = bench.flush().snapshot
     assert snapshot.readout.freq_hz == freqs[2]
-    np.testing.assert_array_equal(snapshot.traces.of["all"].itc, snapshot.maps.of["all"].itc[2])
+    np.testing.assert_array_equal(snapshot.traces.of["all"].locking, snapshot.maps.of["all"].itc[2])
 
 
 def test_a_spot_where_the_maps_are_not_valid_says_so():

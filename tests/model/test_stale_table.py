@@ -12,6 +12,7 @@ from phasebrush.core.sort_keys import KINDS, SortKey
 from phasebrush.core.spot import Spot
 from phasebrush.core.trials import Cut
 from phasebrush.model.members import Members
+from phasebrush.model.pages import Page
 from phasebrush.model.stale import (
     FROM_FIELD,
     FROM_RESULT,
@@ -23,9 +24,10 @@ from phasebrush.model.stale import (
 from phasebrush.model.state import Desk, Named, Note, Shelved, State
 from phasebrush.model.subset import Subset
 
-AFTER_BRUSH = {"subsets", "average", "maps", "traces", "dial", "readout"}
+OF_MAPS = {"maps", "outlines", "traces", "circles", "readout", "rested", "compared"}
+AFTER_BRUSH = {"subsets", "average", "dial"} | OF_MAPS
 OF_KEY = {"key", "rows", "stack", "steps", "named"}
-OF_CHANNEL = {"channel", "average", "maps", "traces", "dial", "readout"} | OF_KEY
+OF_CHANNEL = {"channel", "average", "dial"} | OF_MAPS | OF_KEY
 PICKED = Subset(np.array([True, False]))
 
 # Written out by hand: what a person sees change when each thing alone changes.
@@ -35,7 +37,7 @@ EXPECTED = {
     "cut": (Cut(window_s=(-0.1, 0.4)), {"trials", "shown", "subsets"} | OF_CHANNEL),
     "channel": ("Oz", OF_CHANNEL),
     "transform": (FEW_WAVELETS, OF_CHANNEL),
-    "baseline_s": ((-0.3, 0.0), {"maps", "traces", "readout"}),
+    "baseline_s": ((-0.3, 0.0), OF_MAPS),
     "key": (SortKey("recording-order"), OF_KEY),
     "descending": (True, {"rows", "stack"}),
     "smoothing": (9, {"stack"}),
@@ -46,10 +48,20 @@ EXPECTED = {
     "named": ((Named("fast", "p", Members()),), {"named"}),
     "notes": ((Note("p", "words"),), {"named"}),
     "steps": (4, {"steps"}),
-    "spot": (Spot(4, 7, 0.1, 0.2), {"spot", "traces", "dial", "readout", "steps"}),
-    "maps_show": ("B", {"maps", "traces", "readout"}),
+    "spot": (
+        Spot(4, 7, 0.1, 0.2),
+        {"spot", "traces", "dial", "circles", "readout", "rested", "steps"},
+    ),
+    "maps_show": ("B", OF_MAPS),
     "cursor_s": (0.123, {"cursor"}),
     "shown_s": ((0.0, 0.5), {"shown"}),
+    "consistency": ("PPC", OF_MAPS | {"consistency"}),
+    "power_part": ("evoked", OF_MAPS),
+    "match": (True, {"rested"}),
+    "tested": ("power", {"compared"}),
+    "draws": (500, {"compared"}),
+    "seed": (7, {"rested", "steps", "compared"}),
+    "pages": ((Page(),), set()),
     "desks": ((Desk("p", Cut(), "Oz", Members(), Members(), Members()),), set()),
 }
 

@@ -111,7 +111,7 @@ def assert_same(found, expected) -> None:
     np.testing.assert_array_equal(found.stack.image_uv, expected.stack.image_uv)
     assert set(found.maps.of) == set(expected.maps.of) == set(found.averages.of)
     assert found.maps.shown == expected.maps.shown
-    assert found.maps.itc_limit == expected.maps.itc_limit
+    assert found.maps.locking_limit == expected.maps.locking_limit
     assert found.maps.db_limit == expected.maps.db_limit
     for name, maps in expected.maps.of.items():
         assert found.maps.of[name].n == maps.n
@@ -121,7 +121,7 @@ def assert_same(found, expected) -> None:
             found.averages.of[name].mean_uv, expected.averages.of[name].mean_uv, atol=1e-6
         )
         np.testing.assert_allclose(
-            found.traces.of[name].itc, expected.traces.of[name].itc, atol=1e-6
+            found.traces.of[name].locking, expected.traces.of[name].locking, atol=1e-6
         )
         assert found.readout.of[name].itc == pytest.approx(expected.readout.of[name].itc, abs=1e-6)
     assert set(found.dial.of) == set(expected.dial.of)

@@ -13,9 +13,11 @@ from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result
 
 DERIVATIONS = [name for name in dir(derive) if name.startswith("derive_")]
-AFTER_BRUSH = {
-    Result.SUBSETS, Result.AVERAGE, Result.MAPS, Result.TRACES, Result.DIAL, Result.READOUT,
+OF_MAPS = {
+    Result.MAPS, Result.OUTLINES, Result.TRACES, Result.CIRCLES, Result.READOUT, Result.RESTED,
+    Result.COMPARED,
 }  # fmt: skip
+AFTER_BRUSH = {Result.SUBSETS, Result.AVERAGE, Result.DIAL} | OF_MAPS
 
 
 @pytest.fixture
@@ -120,9 +122,10 @@ def test_a_frame_is_only_a_views_own_when_all_of_it_came_from_that_view():
          {Result.KEY, Result.ROWS, Result.STACK, Result.STEPS, Result.NAMED}),
         (intents.move_cursor(0.21), {Result.CURSOR}),
         (intents.zoom_time((0.0, 0.4)), {Result.SHOWN}),
-        (intents.transform_with(None, (-0.4, -0.2)), {Result.MAPS, Result.TRACES, Result.READOUT}),
+        (intents.transform_with(None, (-0.4, -0.2)), OF_MAPS),
         (intents.move_spot(Spot(6, 8, 0.1, 0.2)),
-         {Result.SPOT, Result.CURSOR, Result.TRACES, Result.DIAL, Result.READOUT, Result.STEPS}),
+         {Result.SPOT, Result.CURSOR, Result.TRACES, Result.DIAL, Result.CIRCLES, Result.READOUT,
+          Result.RESTED, Result.STEPS}),
     ],
 )  # fmt: skip
 def test_a_frame_names_exactly_what_changed(wish, expected):
@@ -175,13 +178,13 @@ class TestWhatTheMapsShow:
         maps = bench.flush().snapshot.maps
         assert maps.shown == shown
         if shown == "A-B":
-            np.testing.assert_array_equal(maps.itc, maps.of["A"].itc - maps.of["B"].itc)
+            np.testing.assert_array_equal(maps.locking, maps.of["A"].itc - maps.of["B"].itc)
             np.testing.assert_array_equal(
                 maps.power_db, maps.of["A"].power_db - maps.of["B"].power_db
             )
-            assert np.isnan(maps.chance_itc)
+            assert np.isnan(maps.chance)
         else:
-            assert maps.itc is maps.of[shown].itc
+            assert maps.locking is maps.of[shown].itc
 
     def test_a_baseline_that_the_response_reaches_into_is_said(self):
         bench = bench_with()
@@ -224,7 +227,7 @@ def test_a_flat_channel_is_shown_without_numbers_and_without_a_fault(level_uv):
     snapshot = bench.flush().snapshot
     assert told.faults == []
     assert snapshot.outdated == frozenset()
-    assert np.isfinite(snapshot.maps.itc_limit)
+    assert np.isfinite(snapshot.maps.locking_limit)
     assert np.isfinite(snapshot.maps.db_limit)
     assert snapshot.averages.of["all"].mean_uv == pytest.approx(level_uv)
     assert np.isfinite(snapshot.averages.limit_uv).all()

@@ -21,7 +21,7 @@ from phasebrush.model.stale import Result
 
 SLOW = {
     Result.CHANNEL, Result.KEY, Result.ROWS, Result.STACK, Result.SUBSETS, Result.AVERAGE,
-    Result.MAPS, Result.TRACES, Result.DIAL, Result.READOUT,
+    Result.MAPS, Result.OUTLINES, Result.TRACES, Result.DIAL, Result.CIRCLES, Result.READOUT,
 }  # fmt: skip
 MORE_WAVELETS = replace(FEW_WAVELETS, count=8)
 EVEN_MORE = replace(FEW_WAVELETS, count=9)
@@ -31,7 +31,9 @@ def test_results_are_outdated_until_the_transform_answers(bench, runner):
     bench.do(intents.show_channel("Pz"))
     frame = bench.flush()
     assert frame.snapshot.outdated == SLOW - {Result.SUBSETS}
-    assert frame.changed == SLOW - {Result.SUBSETS} | {Result.STEPS, Result.NAMED}
+    assert frame.changed == SLOW - {Result.SUBSETS} | {
+        Result.STEPS, Result.NAMED, Result.RESTED, Result.COMPARED,
+    }  # fmt: skip
     assert frame.snapshot.maps is not None  # drawn dimmed, never blank
     assert not bench.settled
     (progress,) = bench.jobs.running

@@ -14,7 +14,7 @@ class TestScales:
 
     @staticmethod
     def limits(snapshot):
-        return (snapshot.maps.itc_limit, snapshot.maps.db_limit, snapshot.averages.limit_uv)
+        return (snapshot.maps.locking_limit, snapshot.maps.db_limit, snapshot.averages.limit_uv)
 
     def test_they_stay_during_a_drag_and_follow_after_it(self):
         bench = bench_with()

@@ -129,7 +129,7 @@ class TestText:
         document = json.loads(text)
         assert text == json.dumps(document, indent=1, sort_keys=True, ensure_ascii=False) + "\n"
         assert document["format"] == "phasebrush workspace"
-        assert document["schema"] == 2
+        assert document["schema"] == 3
         assert document["program"].startswith("Phasebrush ")
         assert document["state"]["cursor_s"] == 1 / 7
         assert document["a"]["trials"] == [[100, "white"], [850, "white"], [1350, "green"]]

@@ -147,9 +147,9 @@ def test_a_wrong_value_is_one_line_that_says_where(saved, place, value, message)
 
 def test_a_newer_one_is_refused_politely(saved):
     document = document_of(saved)
-    document.update(schema=3, colour="blue")
+    document.update(schema=4, colour="blue")
     assert line_about(write_document(saved, document)) == (
-        f"{NAME}: was written by a newer version (schema 3; this one reads up to 2); "
+        f"{NAME}: was written by a newer version (schema 4; this one reads up to 3); "
         "update Phasebrush"
     )
 

@@ -14,6 +14,7 @@ from phasebrush.core.rule import Rule, RuleKind
 from phasebrush.core.sort_key import SortKey
 from phasebrush.core.trials import Cut, Source
 from phasebrush.model.members import Members
+from phasebrush.model.pages import Page
 from phasebrush.model.recording_hash import Content
 from phasebrush.model.state import Desk, Named, Note, Shelved, State
 from phasebrush.model.subset import Subset
@@ -74,6 +75,13 @@ def full_state(trials: Trials, other: str) -> State:
         maps_show="A-B",
         cursor_s=1 / 7,
         shown_s=(-0.25, 1e-300),
+        consistency="PPC",
+        power_part="induced",
+        match=True,
+        tested="average",
+        draws=2000,
+        seed=2**32 - 1,
+        pages=(Page("for Monday", ("stack", "dial"), 1, "a4", "dark", 9.5, 300, "words\nand µV"),),
         desks=(
             Desk(
                 other, Cut(("green",), reference=("TP9", "TP10"), resample_hz=125.0), "Cz",

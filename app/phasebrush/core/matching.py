@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from phasebrush.core.phase import itc_from_sums, unit_phasors
-from phasebrush.core.resample import percentile_band
+from phasebrush.core.resample import percentile_band, subset_weights
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -90,7 +90,7 @@ def match_counts(
     units = unit_phasors(phasors[mask_large])
     columns = np.column_stack((units.real, units.imag, units != 0.0))
     rng = np.random.default_rng(seed)
-    real, imaginary, n_phase = (_weights(n_large, n_small, draws, rng) @ columns).T
+    real, imaginary, n_phase = (subset_weights(n_large, n_small, draws, rng) @ columns).T
     values = itc_from_sums(real + 1j * imaginary, n_phase)
     known = values[~np.isnan(values)]
     low, high = percentile_band(values)
@@ -132,14 +132,3 @@ def _checked(mask_large: Mask, n_small: int) -> int:
     if not 1 <= n_small <= n_large:
         raise ValueError(f"{n_large} trials cannot be thinned to {n_small}")
     return n_large
-
-
-def _weights(
-    n_large: int, n_small: int, draws: int, rng: np.random.Generator
-) -> NDArray[np.float64]:
-    """Mark n_small of n_large in each row: the places of the smallest random numbers."""
-    weights = np.ones((draws, n_large))
-    if n_small < n_large:
-        chosen = rng.random((draws, n_large)).argpartition(n_small, axis=1)[:, n_small:]
-        np.put_along_axis(weights, chosen, 0.0, axis=1)
-    return weights

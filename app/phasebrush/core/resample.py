@@ -45,6 +45,32 @@ def resample_counts(n: int, draws: int, rng: np.random.Generator) -> Floats:
     return counts.reshape(draws, n).astype(np.float64)
 
 
+def subset_weights(n: int, n_small: int, draws: int, rng: np.random.Generator) -> Floats:
+    """Mark n_small of n trials in each draw, every choice equally likely.
+
+    The places of the smallest of n random numbers: drawing without replacement.
+
+    Parameters
+    ----------
+    n, n_small : int
+        Trials, and how many of them each draw takes, up to n.
+    draws : int
+        Number of draws.
+    rng : numpy.random.Generator
+        Source of random numbers.
+
+    Returns
+    -------
+    ndarray of float64, shape (draws, n)
+        0 or 1; each row sums to n_small.
+    """
+    weights = np.ones((draws, n))
+    if n_small < n:
+        left_out = rng.random((draws, n)).argpartition(n_small, axis=1)[:, n_small:]
+        np.put_along_axis(weights, left_out, 0.0, axis=1)
+    return weights
+
+
 def percentile_band(values: Floats) -> tuple[float, float]:
     """Take the 2.5th and the 97.5th percentile of draws, those without a value left out.
 

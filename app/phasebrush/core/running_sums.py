@@ -47,6 +47,7 @@ class RunningSums:
         self._values.flags.writeable = False
         self._data_uv.flags.writeable = False
         self._members = np.zeros(len(values), np.bool_)
+        self._fresh = True
         self._sums = TrialSums.empty(values.shape[1], values.shape[2], data_uv.shape[1])
 
     def set_members(
@@ -90,9 +91,11 @@ class RunningSums:
         came = np.flatnonzero(mask & ~self._members)
         left = np.flatnonzero(self._members & ~mask)
         base, touched = self._sums, int(came.size + left.size)
+        from_nothing = base.n == 0
         if touched > np.count_nonzero(mask):
             came, left = np.flatnonzero(mask), left[:0]
             base, touched = TrialSums.empty(*self._shape), int(came.size)
+            from_nothing = True
         done = 0
 
         def after_block(rows: int) -> None:
@@ -108,12 +111,33 @@ class RunningSums:
                 )
                 base = combine(base, change)
         self._sums, self._members = base, mask.copy()
+        self._fresh = from_nothing or (self._fresh and touched == 0)
         return touched
+
+    @property
+    def is_fresh(self) -> bool:
+        """Whether the sums were taken in one go: they hang on the set alone, to the last bit."""
+        return self._fresh
+
+    def afresh(self, *, stopped: Callable[[], bool] | None = None) -> RunningSums:
+        """Sum the same set in one go, in other sums: free of the rounding of earlier changes.
+
+        Safe in another thread while this set changes: it is the set of the moment of the call.
+
+        Raises
+        ------
+        JobStopped
+            If ``stopped`` said True.
+        """
+        other = RunningSums(self._values, self._data_uv)
+        other.set_members(self._members, stopped=stopped)
+        return other
 
     def copy(self) -> RunningSums:
         """Make a second set that starts from this one's members and goes its own way."""
         other = RunningSums(self._values, self._data_uv)
         other._sums, other._members = self._sums, self._members.copy()
+        other._fresh = self._fresh
         return other
 
     def frozen(self) -> TrialSums:

@@ -18,6 +18,7 @@ LONGEST_WAIT_MS = 5000
 class ThreadRunner(QObject):
     """A `phasebrush.model.jobs.Runner` for the window."""
 
+    beside = True
     _finished = Signal(object)
 
     def __init__(self, parent: QObject | None = None) -> None:

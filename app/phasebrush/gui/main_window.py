@@ -130,6 +130,7 @@ class MainWindow(QMainWindow):
             self._aside.start()
         self.set_look(look)
         self._show_page(open_now=False)
+        workbench.want_rested(wanted=True)
         self.clock.request()
 
     def _slots(self) -> dict[str, Callable[[], object]]:

@@ -30,6 +30,17 @@ class Progress:
         """Whether the work was asked to end."""
         return self._stop.is_set()
 
+    def wait(self, seconds: float) -> None:
+        """Wait, unless the work is asked to end.
+
+        Raises
+        ------
+        JobStopped
+            If it was.
+        """
+        if self._stop.wait(seconds):
+            raise JobStopped
+
 
 @dataclass(frozen=True, eq=False)
 class Job:
@@ -47,6 +58,9 @@ class Job:
         Takes the answer, back in the window's own thread.
     failed : callable
         Takes the exception, back in the window's own thread.
+    rest_s : float
+        How long a question must stand before the work on it begins: moves that follow each
+        other start nothing.
     """
 
     kind: str
@@ -54,13 +68,19 @@ class Job:
     work: Callable[[Progress], Any]
     done: Callable[[Any], None]
     failed: Callable[[Exception], None]
+    rest_s: float = 0.0
 
 
 Outcome = Callable[[], None]
 
 
 class Runner(Protocol):
-    """Runs work, and delivers what comes of it in the thread that asked."""
+    """Runs work, and delivers what comes of it in the thread that asked.
+
+    ``beside`` says whether the asking thread goes on meanwhile.
+    """
+
+    beside: bool
 
     def start(self, work: Callable[[], Outcome]) -> None:
         """Run ``work`` and then, in the asking thread, the function it returns."""
@@ -71,6 +91,8 @@ class Runner(Protocol):
 
 class InlineRunner:
     """Runs work at once, in place: for the command line and for tests."""
+
+    beside = False
 
     def start(self, work: Callable[[], Outcome]) -> None:
         """Run the work and deliver its outcome."""
@@ -114,6 +136,8 @@ class JobBoard:
 
         def work() -> Outcome:
             try:
+                if job.rest_s > 0 and self._runner.beside:
+                    progress.wait(job.rest_s)
                 answer = job.work(progress)
             except JobStopped:
                 return outcome(lambda: None)

@@ -3,9 +3,18 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING, Literal
+from functools import cached_property
+from typing import TYPE_CHECKING
 
-from phasebrush.model.state import State
+from phasebrush.core.phase import ppc
+from phasebrush.model.slow_results import Compared, Outlines, Rested, Steps
+from phasebrush.model.state import SET_NAMES, SetName, State
+
+__all__ = [
+    "SET_NAMES", "Average", "Averages", "Circles", "Compared", "Dial", "KeyValues", "Maps",
+    "Outlines", "Phasors", "Readout", "Rested", "Rows", "SetMaps", "SetName", "SetReadout",
+    "Snapshot", "Stack", "Steps", "Trace", "Traces",
+]  # fmt: skip
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -15,14 +24,11 @@ if TYPE_CHECKING:
 
     from phasebrush.core.morlet import Coefficients
     from phasebrush.core.sort_keys import Footprint
-    from phasebrush.core.steps import StepStats
     from phasebrush.core.trials import Trials
     from phasebrush.model.stale import Result
+    from phasebrush.model.state import Consistency, Letter, PowerPart, Tested
 
     Floats = NDArray[np.float64]
-
-SetName = Literal["all", "A", "B"]
-SET_NAMES: tuple[SetName, ...] = ("all", "A", "B")
 
 
 @dataclass(frozen=True, eq=False)
@@ -144,6 +150,9 @@ class SetMaps:
         Inter-trial coherence, 0 to 1.
     power_uv2, power_db : ndarray
         Total power, and the same against the baseline.
+    part_db : ndarray
+        The part of the power that is shown (total, evoked, induced), dB against the baseline
+        of that part.
     evoked_uv2 : ndarray
         Power of the mean coefficient.
     n_phase : ndarray or int
@@ -154,8 +163,18 @@ class SetMaps:
     itc: Floats
     power_uv2: Floats
     power_db: Floats
+    part_db: Floats
     evoked_uv2: Floats
     n_phase: NDArray[np.int64]
+
+    @cached_property
+    def ppc(self) -> Floats:
+        """Pairwise phase consistency; NaN where fewer than two trials have a phase."""
+        return ppc(self.itc, self.n_phase)
+
+    def locking(self, measure: Consistency) -> Floats:
+        """ITC or PPC."""
+        return self.itc if measure == "ITC" else self.ppc
 
 
 @dataclass(frozen=True, eq=False)
@@ -172,12 +191,20 @@ class Maps:
         Maps of each set that has trials.
     shown : str
         ``"all"``, ``"A"``, ``"B"`` or ``"A-B"``: what the maps can show now.
-    itc_limit, db_limit : float
-        Colour scales: ITC 0 (or minus) to this; dB minus to plus this.
-    chance_itc : float
-        ITC that chance exceeds with probability 0.05 at the n shown; NaN for A - B.
+    measure : str
+        ``"ITC"`` or ``"PPC"``: what ``locking`` is.
+    part : str
+        ``"total"``, ``"evoked"`` or ``"induced"``: the power in ``power_db``.
+    locking, power_db : ndarray, shape (frequencies, times)
+        What is drawn: of the set shown, or the difference A - B.
+    locking_limit, db_limit : float
+        Colour scales: ITC or PPC 0 (or minus) to this; dB minus to plus this.
+    chance : float
+        ITC or PPC that chance exceeds with probability 0.05 at the n shown; NaN for A - B.
     baseline_s : tuple of float
         Baseline of the dB scale.
+    notes : tuple of str
+        What must be known to read the maps, a line each.
     """
 
     freqs_hz: Floats
@@ -185,23 +212,29 @@ class Maps:
     valid: NDArray[np.bool_]
     of: Mapping[SetName, SetMaps]
     shown: str
-    itc: Floats
+    measure: Consistency
+    part: PowerPart
+    locking: Floats
     power_db: Floats
-    itc_limit: float
+    locking_limit: float
     db_limit: float
-    chance_itc: float
+    chance: float
     baseline_s: tuple[float, float]
     notes: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, eq=False)
 class Trace:
-    """Band traces of one set: the map's mean over the spot's band, at each time."""
+    """Band traces of one set: the map's mean over the spot's band, at each time.
+
+    ``locking`` is ITC or PPC, ``chance`` the value of it that chance exceeds with probability
+    0.05 at one frequency; ``power_db`` is the part of the power that is shown.
+    """
 
     n: int
-    itc: Floats
+    locking: Floats
     power_db: Floats
-    chance_itc: float
+    chance: float
 
 
 @dataclass(frozen=True, eq=False)
@@ -212,7 +245,9 @@ class Traces:
     valid: NDArray[np.bool_]
     band_hz: tuple[float, float]
     of: Mapping[SetName, Trace]
-    itc_limit: float
+    measure: Consistency
+    part: PowerPart
+    locking_limit: float
     db_limit: float
 
 
@@ -287,10 +322,14 @@ class Circles:
         Subsets whose footprint meets the spot: their numbers there are circular.
     in_baseline : tuple of str
         Subsets that were picked by power in the baseline of the dB scale.
+    footprints : mapping of str to Footprint
+        Part of the plane that each subset was picked by, where it was picked by such a part of
+        the channel under study.
     """
 
     at_spot: tuple[str, ...] = ()
     in_baseline: tuple[str, ...] = ()
+    footprints: Mapping[Letter, Footprint] = field(default_factory=dict)
 
     @property
     def words(self) -> tuple[str, ...]:
@@ -303,37 +342,6 @@ class Circles:
             who = " and ".join(self.in_baseline)
             said.append(f"{who}: picked by power in the baseline, which shifts their dB")
         return tuple(said)
-
-
-@dataclass(frozen=True, eq=False)
-class Steps:
-    """The used trials cut into equal-count steps of the sort key, lowest first.
-
-    Parameters
-    ----------
-    count : int
-        Number of steps.
-    times_s : ndarray, shape (samples,)
-        Times of the average waveforms.
-    of : tuple of StepStats
-        One a step.
-    key_title, key_unit : str
-        The key in words.
-    freq_hz, time_s : float
-        Spot's centre, where ITC, PPC and power are read.
-    valid : bool
-        Whether the wavelet there stays on the data; where it does not, ITC, PPC and power
-        must not be shown.
-    """
-
-    count: int
-    times_s: Floats
-    of: tuple[StepStats, ...]
-    key_title: str
-    key_unit: str
-    freq_hz: float
-    time_s: float
-    valid: bool = True
 
 
 @dataclass(frozen=True, eq=False)
@@ -357,6 +365,9 @@ class Snapshot:
     dial: Dial | None = None
     readout: Readout | None = None
     steps: Steps | None = None
+    outlines: Outlines | None = None
+    rested: Rested | None = None
+    compared: Mapping[Tested, Compared] = field(default_factory=dict)
     circles: Circles = field(default_factory=Circles)
     rule_checks: Mapping[str, str] = field(default_factory=dict)
     outdated: frozenset[Result] = frozenset()

@@ -26,11 +26,16 @@ class Result(StrEnum):
     SUBSETS = "subsets"
     AVERAGE = "average"
     MAPS = "maps"
+    OUTLINES = "outlines"
     TRACES = "traces"
     DIAL = "dial"
+    CIRCLES = "circles"
     READOUT = "readout"
+    RESTED = "rested"
+    COMPARED = "compared"
     STEPS = "steps"
     NAMED = "named"
+    CONSISTENCY = "consistency"
     CURSOR = "cursor"
     SHOWN = "shown"
 
@@ -67,6 +72,13 @@ FROM_FIELD: dict[str, tuple[Result, ...]] = {
     "maps_show": (Result.MAPS,),
     "cursor_s": (Result.CURSOR,),
     "shown_s": (Result.SHOWN,),
+    "consistency": (Result.MAPS, Result.CONSISTENCY),
+    "power_part": (Result.MAPS,),
+    "match": (Result.RESTED,),
+    "tested": (Result.COMPARED,),
+    "draws": (Result.COMPARED,),
+    "seed": (Result.RESTED, Result.STEPS, Result.COMPARED),
+    "pages": (),
     "desks": (),
 }
 
@@ -88,7 +100,9 @@ FROM_RESULT: dict[Result, tuple[tuple[Result, Condition], ...]] = {
         (Result.KEY, _key_at_spot),
         (Result.TRACES, _always),
         (Result.DIAL, _always),
+        (Result.CIRCLES, _always),
         (Result.READOUT, _always),
+        (Result.RESTED, _always),
         (Result.STEPS, _always),
     ),
     Result.KEY: ((Result.ROWS, _always), (Result.STEPS, _always), (Result.NAMED, _always)),
@@ -98,7 +112,14 @@ FROM_RESULT: dict[Result, tuple[tuple[Result, Condition], ...]] = {
         (Result.MAPS, _always),
         (Result.DIAL, _always),
     ),
-    Result.MAPS: ((Result.TRACES, _always), (Result.READOUT, _always)),
+    Result.MAPS: (
+        (Result.OUTLINES, _always),
+        (Result.TRACES, _always),
+        (Result.CIRCLES, _always),
+        (Result.READOUT, _always),
+        (Result.RESTED, _always),
+        (Result.COMPARED, _always),
+    ),
 }
 
 

@@ -13,10 +13,17 @@ from phasebrush.model.subset import NOBODY, Subset
 if TYPE_CHECKING:
     from phasebrush.core.trials import Cut
     from phasebrush.model.members import Members
+    from phasebrush.model.pages import Page
 
 Letter = Literal["A", "B"]
+SetName = Literal["all", "A", "B"]
 MapsShow = Literal["all", "A", "B", "A-B"]
+Consistency = Literal["ITC", "PPC"]
+PowerPart = Literal["total", "evoked", "induced"]
+Tested = Literal["ITC", "PPC", "power", "average"]
 DEFAULT_TRANSFORM, DEFAULT_KEY, DEFAULT_SPOT = TransformSettings(), SortKey(), Spot()
+FEWEST_DRAWS, MOST_DRAWS = 100, 100_000
+SET_NAMES: tuple[SetName, ...] = ("all", "A", "B")
 LETTERS: tuple[Letter, ...] = ("A", "B")
 
 
@@ -125,6 +132,20 @@ class State:
         Time cursor.
     shown_s : tuple of float or None
         Zoomed time range; None shows the whole window.
+    consistency : str
+        Measure of phase alignment that maps, traces and steps show.
+    power_part : str
+        Part of the power that map and trace show.
+    match : bool
+        Whether ITC of the larger subset is also given for the smaller one's count.
+    tested : str
+        What the test of A against B compares.
+    draws : int
+        Draws of that test.
+    seed : int
+        Seed of everything that is drawn at random.
+    pages : tuple of Page
+        Figure pages kept under a name.
     desks : tuple of Desk
         Decisions about the recordings that were open before.
     """
@@ -149,7 +170,20 @@ class State:
     maps_show: MapsShow = "A"
     cursor_s: float = 0.3
     shown_s: tuple[float, float] | None = None
+    consistency: Consistency = "ITC"
+    power_part: PowerPart = "total"
+    match: bool = False
+    tested: Tested = "ITC"
+    draws: int = 1000
+    seed: int = 1
+    pages: tuple[Page, ...] = ()
     desks: tuple[Desk, ...] = ()
+
+    def __post_init__(self) -> None:
+        if not FEWEST_DRAWS <= self.draws <= MOST_DRAWS:
+            raise ValueError(f"{self.draws} draws; give {FEWEST_DRAWS} to {MOST_DRAWS}")
+        if not 0 <= self.seed < 2**32:
+            raise ValueError(f"seed {self.seed}; give 0 to {2**32 - 1}")
 
     def subset(self, letter: Letter) -> Subset:
         """Subset A or B."""

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from phasebrush.core.fixed_response import fixed_response
 from phasebrush.core.steps import step_of_trial, steps_at
 from phasebrush.model.results import Steps
 
@@ -28,6 +29,7 @@ class StepsQuestion:
     spot: Spot
     used: NDArray[np.bool_]
     count: int
+    seed: int
 
     def same_as(self, other: StepsQuestion | None) -> bool:
         """Whether both ask for the same steps."""
@@ -36,7 +38,7 @@ class StepsQuestion:
             and self.work is other.work
             and self.key is other.key
             and self.spot == other.spot
-            and self.count == other.count
+            and (self.count, self.seed) == (other.count, other.seed)
             and np.array_equal(self.used, other.used)
         )
 
@@ -46,12 +48,9 @@ def work_out_steps(question: StepsQuestion, progress: Progress) -> Steps:
     coefficients = question.work.coefficients
     row, column = coefficients.point(question.spot.centre_hz, question.spot.centre_s)
     steps = step_of_trial(question.key.values, question.used, question.count)
-    of = steps_at(
-        coefficients.values[:, row, column],
-        question.work.voltages_uv,
-        steps,
-        key_values=question.key.values,
-    )
+    at_spot, values = coefficients.values[:, row, column], question.key.values
+    of = steps_at(at_spot, question.work.voltages_uv, steps, key_values=values, seed=question.seed)
+    fixed = fixed_response(at_spot, steps, values, key_is_angle=question.key.is_angle)
     progress.report(1.0)
     return Steps(
         count=question.count,
@@ -62,4 +61,5 @@ def work_out_steps(question: StepsQuestion, progress: Progress) -> Steps:
         freq_hz=float(coefficients.freqs_hz[row]),
         time_s=float(coefficients.times_s[column]),
         valid=bool(coefficients.valid[row, column]),
+        fixed=fixed,
     )

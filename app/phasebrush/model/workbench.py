@@ -7,12 +7,14 @@ from functools import partial
 from typing import TYPE_CHECKING
 
 from phasebrush.core.suspects import suspects
-from phasebrush.errors import InputError
 from phasebrush.model import intents, opening
 from phasebrush.model.channel_work import ChannelQuestion, ChannelWork, transform_channel
+from phasebrush.model.compare_work import CompareQuestion, compare_subsets
 from phasebrush.model.deriver import Deriver
 from phasebrush.model.history import History
 from phasebrush.model.jobs import InlineRunner, Job, JobBoard, Progress, Runner
+from phasebrush.model.rest_work import RestQuestion, work_out_rested
+from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result, stale_after, with_followers
 from phasebrush.model.state import State, changed_fields
 from phasebrush.model.step_work import StepsQuestion, work_out_steps
@@ -24,10 +26,13 @@ if TYPE_CHECKING:
     from phasebrush.core.suspects import Suspect
     from phasebrush.core.trials import Cut, Trials
     from phasebrush.model.intents import Intent
-    from phasebrush.model.results import Snapshot, Steps
+    from phasebrush.model.rest_work import RestAnswer
+    from phasebrush.model.results import Compared, Steps
     from phasebrush.recordings import Recording
 
 EVERYTHING = frozenset(Result)
+REST_S = 0.15
+"""How long the mouse has to rest before slower work begins."""
 SAVING = frozenset({"save", "aside"})
 """Jobs that go on when work is stopped: what a person asked to keep is kept."""
 
@@ -83,7 +88,9 @@ class Workbench:
         self._state = State()
         self._history = History()
         self._shelf = TrialsShelf()
-        self._deriver = Deriver(self._find_trials, self._ask_transform, self._ask_steps)
+        self._deriver = Deriver(
+            self._find_trials, self._ask_transform, self._ask_steps, self._ask_rested
+        )
         self._stale: frozenset[Result] = EVERYTHING
         self._sources: frozenset[str] | None = None
         self._gesture = 0
@@ -119,7 +126,7 @@ class Workbench:
             self._close_gesture()
             self._gesture, self._origin = intent.gesture, self._state
         origin = self._origin if intent.gesture else self._state
-        wished = intent.change(origin, self.snapshot)
+        wished = intent.change(origin, self._seen())
         if wished == self._state:
             return
         if not self._gesture_kept:
@@ -128,11 +135,22 @@ class Workbench:
             self.listeners.changed()
         self._swap(wished, intent.source)
 
+    def _seen(self) -> Snapshot:
+        """What an intent may go by: nothing of trials that the record has left already."""
+        snapshot, trials = self.snapshot, self._find_trials(self._state)
+        if trials is snapshot.trials:
+            return snapshot
+        before = snapshot.trials
+        if trials is not None and before is not None and before.same_events(trials):
+            return replace(snapshot, trials=trials)
+        return Snapshot(state=self._state, trials=trials)
+
     def _do_fleeting(self, intent: Intent) -> None:
         """Cursor, zoom: not in the undo list, and no end to a drag that is under way."""
-        wished = intent.change(self._state, self.snapshot)
+        seen = self._seen()
+        wished = intent.change(self._state, seen)
         if self._gesture:
-            self._origin = intent.change(self._origin, self.snapshot)
+            self._origin = intent.change(self._origin, seen)
         if wished != self._state:
             self._swap(wished, intent.source)
 
@@ -151,7 +169,7 @@ class Workbench:
         if self._gesture_kept and self._state == self._origin:
             self._history.forget_last()
         self._gesture, self._gesture_kept = 0, False
-        self._mark({Result.AVERAGE, Result.MAPS, Result.STEPS}, "")
+        self._mark({Result.AVERAGE, Result.MAPS, Result.RESTED, Result.STEPS}, "")
 
     def abandon_gesture(self) -> None:
         """The drag was called off: back to where it began."""
@@ -194,6 +212,9 @@ class Workbench:
         stale, self._stale = self._stale, frozenset()
         sources, self._sources = self._sources or frozenset(), None
         before = self.snapshot.outdated
+        if self._gesture and Result.RESTED in stale:
+            self.jobs.drop("rest")
+            self._deriver.forget_rested()
         self._deriver.run(self._state, stale, keep_scales=self._gesture != 0)
         if Result.TRIALS in stale and self._state.cut and self.snapshot.trials is None:
             # Undo reached a recording whose trials had to make room: read them again.
@@ -376,15 +397,52 @@ class Workbench:
         )
 
     def _steps_failed(self, question: StepsQuestion, error: Exception) -> None:
-        if isinstance(error, InputError):
-            self._deriver.no_steps(question)
-        else:
-            self._deriver.forget_steps()
+        self._deriver.no_steps(question)
         self._failed(error)
 
     def _steps_done(self, question: StepsQuestion, steps: Steps) -> None:
         if self._deriver.take_steps(question, steps):
             self._mark({Result.STEPS}, "")
+
+    def _ask_rested(self, question: RestQuestion) -> None:
+        self.jobs.start(
+            Job(
+                "rest",
+                "bands and checks",
+                partial(work_out_rested, question, before=self._deriver.before_rest()),
+                partial(self._rest_done, question),
+                partial(self._rest_failed, question),
+                rest_s=REST_S,
+            )
+        )
+
+    def _rest_done(self, question: RestQuestion, answer: RestAnswer) -> None:
+        new = self._deriver.take_rested(question, answer)
+        if new:
+            self._mark(new, "")
+
+    def _rest_failed(self, question: RestQuestion, error: Exception) -> None:
+        self._deriver.no_rested(question)
+        self._failed(error)
+
+    def compare(self) -> None:
+        """Test A against B as the record says, in a job of its own."""
+        question = self._deriver.compare_question(self._state)
+        if question is None:
+            return
+        self.jobs.start(
+            Job(
+                "compare",
+                f"testing A against B: {question.tested}",
+                partial(compare_subsets, question),
+                partial(self._compare_done, question),
+                self._failed,
+            )
+        )
+
+    def _compare_done(self, question: CompareQuestion, compared: Compared) -> None:
+        if self._deriver.take_compared(question, compared):
+            self._mark({Result.COMPARED}, "")
 
     def want_steps(self, *, wanted: bool) -> None:
         """Work out the steps of the sort key only while somebody looks at them."""
@@ -393,6 +451,14 @@ class Workbench:
             if not wanted:
                 self.jobs.drop("steps")
             self._mark({Result.STEPS}, "")
+
+    def want_rested(self, *, wanted: bool) -> None:
+        """Work out bands and checks when the mouse rests: windows and pages want them."""
+        if wanted != self._deriver.wants_rested:
+            self._deriver.wants_rested = wanted
+            if not wanted:
+                self.jobs.drop("rest")
+            self._mark({Result.RESTED}, "")
 
     def suspects(self) -> tuple[Suspect, ...]:
         """Used trials of the channel that look odd; empty while nothing is transformed."""
@@ -407,13 +473,13 @@ class Workbench:
         if self.jobs.running:
             self.jobs.drop_all(but=SAVING)
             self._deriver.forget_question()
-            self._deriver.forget_steps()
+            self._deriver.forget_slow()
             self.listeners.message("stopped; what is drawn dimmed belongs to the earlier choice")
 
     def compute_again(self) -> None:
         """Ask again for what was stopped or failed."""
         self._deriver.forget_question()
-        self._deriver.forget_steps()
+        self._deriver.forget_slow()
         self._mark({Result.TRIALS}, "")
 
     def _transform_failed(self, error: Exception) -> None:

@@ -17,6 +17,7 @@ from phasebrush.core.trials import Cut
 from phasebrush.errors import InputError
 from phasebrush.model.careful_json import parsed, read_text
 from phasebrush.model.members import Members
+from phasebrush.model.pages import Page
 from phasebrush.model.plain_records import MisfitError, Plainer
 from phasebrush.model.recording_hash import Content
 from phasebrush.model.state import State
@@ -70,8 +71,8 @@ class Document:
 
 _PLAINER = Plainer(
     {
-        "Content": Content, "Cut": Cut, "Members": Members, "Rule": Rule, "SortKey": SortKey,
-        "Spot": Spot, "TransformSettings": TransformSettings,
+        "Content": Content, "Cut": Cut, "Members": Members, "Page": Page, "Rule": Rule,
+        "SortKey": SortKey, "Spot": Spot, "TransformSettings": TransformSettings,
     },
     apart=frozenset((State, name) for name in SUBSETS),
     renamed={(Members, "who"): "trials"},

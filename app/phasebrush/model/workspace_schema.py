@@ -12,7 +12,7 @@ if TYPE_CHECKING:
 Document = dict[str, Any]
 
 FORMAT: Literal["phasebrush workspace"] = "phasebrush workspace"
-SCHEMA = 2
+SCHEMA = 3
 
 
 class NewerSchemaError(ValueError):
@@ -67,10 +67,25 @@ def _from_1(document: Document) -> Document:
     }
 
 
-def _refuse(group: Document, names: tuple[str, ...], where: str) -> None:
+def _from_2(document: Document) -> Document:
+    """Schema 2 had no measure, part of the power, test, seed or pages."""
+    state = document.get("state")
+    if not isinstance(state, dict):
+        raise MisfitError("state", "is missing or is not a group of named fields")
+    added = {
+        "consistency": "ITC", "power_part": "total", "match": False, "tested": "ITC",
+        "draws": 1000, "seed": 1, "pages": [],
+    }  # fmt: skip
+    _refuse(state, tuple(added), "state.", schema=2)
+    return {**document, "schema": 3, "state": {**state, **added}}
+
+
+def _refuse(group: Document, names: tuple[str, ...], where: str, *, schema: int = 1) -> None:
     for name in names:
         if name in group:
-            raise MisfitError(f"{where}{name}", "is a field that its schema 1 does not have")
+            raise MisfitError(
+                f"{where}{name}", f"is a field that its schema {schema} does not have"
+            )
 
 
-_STEPS: dict[int, Callable[[Document], Document]] = {1: _from_1}
+_STEPS: dict[int, Callable[[Document], Document]] = {1: _from_1, 2: _from_2}

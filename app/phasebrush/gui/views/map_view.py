@@ -280,11 +280,11 @@ class ItcMap(MapView):
 
     def values(self, maps: Maps) -> NDArray[np.float64]:
         """ITC of the set shown."""
-        return maps.itc
+        return maps.locking
 
     def scale(self, maps: Maps) -> tuple[float, float]:
         """From 0, or symmetric for a difference."""
-        return (-maps.itc_limit if maps.shown == "A-B" else 0.0), maps.itc_limit
+        return (-maps.locking_limit if maps.shown == "A-B" else 0.0), maps.locking_limit
 
     def table(self, maps: Maps) -> NDArray[np.uint8]:
         """Ink, or signed for a difference."""
@@ -292,7 +292,7 @@ class ItcMap(MapView):
 
     def chance(self, maps: Maps) -> float:
         """ITC that chance exceeds with probability 0.05 at the n shown."""
-        return maps.chance_itc
+        return maps.chance
 
     def words(self, value: float) -> str:
         """ITC in words."""

@@ -114,19 +114,19 @@ class ItcTrace(TraceView):
 
     def values(self, trace: Trace) -> NDArray[np.float64]:
         """ITC."""
-        return trace.itc
+        return trace.locking
 
     def set_scale(self, snapshot: Snapshot) -> None:
         """From 0 to the largest ITC; move the chance levels."""
         traces = snapshot.traces
         if traces is not None:
-            self.plot.set_value_range(0.0, traces.itc_limit * 1.04)
+            self.plot.set_value_range(0.0, traces.locking_limit * 1.04)
         of = traces.of if traces is not None else {}
         drawn = next((of[name] for name in ("A", "B", "all") if name in of), None)
         self.chances.setVisible(drawn is not None)
         if drawn is not None:
-            levels = {name: trace.chance_itc for name, trace in of.items()}
-            self.chances.show_levels(levels, f"chance 5 %, n {drawn.n}", drawn.chance_itc)
+            levels = {name: trace.chance for name, trace in of.items()}
+            self.chances.show_levels(levels, f"chance 5 %, n {drawn.n}", drawn.chance)
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""

@@ -35,7 +35,9 @@ from phasebrush.model.intents.looking import (
     move_spot,
     order_by_label,
     show_channel,
+    show_consistency,
     show_in_maps,
+    show_power_part,
     smooth,
     sort_by,
     transform_with,
@@ -46,15 +48,24 @@ from phasebrush.model.intents.opening import (
     shelve,
     take_trials,
 )
+from phasebrush.model.intents.testing import (
+    choose_test,
+    draw_times,
+    draw_with_seed,
+    with_matched_counts,
+)
 
 __all__ = [
     "How",
     "Intent",
     "apply_rule",
     "brush_rows",
+    "choose_test",
     "clear",
     "combined",
     "cut_into_steps",
+    "draw_times",
+    "draw_with_seed",
     "exclude",
     "forget_named",
     "keep_as",
@@ -74,7 +85,9 @@ __all__ = [
     "rule_of",
     "shelve",
     "show_channel",
+    "show_consistency",
     "show_in_maps",
+    "show_power_part",
     "smooth",
     "sort_by",
     "swap_subsets",
@@ -82,6 +95,7 @@ __all__ = [
     "transform_with",
     "turn_order",
     "used_trials",
+    "with_matched_counts",
     "write_note",
     "zoom_time",
 ]

@@ -12,7 +12,7 @@ if TYPE_CHECKING:
     from phasebrush.core.spot import Spot
     from phasebrush.core.transform_settings import TransformSettings
     from phasebrush.model.results import Snapshot
-    from phasebrush.model.state import MapsShow, State
+    from phasebrush.model.state import Consistency, MapsShow, PowerPart, State
 
 
 def sort_by(key: SortKey) -> Intent:
@@ -82,6 +82,16 @@ def show_in_maps(which: MapsShow, *, fleeting: bool = False) -> Intent:
     """Draw all trials, A, B or A - B in the maps."""
     name = f"maps show {which.replace('-', ' − ')}"
     return Intent(name, lambda state, _: replace(state, maps_show=which), fleeting=fleeting)
+
+
+def show_consistency(measure: Consistency) -> Intent:
+    """Show ITC or PPC wherever phase alignment is shown."""
+    return Intent(f"show {measure}", lambda state, _: replace(state, consistency=measure))
+
+
+def show_power_part(part: PowerPart) -> Intent:
+    """Show total, evoked or induced power."""
+    return Intent(f"show {part} power", lambda state, _: replace(state, power_part=part))
 
 
 def move_cursor(time_s: float, *, source: str = "") -> Intent:
