@@ -90,7 +90,7 @@ def test_other_settings_are_taken_over_in_one_undo_step(window):
     settle(window)
     assert window.workbench.state.transform.count == 17
     assert window.workbench.state.baseline_s == (-0.5, -0.2)
-    assert window.workbench.snapshot.maps.itc.shape[0] == 17
+    assert window.workbench.snapshot.maps.locking.shape[0] == 17
     key(window, Qt.Key.Key_Z, Qt.KeyboardModifier.ControlModifier)
     settle(window)
     assert window.workbench.state == before

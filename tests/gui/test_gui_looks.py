@@ -107,8 +107,8 @@ def test_a_colour_is_the_value_it_stands_for(window):
             y = round((place.y() - area.top()) * ratio)
             if not (2 <= x < picture.shape[1] - 2 and 2 <= y < picture.shape[0] - 2):
                 continue
-            around = maps.itc[max(0, row - 1) : row + 2, column - 1 : column + 2]
-            index = np.rint(np.array([around.min(), around.max()]) / maps.itc_limit * 255)
+            around = maps.locking[max(0, row - 1) : row + 2, column - 1 : column + 2]
+            index = np.rint(np.array([around.min(), around.max()]) / maps.locking_limit * 255)
             low, high = np.clip(index, 0, 255).astype(int)
             inks = {(int(r) << 16) | (int(g) << 8) | int(b) for r, g, b in table[low : high + 1]}
             if picture[y, x] in {number(LIGHT.text), number(LIGHT.panel), number(LIGHT.focus)}:

@@ -59,7 +59,7 @@ def test_maps_and_average_on_screen_are_what_measure_writes(sample_window, lette
     maps = window.workbench.snapshot.maps
     assert int(expected["n_trials"]) == maps.of["all" if part is None else "A"].n
     np.testing.assert_allclose(maps.times_s, expected["times_s"])
-    step = maps.itc_limit / 255
+    step = maps.locking_limit / 255
     off = np.abs(drawn_values(views.itc_map) - expected["itc"])[valid]
     assert off.max() <= 0.51 * step
     inside = valid & (np.abs(expected["power_db"]) <= maps.db_limit)
@@ -94,7 +94,7 @@ def test_after_a_brush_the_picture_is_that_of_its_trials(window):
     by_hand = np.abs(np.mean(chosen_values / np.abs(chosen_values), axis=trial_axis))
     itc = drawn_values(window.docks.views.itc_map)
     assert itc.shape == by_hand.shape
-    assert np.abs(itc - by_hand).max() <= 0.51 * snapshot.maps.itc_limit / 255 + 1e-6
+    assert np.abs(itc - by_hand).max() <= 0.51 * snapshot.maps.locking_limit / 255 + 1e-6
     trials = snapshot.trials
     mean = trials.channel_uv("Oz")[chosen][:, trials.shown].mean(axis=0, dtype=np.float64)
     _x, y = window.bench.average.lines["A"].points

@@ -148,7 +148,7 @@ def test_every_colour_bar_says_its_unit_and_the_chance_level(window):
     views = window.docks.views
     maps = window.workbench.snapshot.maps
     assert re.match(r"ITC from 0 to [\d.]+", views.itc_map.bar.toolTip())
-    assert f"{maps.chance_itc:.3f}" in views.itc_map.bar.toolTip()
+    assert f"{maps.chance:.3f}" in views.itc_map.bar.toolTip()
     assert re.match(r"dB from [-−][\d.]+ to [\d.]+", views.power_map.bar.toolTip())
     assert "chance" not in views.power_map.bar.toolTip()
     pick_both(window)

@@ -47,7 +47,10 @@ class Carriers:
     share : float
         Share to leave out until ITC is within chance; 0 where it is from the start, NaN where
         it never is.
-    even_share : tuple of float
+    sharpness : float
+        Second cosine moment: mean of cos 2(phi - mean phase) (Mardia & Jupp 2000, Directional
+        Statistics, section 2.3; from memory).
+    even_sharpness : tuple of float
         The same for evenly aligned phases: 2.5th percentile, median, 97.5th percentile.
     draws, seed : int
         Of the random phases.
@@ -64,7 +67,8 @@ class Carriers:
     even_high: Floats
     n: int
     share: float
-    even_share: tuple[float, float, float]
+    sharpness: float
+    even_sharpness: tuple[float, float, float]
     draws: int
     seed: int
 
@@ -85,17 +89,21 @@ class Carriers:
                 f"ITC stays beyond chance without the most aligned {MOST_LEFT_OUT:.0%} of the "
                 "trials: all trials carry it."
             )
-        low, middle, high = (f"{100 * share:.0f}" for share in self.even_share)
+        low, _middle, high = self.even_sharpness
+        found = f"second cosine moment {self.sharpness:.2f}, evenly aligned {low:.2f} to {high:.2f}"
         start = (
             f"Without the {100 * self.share:.0f} % of the trials that are most aligned, ITC is "
-            f"within chance; of evenly aligned trials {middle} % ({low} to {high} %) would have "
-            "to be left out: "
+            "within chance. "
         )
-        if self.share < self.even_share[0]:
-            return start + "a minority of the trials carries it."
-        if self.share > self.even_share[2]:
-            return start + "it is spread over more trials than even alignment gives."
-        return start + "it is spread over the trials."
+        if self.sharpness > high:
+            return start + (
+                f"The phases are more sharply peaked than even alignment gives ({found}): a "
+                "minority of sharply aligned trials among others would look like this."
+            )
+        return start + (
+            f"The phases are no more sharply peaked than even alignment gives ({found}): no "
+            "minority stands out."
+        )
 
 
 def carriers(
@@ -110,8 +118,10 @@ def carriers(
     The alignment of a trial is cos(phi_k - mean phase of the other trials). To hold against:
     the same done to uniformly random phases, and to phases from a von Mises distribution whose
     mean resultant length is that of the trials (square root of PPC, which has no bias by
-    count). Where a minority of strong trials carries the alignment, ITC falls more steeply
-    than that. (A description, not a test: common practice, no source.)
+    count). The curve says how many trials hold the alignment; whether they are a minority of
+    sharply aligned ones says the second cosine moment, which is near the share of such trials
+    and much smaller for even alignment. (A description, not a test: common practice, no
+    source.)
 
     Parameters
     ----------
@@ -140,11 +150,9 @@ def carriers(
     chance = np.asarray(chance_itc(n - counts), np.float64).reshape(-1)
     kappa = _concentration(float(itc[0]), n)
     rng = [np.random.default_rng([seed, stream]) for stream in (0, 1)]
-    random = _drawn(lambda size: rng[0].uniform(-np.pi, np.pi, size), n, draws, counts)
-    even = _drawn(lambda size: rng[1].vonmises(0.0, kappa, size), n, draws, counts)
-    even_shares = _share(even, chance, counts, n)
-    never = np.nan_to_num(even_shares, nan=MOST_LEFT_OUT)
-    low, middle, high = np.percentile(never, (BAND_PERCENT[0], 50.0, BAND_PERCENT[1]))
+    random, _ = _drawn(lambda size: rng[0].uniform(-np.pi, np.pi, size), n, draws, counts)
+    even, peaks = _drawn(lambda size: rng[1].vonmises(0.0, kappa, size), n, draws, counts)
+    low, middle, high = np.percentile(peaks, (BAND_PERCENT[0], 50.0, BAND_PERCENT[1]))
     random_low, random_high = np.percentile(random, BAND_PERCENT, axis=0)
     even_low, even_high = np.percentile(even, BAND_PERCENT, axis=0)
     return Carriers(
@@ -159,7 +167,8 @@ def carriers(
         even_high=even_high,
         n=n,
         share=float(_share(itc[None], chance, counts, n)[0]),
-        even_share=(float(low), float(middle), float(high)),
+        sharpness=float(second_moment(units[None])[0]) if n else float("nan"),
+        even_sharpness=(float(low), float(middle), float(high)),
         draws=draws,
         seed=seed,
     )
@@ -191,18 +200,25 @@ def fallen(units: Phasors, counts: NDArray[np.intp]) -> Floats:
     return np.asarray(itc_from_sums(left[:, counts], (n - counts)[None]))
 
 
+def second_moment(units: Phasors) -> Floats:
+    """Mean of cos 2(phi - mean phase) of each row, shape (rows,)."""
+    turned = units * np.exp(-1j * np.angle(units.sum(axis=1, keepdims=True)))
+    return np.asarray(np.square(turned).real.mean(axis=1))
+
+
 def _drawn(
     phases: Callable[[tuple[int, int]], Floats], n: int, draws: int, counts: NDArray[np.intp]
-) -> Floats:
-    """Curves of many draws, shape (draws, P), in blocks that keep memory small."""
+) -> tuple[Floats, Floats]:
+    """Curves and second moments of many draws, in blocks that keep memory small."""
     if not n:
-        return np.full((draws, counts.size), np.nan)
+        return np.full((draws, counts.size), np.nan), np.full(draws, np.nan)
     step = max(1, PHASES_AT_ONCE // n)
-    blocks = [
-        fallen(np.exp(1j * phases((min(step, draws - first), n))), counts)
-        for first in range(0, draws, step)
-    ]
-    return np.concatenate(blocks)
+    curves, moments = [], []
+    for first in range(0, draws, step):
+        units = np.exp(1j * phases((min(step, draws - first), n)))
+        curves.append(fallen(units, counts))
+        moments.append(second_moment(units))
+    return np.concatenate(curves), np.concatenate(moments)
 
 
 def _share(curves: Floats, chance: Floats, counts: NDArray[np.intp], n: int) -> Floats:

@@ -37,6 +37,8 @@ FEWEST_DRAWS = 19
 PRODUCT_OF_A_BLOCK = 3e8
 """Multiplications between two looks at whether to stop: some hundredths of a second."""
 POINTS_OF_A_LABELLING = 300_000
+BYTES_FOR_A_DIFFERENCE = 160
+"""For one point of one draw: some ten passing copies, a quarter of the memory at most."""
 FEWEST_IN_A_TURN = 100
 """Draws whose mean and standard deviation are good enough for all."""
 
@@ -255,7 +257,7 @@ def _compare(task: _Task, mask_a: Mask, mask_b: Mask, how: Relabelling) -> Compa
         def tell(part: float, before: int = first, count: int = count) -> None:
             how.report((before + part * count) / draws)
 
-        z, found = _draw(task, weights, mask_a[trials], trials, (n_a, n_b), tell, how.stopped)
+        z, found = _draw(task, weights, mask_a[trials], trials, (n_a, n_b), tell, how)
         if first == 0:
             observed, mean = found, z.mean(axis=0, dtype=np.float64)
         z -= mean.astype(np.float32)
@@ -263,6 +265,7 @@ def _compare(task: _Task, mask_a: Mask, mask_b: Mask, how: Relabelling) -> Compa
             sd = _spread(z, mean, task.valid.ravel())
         z /= sd.astype(np.float32)
         heaviest[first : first + count] = _heaviest(task, z, tell, how.stopped)
+        del z  # before the next turn's
     shape = (task.n_times,) if task.freqs_hz is None else (task.n_freqs, task.n_times)
     z_observed = ((observed - mean) / sd).reshape(shape)
     labels, clusters = find_clusters(z_observed, heaviest, task.times_s, task.freqs_hz)
@@ -288,13 +291,13 @@ def _draw(
     trials: NDArray[np.intp],
     counts: tuple[int, int],
     tell: Callable[[float], None],
-    stopped: Callable[[], bool],
+    how: Relabelling,
 ) -> tuple[Singles, Floats]:
     """Differences of all draws, shape (draws, points), and the one that was observed."""
     drawn = np.empty((len(weights), task.n_freqs * task.n_times), np.float32)
     observed = np.empty(drawn.shape[1])
-    for rows in _blocks(task, weights.size):
-        if stopped():
+    for rows in _blocks(task, len(weights), weights.size, how.memory_mb):
+        if how.stopped():
             raise JobStopped
         points = slice(rows.start * task.n_times, rows.stop * task.n_times)
         columns = task.columns(trials, rows.start, rows.stop)
@@ -309,9 +312,11 @@ def _draw(
     return drawn, observed
 
 
-def _blocks(task: _Task, n_weights: int) -> Iterator[slice]:
+def _blocks(task: _Task, draws: int, n_weights: int, memory_mb: float) -> Iterator[slice]:
     """Whole frequencies: the baseline of a power runs along the time axis."""
-    step = max(1, int(PRODUCT_OF_A_BLOCK / (n_weights * task.n_times)))
+    by_work = int(PRODUCT_OF_A_BLOCK / (n_weights * task.n_times))
+    by_memory = int(memory_mb * 1e6 / BYTES_FOR_A_DIFFERENCE / (draws * task.n_times))
+    step = max(1, min(by_work, by_memory))
     for first in range(0, task.n_freqs, step):
         yield slice(first, min(first + step, task.n_freqs))
 
