@@ -20,7 +20,7 @@ from phasebrush.gui.views.average_view import AverageView
 from phasebrush.gui.views.channel_list import ChannelList
 from phasebrush.gui.views.head_map import HeadMap
 from phasebrush.gui.views.key_strip import KeyStrip
-from phasebrush.gui.views.map_view import ItcMap, PowerMap
+from phasebrush.gui.views.maps import LockingMap, PowerMap
 from phasebrush.gui.views.order_panel import OrderPanel
 from phasebrush.gui.views.phase_dial import PhaseDial
 from phasebrush.gui.views.pick_corner import PickCorner
@@ -28,7 +28,7 @@ from phasebrush.gui.views.readout import ReadoutView
 from phasebrush.gui.views.recordings_list import RecordingsList
 from phasebrush.gui.views.stack_view import StackView
 from phasebrush.gui.views.subset_cards import SubsetCards
-from phasebrush.gui.views.trace_view import ItcTrace, PowerTrace
+from phasebrush.gui.views.trace_view import LockingTrace, PowerTrace
 from phasebrush.look.tokens import DARK, LIGHT
 from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result
@@ -36,7 +36,7 @@ from phasebrush.model.workbench import Workbench
 
 REPAINTS = 2000
 VIEWS = (
-    AverageView, StackView, KeyStrip, PickCorner, ItcMap, PowerMap, ItcTrace, PowerTrace,
+    AverageView, StackView, KeyStrip, PickCorner, LockingMap, PowerMap, LockingTrace, PowerTrace,
     PhaseDial, ReadoutView, HeadMap, ChannelList, OrderPanel, SubsetCards, RecordingsList,
 )  # fmt: skip
 

@@ -79,6 +79,8 @@ LAYOUT: tuple[Tool | str, ...] = (
     Tool("show_a", "Maps show A", "Maps show A", ("2",)),
     Tool("show_b", "Maps show B", "Maps show B", ("3",)),
     Tool("show_difference", "Maps show A − B", "Maps show A − B", ("4",)),
+    Tool("measure", "ITC or PPC", "Show ITC or PPC", ("M",)),
+    Tool("part", "Part of the power", "Show total, evoked or induced power", ("P",)),
     Tool("whole", "Whole window", "Show the whole time window", ("0",)),
     Tool("earlier_channel", "Earlier channel", "Earlier channel", (",",)),
     Tool("later_channel", "Later channel", "Later channel", (".",)),

@@ -40,6 +40,7 @@ class ColourBar(QWidget):
         self._table: NDArray[np.uint8] = np.zeros((256, 3), dtype=np.uint8)
         self._chance = float("nan")
         self._mark: int | None = None
+        self._said = self._scale_words = ""
         self._look = LIGHT
         self.setFixedWidth(WIDTH)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
@@ -67,8 +68,18 @@ class ColourBar(QWidget):
             return
         self._range, self._table, self._look, self._mark = (low, high), table, look, mark
         words = "" if mark is None else f"; chance (5 %) at {chance:.3f}"
-        self.setToolTip(f"{self._unit} from {low:g} to {high:g}{words}")
+        self._scale_words = f"{self._unit} from {low:g} to {high:g}{words}"
+        self._tell()
         self.update()
+
+    def say(self, words: str) -> None:
+        """A further line of the tooltip: what is outlined on the map."""
+        if words != self._said:
+            self._said = words
+            self._tell()
+
+    def _tell(self) -> None:
+        self.setToolTip("\n".join(filter(None, (self._scale_words, self._said))))
 
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Draw the bar, its ticks and the unit."""

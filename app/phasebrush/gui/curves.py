@@ -22,7 +22,7 @@ if TYPE_CHECKING:
 
 Floats = NDArray[np.float64]
 LAYER = {"all": 5, "B": 6, "A": 7}
-IN_A, IN_B = 1, 2
+IN_A, IN_B, IN_ALL = 1, 2, 4
 DASH = (7.0, 11.0)
 OPACITY = 56
 
@@ -137,7 +137,7 @@ class Line(pg.GraphicsObject):  # type: ignore[misc]
 
 
 class Bands(PixelImage):
-    """The bands of A and B as one picture at the plot area's own pixels.
+    """The bands of A and B, or of all, as one picture at the plot area's own pixels.
 
     A filled polygon of a noisy band takes about 9 ms to paint, this well under one.
     """
@@ -148,11 +148,12 @@ class Bands(PixelImage):
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
-        table = np.zeros((4, 4), dtype=np.uint8)
+        table = np.zeros((5, 4), dtype=np.uint8)
         for number, colour in ((IN_A, look.subset_a), (IN_B, look.subset_b)):
             table[number] = (*rgb(colour), OPACITY)
         both = mixed(look.subset_a, look.subset_b, 0.5)
         table[IN_A | IN_B] = (*rgb(both), round(1.6 * OPACITY))
+        table[IN_ALL] = (*rgb(look.muted), OPACITY)
         self._colours = packed(table)
 
     def set_bands(self, edges: dict[int, tuple[Floats, Floats]], x: Floats, area: PlotArea) -> None:
@@ -161,7 +162,8 @@ class Bands(PixelImage):
         Parameters
         ----------
         edges : dict
-            `IN_A` or `IN_B` to (lower, upper), each of the length of ``x``.
+            `IN_A`, `IN_B` or `IN_ALL` to (lower, upper), each of the length of ``x``; NaN for
+            no band.
         x : ndarray
             Positions of the edges.
         area : PlotArea
@@ -176,12 +178,13 @@ class Bands(PixelImage):
         picture = np.zeros((area.height, area.width), dtype=np.uint8)
         scale = area.height / (high - low)
         for number, (lower, upper) in edges.items():
-            ends = [
-                np.clip((np.interp(columns, x, edge) - low) * scale, -1, area.height)
-                for edge in (lower, upper)
-            ]
-            first, last = (np.floor(end).astype(np.int16) for end in ends)
-            last[(columns < x[0]) | (columns > x[-1])] = -2
+            ends = [(np.interp(columns, x, edge) - low) * scale for edge in (lower, upper)]
+            missing = np.isnan(ends[0]) | np.isnan(ends[1]) | (columns < x[0]) | (columns > x[-1])
+            first, last = (
+                np.floor(np.clip(np.where(missing, -2.0, end), -2, area.height)).astype(np.int16)
+                for end in ends
+            )
+            first[missing] = 0  # and the last is -2: nothing lies between
             picture |= ((rows >= first) & (rows <= last)).view(np.uint8) * np.uint8(number)
         self.show_cells(picture, self._colours, QRectF(left, low, right - left, high - low))
 

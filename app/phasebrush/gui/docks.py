@@ -10,20 +10,21 @@ from PySide6.QtWidgets import QHBoxLayout, QMainWindow, QMenu, QToolButton, QWid
 
 from phasebrush.gui.drawer import Drawer
 from phasebrush.gui.panel import PanelDock
+from phasebrush.gui.title_switch import TitleSwitch
 from phasebrush.gui.views.channel_list import ChannelList
 from phasebrush.gui.views.head_map import HeadMap
-from phasebrush.gui.views.map_view import ItcMap, PowerMap
+from phasebrush.gui.views.maps import PART_TIPS, TIPS, LockingMap, PowerMap
 from phasebrush.gui.views.order_panel import OrderPanel
 from phasebrush.gui.views.phase_dial import PhaseDial
 from phasebrush.gui.views.readout import ReadoutView
 from phasebrush.gui.views.recordings_list import RecordingsList
 from phasebrush.gui.views.subset_cards import SubsetCards
-from phasebrush.gui.views.trace_view import ItcTrace, PowerTrace
+from phasebrush.gui.views.trace_view import LockingTrace, PowerTrace
 
 if TYPE_CHECKING:
     from phasebrush.gui.view import View
     from phasebrush.model.results import Snapshot
-    from phasebrush.model.state import MapsShow
+    from phasebrush.model.state import Consistency, MapsShow, PowerPart
 
 LEFT = Qt.DockWidgetArea.LeftDockWidgetArea
 RIGHT = Qt.DockWidgetArea.RightDockWidgetArea
@@ -33,6 +34,15 @@ MAPS_SHOW: tuple[tuple[MapsShow, str, str], ...] = (
     ("A", "A", "Maps show A (2)"),
     ("B", "B", "Maps show B (3)"),
     ("A-B", "A−B", "Maps show A − B (4)"),
+)
+MEASURES: tuple[tuple[Consistency, str, str], ...] = (
+    ("ITC", "ITC", f"{TIPS['ITC']} (M)"),
+    ("PPC", "PPC", f"{TIPS['PPC']} (M)"),
+)
+PARTS: tuple[tuple[PowerPart, str, str], ...] = (
+    ("total", "total", f"{PART_TIPS['total']} (P)"),
+    ("evoked", "evoked", f"{PART_TIPS['evoked']} (P)"),
+    ("induced", "induced", f"{PART_TIPS['induced']} (P)"),
 )
 SET_WORDS = {"all": "all trials", "A": "A", "B": "B", "A-B": "A − B"}
 
@@ -46,8 +56,8 @@ class Views:
     channels: ChannelList
     order: OrderPanel
     subsets: SubsetCards
-    itc_map: ItcMap
-    itc_trace: ItcTrace
+    itc_map: LockingMap
+    itc_trace: LockingTrace
     power_map: PowerMap
     power_trace: PowerTrace
     dial: PhaseDial
@@ -69,8 +79,8 @@ class Docks:
     def __init__(self, window: QMainWindow) -> None:
         self._window = window
         self.views = Views(
-            RecordingsList(), HeadMap(), ChannelList(), OrderPanel(), SubsetCards(), ItcMap(),
-            ItcTrace(), PowerMap(), PowerTrace(), PhaseDial(), ReadoutView(),
+            RecordingsList(), HeadMap(), ChannelList(), OrderPanel(), SubsetCards(), LockingMap(),
+            LockingTrace(), PowerMap(), PowerTrace(), PhaseDial(), ReadoutView(),
         )  # fmt: skip
         views = self.views
         head = QWidget()
@@ -92,7 +102,15 @@ class Docks:
         self.drawer.title_line.add(self.drawer_content.tabs)
         # The left column keeps its height: its fields cannot be pressed together.
         window.setCorner(Qt.Corner.BottomLeftCorner, LEFT)
-        self.map_buttons = {which: self._map_button(words, tip) for which, words, tip in MAPS_SHOW}
+        self.measure = TitleSwitch(self.itc.title_line, MEASURES)
+        self.itc.title_line.add_gap()
+        self.maps_show = TitleSwitch(self.itc.title_line, MAPS_SHOW)
+        self.part = TitleSwitch(self.power.title_line, PARTS)
+
+    @property
+    def map_buttons(self) -> dict[MapsShow, QToolButton]:
+        """Buttons that choose what the maps show."""
+        return self.maps_show.buttons
 
     @property
     def docks(self) -> tuple[PanelDock, ...]:
@@ -108,11 +126,6 @@ class Docks:
             dock.body.box.addWidget(part, 3 - number)
         self._window.addDockWidget(area, dock)
         return dock
-
-    def _map_button(self, words: str, tip: str) -> QToolButton:
-        button = self.itc.title_line.add_tool(words, tip, checkable=True)
-        button.setFocusPolicy(Qt.FocusPolicy.TabFocus)
-        return button
 
     def arrange(self) -> None:
         """The arrangement of a first start; brings back what was closed."""
@@ -186,12 +199,15 @@ class Docks:
             words = SET_WORDS[maps.shown]
             n = f", n {maps.of[maps.shown].n}" if maps.shown in maps.of else ""  # type: ignore[index]
             start, end = maps.baseline_s
-            self.itc.title_line.set_title(f"ITC · {words}{n}")
+            self.itc.title_line.set_title(f"{maps.measure} · {words}{n}")
+            part = "Power" if maps.part == "total" else f"{maps.part.capitalize()} power"
             self.power.title_line.set_title(
-                f"Power · {words}{n}, dB re baseline {seconds(start)[:-2]} to {seconds(end)}"
+                f"{part} · {words}{n}, dB re baseline {seconds(start)[:-2]} to {seconds(end)}"
             )
-            for which, button in self.map_buttons.items():
-                button.setChecked(which == state.maps_show)
+            self.measure.show_value(state.consistency)
+            self.part.show_value(state.power_part)
+            self.maps_show.show_value(state.maps_show)
+            for which, button in self.maps_show.buttons.items():
                 possible = which == "all" or all(x in maps.of for x in which.split("-"))
                 button.setEnabled(possible)
         if dial is not None:

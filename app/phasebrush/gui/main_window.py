@@ -50,7 +50,7 @@ if TYPE_CHECKING:
     from phasebrush.gui.view import View
     from phasebrush.model.recovery import Offer, Recovery
     from phasebrush.model.results import Snapshot
-    from phasebrush.model.state import Letter, MapsShow
+    from phasebrush.model.state import Letter, MapsShow, PowerPart
     from phasebrush.model.workbench import Workbench
 
 
@@ -164,6 +164,8 @@ class MainWindow(QMainWindow):
             "suspects": self.asking.suspects_dialog,
             "halves": self._halves,
             "swap": self._swap,
+            "measure": self._other_measure,
+            "part": self._next_part,
             "whole": self._whole,
             "earlier_channel": partial(self._step_channel, -1),
             "later_channel": partial(self._step_channel, 1),
@@ -192,8 +194,10 @@ class MainWindow(QMainWindow):
             )
         self.docks.drawer_content.views.notes.apply_rule = self._apply_rule
         self.docks.views.recordings.open_listed = workbench.open_listed
-        for which, button in self.docks.map_buttons.items():
-            button.clicked.connect(partial(self._maps_show, which))
+        docks = self.docks
+        docks.maps_show.chosen = self._maps_show
+        docks.measure.chosen = lambda value: workbench.do(intents.show_consistency(value))
+        docks.part.chosen = lambda value: workbench.do(intents.show_power_part(value))
 
     # -- frames -------------------------------------------------------------------------------
 
@@ -357,9 +361,19 @@ class MainWindow(QMainWindow):
             self.workbench.do(intents.show_in_maps(self._flipped_from, fleeting=True))
             self._flipped_from = None
 
+    def _other_measure(self) -> None:
+        now = self.workbench.state.consistency
+        self.workbench.do(intents.show_consistency("PPC" if now == "ITC" else "ITC"))
+        self.docks.measure.show_value(self.workbench.state.consistency)
+
+    def _next_part(self) -> None:
+        parts: tuple[PowerPart, ...] = ("total", "evoked", "induced")
+        at = parts.index(self.workbench.state.power_part)
+        self.workbench.do(intents.show_power_part(parts[(at + 1) % len(parts)]))
+
     def _maps_show(self, which: MapsShow, _checked: object = None) -> None:
         self.workbench.do(intents.show_in_maps(which))
-        for name, button in self.docks.map_buttons.items():
+        for name, button in self.docks.maps_show.buttons.items():
             button.setChecked(name == which)
 
     def _thirds(self) -> None:

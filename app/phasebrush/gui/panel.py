@@ -57,6 +57,10 @@ class TitleLine(QFrame):
         """Put a control at the right end."""
         self._layout.addWidget(control, 0)
 
+    def add_gap(self) -> None:
+        """Leave a gap between controls that do not belong together."""
+        self._layout.addSpacing(GRID)
+
     def add_tool(self, text: str, tip: str, *, checkable: bool = False) -> QToolButton:
         """Put a small button at the right end."""
         button = QToolButton(self)

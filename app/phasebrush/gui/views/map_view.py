@@ -1,4 +1,4 @@
-"""A time-frequency map: ITC, or power in dB, with the spot on it."""
+"""A time-frequency map with the spot on it."""
 
 from __future__ import annotations
 
@@ -10,11 +10,11 @@ from PySide6.QtWidgets import QGraphicsRectItem, QHBoxLayout, QWidget
 
 from phasebrush.core.spot import Spot
 from phasebrush.gui.colour_bar import ColourBar
-from phasebrush.gui.hatch import hatch_colours, hatching
 from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot, pen
 from phasebrush.gui.view import View
-from phasebrush.look import colour_maps
+from phasebrush.gui.views.map_overlay import MapOverlay, Marks, either, picked_by
+from phasebrush.gui.views.map_words import MapWords
 from phasebrush.model.intents import move_spot, zoom_time
 from phasebrush.model.stale import Result
 
@@ -29,8 +29,9 @@ MAP_MARGINS = Margins(left=46, right=0, bottom=6)
 NICE_HZ = (1, 1.6, 2.5, 4, 6, 10, 16, 25, 40, 60, 100, 160, 250)
 TINY_DRAG_PIXELS = 4.0
 SHARED_NEEDS = frozenset(
-    {Result.TRIALS, Result.MAPS, Result.SPOT, Result.CURSOR, Result.SHOWN, Result.SUBSETS}
-)
+    {Result.TRIALS, Result.MAPS, Result.SPOT, Result.CURSOR, Result.SHOWN, Result.SUBSETS,
+     Result.CIRCLES, Result.OUTLINES, Result.COMPARED}
+)  # fmt: skip
 
 
 class MapView(View):
@@ -52,12 +53,12 @@ class MapView(View):
         layout.addWidget(self.bar, 0)
         self.plot.name_axes("frequency (Hz)", "", short="Hz")
         self.plot.hide_bottom_ticks()
-        self._image, self._hatch = PixelImage(), PixelImage(layer=-5)
+        self._image, self.overlay, self.notes = PixelImage(), MapOverlay(), MapWords()
         self._extent = QRectF()
         self._halo, self._box = QGraphicsRectItem(), QGraphicsRectItem()
         self._halo.setZValue(60)
         self._box.setZValue(61)
-        self.plot.add(self._image, self._hatch, self._halo, self._box)
+        self.plot.add(self._image, self.overlay, self.notes, self._halo, self._box)
         self.plot.pressed, self.plot.dragged = self._pressed, self._dragged
         self.plot.released, self.plot.hovered = self._released, self._hovered
         self.plot.zoomed = self._zoomed
@@ -65,7 +66,8 @@ class MapView(View):
         self._spot = Spot()
         self._start: Pointer | None = None
         self._gesture = 0
-        self._hatched_for: tuple[object, ...] = ()
+        self._picked: dict[str, NDArray[np.bool_]] = {}
+        self._marks: Marks | None = None
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.plot.setFocusProxy(self)
 
@@ -85,6 +87,18 @@ class MapView(View):
         """Where the bar marks chance; NaN for nowhere."""
         return float("nan")
 
+    def unit(self, _maps: Maps) -> str:
+        """What the bar's values are."""
+        return self._unit
+
+    def outlined(self, snapshot: Snapshot) -> tuple[NDArray[np.bool_], bool, str]:
+        """Points that stand out, whether they belong to what is drawn, and what they say."""
+        raise NotImplementedError
+
+    def missing(self, _maps: Maps) -> str:
+        """Why there is nothing to draw; empty where there is."""
+        return ""
+
     def words(self, value: float) -> str:
         """A value in words for the foot line."""
         raise NotImplementedError
@@ -98,6 +112,8 @@ class MapView(View):
             self.plot.set_cursor_time(state.cursor_s)
         if snapshot.maps is not self._maps:
             self._take_maps(snapshot.maps)
+        if changed & {Result.MAPS, Result.CIRCLES, Result.OUTLINES, Result.COMPARED}:
+            self._take_marks(snapshot)
         if state.spot != self._spot or Result.MAPS in changed:
             self._spot = state.spot
             self._draw_spot(self._spot)
@@ -112,12 +128,29 @@ class MapView(View):
         self._maps = maps
         if maps is None:
             self._image.hide()
-            self._hatch.hide()
             return
         if new_grid:
             self._shape(maps)
         self._draw(maps)
-        self._draw_hatch()
+
+    def _take_marks(self, snapshot: Snapshot) -> None:
+        maps = snapshot.maps
+        if maps is None:
+            self._picked, self._marks = {}, None
+            self.notes.clear_words()
+        else:
+            self._picked = picked_by(snapshot)
+            mask, fresh, words = self.outlined(snapshot)
+            self._marks = Marks(~maps.valid, either(self._picked), mask, fresh, words)
+            self.notes.show_words(self.missing(maps), either(self._picked), self._extent)
+            self.bar.say(words)
+        self._draw_marks()
+
+    def _draw_marks(self) -> None:
+        self.overlay.show_marks(
+            self._marks, self._extent, self.plot.device_pixels(), self.devicePixelRatioF(),
+            self.look,
+        )  # fmt: skip
 
     def _shape(self, maps: Maps) -> None:
         count = len(maps.freqs_hz)
@@ -129,32 +162,15 @@ class MapView(View):
         ticks = [(self._row(hz), f"{hz:g}") for hz in NICE_HZ if low <= hz * 1.0001 <= high * 1.001]
         axis = self.plot.getPlotItem().getAxis("left")
         axis.setTicks([ticks or [(0, f"{low:.3g}")]])
-        self._hatched_for = ()
 
     def _draw(self, maps: Maps) -> None:
         low, high = self.scale(maps)
         cells = np.rint((self.values(maps) - low) * (255 / (high - low)))
         cells = np.clip(np.nan_to_num(cells, nan=127.0), 0, 255).astype(np.uint8)
         table = self.table(maps)
-        self.bar.name_unit(self._unit + (", A − B" if maps.shown == "A-B" else ""))
+        self.bar.name_unit(self.unit(maps) + (", A − B" if maps.shown == "A-B" else ""))
         self._image.show_cells(cells, packed(table), self._extent)
         self.bar.show_scale(low, high, table, self.look, self.chance(maps))
-
-    def _draw_hatch(self) -> None:
-        """Hatch what lies too near the ends of the data to be trusted."""
-        maps = self._maps
-        if maps is None:
-            return
-        size = self.plot.device_pixels()
-        ratio = self.devicePixelRatioF()
-        what = (id(maps.valid), size, self.look)
-        if what == self._hatched_for:
-            return
-        self._hatched_for = what
-        self._hatch.setVisible(not maps.valid.all())
-        if not maps.valid.all():
-            cells = hatching(~maps.valid, size, ratio)
-            self._hatch.show_cells(cells, packed(hatch_colours(self.look)), self._extent)
 
     def _row(self, hz: float) -> float:
         """Place of a frequency on the axis: log-spaced rows, 0 at the lowest."""
@@ -195,14 +211,15 @@ class MapView(View):
         self.plot.set_look(look)
         self._halo.setPen(pen(look.panel, width=4))
         self._box.setPen(pen(look.text, width=1.5))
+        self.notes.set_look(look)
         if self._maps is not None:
             self._draw(self._maps)
-            self._draw_hatch()
+            self._draw_marks()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Hatch at the new pixels."""
         super().resizeEvent(event)
-        self._draw_hatch()
+        self._draw_marks()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         """Escape calls a dragged box off."""
@@ -256,74 +273,20 @@ class MapView(View):
         column = int(np.argmin(np.abs(maps.times_s - pointer.x)))
         value = float(self.values(maps)[row, column])
         trust = "" if maps.valid[row, column] else " · too near the end of the data"
+        trust += self._said_of(row, column)
         self.ways.hint(
             f"{maps.freqs_hz[row]:.1f} Hz · {maps.times_s[column]:.3f} s · "
             f"{self.words(value)}{trust}"
         )
 
+    def _said_of(self, row: int, column: int) -> str:
+        """What the marks say of a point."""
+        letters = [letter for letter, mask in self._picked.items() if mask[row, column]]
+        said = f" · picked here ({' and '.join(letters)})" if letters else ""
+        marks = self._marks
+        if marks is not None and marks.outlined.size and marks.outlined[row, column]:
+            said += f" · {marks.words}"
+        return said
+
     def _zoomed(self, span_s: tuple[float, float] | None) -> None:
         self.ways.do(zoom_time(span_s))
-
-
-class ItcMap(MapView):
-    """Inter-trial coherence; A − B as a signed difference."""
-
-    measure = "ITC"
-
-    def __init__(self, parent: QWidget | None = None) -> None:
-        super().__init__("itc_map", "ITC", parent)
-        self.setAccessibleName("map of inter-trial coherence")
-        self.setToolTip(
-            "ITC: length of the mean unit phasor over trials, 0 to 1 (no unit). The bar marks "
-            "what chance exceeds once in 20 at this n. Click or drag a box to move the spot."
-        )
-
-    def values(self, maps: Maps) -> NDArray[np.float64]:
-        """ITC of the set shown."""
-        return maps.locking
-
-    def scale(self, maps: Maps) -> tuple[float, float]:
-        """From 0, or symmetric for a difference."""
-        return (-maps.locking_limit if maps.shown == "A-B" else 0.0), maps.locking_limit
-
-    def table(self, maps: Maps) -> NDArray[np.uint8]:
-        """Ink, or signed for a difference."""
-        return colour_maps.signed(self.look) if maps.shown == "A-B" else colour_maps.ink(self.look)
-
-    def chance(self, maps: Maps) -> float:
-        """ITC that chance exceeds with probability 0.05 at the n shown."""
-        return maps.chance
-
-    def words(self, value: float) -> str:
-        """ITC in words."""
-        return f"ITC {value:.3f}"
-
-
-class PowerMap(MapView):
-    """Total power in dB against the baseline; A − B as a difference of dB."""
-
-    measure = "power"
-
-    def __init__(self, parent: QWidget | None = None) -> None:
-        super().__init__("power_map", "dB", parent)
-        self.setAccessibleName("map of power in dB against the baseline")
-        self.setToolTip(
-            "Power: 10 log10 of mean |X|² over trials against its mean in the baseline, dB. "
-            "Click or drag a box to move the spot."
-        )
-
-    def values(self, maps: Maps) -> NDArray[np.float64]:
-        """DB of the set shown."""
-        return maps.power_db
-
-    def scale(self, maps: Maps) -> tuple[float, float]:
-        """Symmetric around 0."""
-        return -maps.db_limit, maps.db_limit
-
-    def table(self, _maps: Maps) -> NDArray[np.uint8]:
-        """Signed."""
-        return colour_maps.signed(self.look)
-
-    def words(self, value: float) -> str:
-        """Power in words."""
-        return f"{value:+.1f} dB"

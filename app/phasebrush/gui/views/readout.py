@@ -2,41 +2,25 @@
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtCore import QEvent, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QHelpEvent, QPainter, QPaintEvent
-from PySide6.QtWidgets import QToolTip, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QToolButton, QToolTip, QVBoxLayout, QWidget
 
 from phasebrush.gui import theme
+from phasebrush.gui.number_words import fixed, p_words
 from phasebrush.gui.view import View
+from phasebrush.gui.words import ElidedLabel
+from phasebrush.model.intents import with_matched_counts
 from phasebrush.model.results import SET_NAMES
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Mapping
 
-    from phasebrush.model.results import Readout, SetReadout, Snapshot
-
-
-def fixed(value: float, decimals: int, *, sign: bool = False) -> str:
-    """A number with a true minus sign; a dash where it is undefined."""
-    if not math.isfinite(value):
-        return "–"
-    return f"{value:{'+' if sign else ''}.{decimals}f}".replace("-", "−")
-
-
-def p_words(p: float) -> str:
-    """A p-value that never reads as 0."""
-    if not math.isfinite(p):
-        return "–"
-    if p < 1e-4:
-        exponent = math.floor(math.log10(p)) if p > 1e-99 else -99
-        raised = str(exponent + 1).translate(str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"))
-        return f"< 10{raised}"
-    return f"{p:.4f}" if p < 0.001 else f"{p:.3f}"
+    from phasebrush.model.results import SetName, SetReadout, Snapshot
 
 
 @dataclass(frozen=True)
@@ -88,13 +72,64 @@ LINES = (
         lambda r: fixed(r.box_db, 1, sign=True),
     ),
 )
+UNEQUAL = 0.1
 MARKS = {"all": "all", "A": "■ A", "B": "● B"}
+
+
+@dataclass(frozen=True)
+class Row:
+    """A written line: name, definition, and its words in each set's column."""
+
+    name: str
+    definition: str
+    cells: Mapping[str, str]
+
+
+def rows_of(snapshot: Snapshot) -> tuple[Row, ...]:
+    """Every line that is written for a snapshot."""
+    readout = snapshot.readout
+    if readout is None:
+        return ()
+    shown = [name for name in SET_NAMES if name in readout.of]
+    rows = [
+        Row(line.name, line.definition, {name: line.words(readout.of[name]) for name in shown})
+        for line in LINES
+    ]
+    return (*rows, *_matched_rows(snapshot))
+
+
+def _matched_rows(snapshot: Snapshot) -> tuple[Row, ...]:
+    """ITC of the larger subset for the smaller one's count, where counts are matched."""
+    rested = snapshot.rested
+    if not snapshot.state.match or rested is None or rested.matched is None:
+        return ()
+    matched, name = rested.matched, rested.matched_set
+    definition = (
+        f"ITC of {name} thinned at random to {matched.n} of its {matched.n_large} trials, mean of "
+        f"{matched.draws:,} draws, seed {matched.seed}"
+    )
+    return (
+        Row(f"ITC at n {matched.n}", definition, {name: fixed(matched.mean, 3)}),
+        Row("  95 % from", definition + ": 2.5th percentile", {name: fixed(matched.low, 3)}),
+        Row("  95 % to", definition + ": 97.5th percentile", {name: fixed(matched.high, 3)}),
+    )
+
+
+def counts_differ(snapshot: Snapshot) -> str:
+    """What to say when A and B differ so much in number that their ITC cannot be compared."""
+    readout, state = snapshot.readout, snapshot.state
+    if readout is None or "A" not in readout.of or "B" not in readout.of:
+        return ""
+    n_a, n_b = readout.of["A"].n, readout.of["B"].n
+    if state.consistency == "PPC" or abs(n_a - n_b) <= UNEQUAL * max(n_a, n_b):
+        return ""
+    return f"n {n_a} and {n_b}: ITC is biased by n"
 
 
 class ReadoutView(View):
     """A table: a line a measure, a column a set of trials, aligned on the decimal point."""
 
-    needs: ClassVar[frozenset[Result]] = frozenset({Result.TRIALS, Result.READOUT})
+    needs: ClassVar[frozenset[Result]] = frozenset({Result.TRIALS, Result.READOUT, Result.RESTED})
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -102,34 +137,76 @@ class ReadoutView(View):
         self.setFont(theme.font(9.0))
         self.setMinimumSize(190, 110)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
-        self._readout: Readout | None = None
+        self._rows: tuple[Row, ...] = ()
+        self._names: tuple[SetName, ...] = ()
         self._faded = False
         self.setAccessibleName("readout at the spot")
+        self.note = ElidedLabel(parent=self)
+        self.note.setObjectName("countsNote")
+        self.match = QToolButton(self)
+        self.match.setObjectName("titleTool")
+        self.match.setText("match counts")
+        self.match.setCheckable(True)
+        self.match.setToolTip(
+            "Match counts: give the larger subset's ITC for the smaller one's count too, as mean "
+            "and 95 % range of 1,000 random draws. Or show PPC, which does not depend on n."
+        )
+        self.match.setAccessibleName("match counts in the readout")
+        self.match.clicked.connect(self._match)
+        self._foot = QWidget(self)
+        line = QHBoxLayout(self._foot)
+        line.setContentsMargins(4, 0, 2, 0)
+        line.addWidget(self.note, 1)
+        line.addWidget(self.match, 0)
+        layout = QVBoxLayout(self)
+        layout.setContentsMargins(0, 0, 0, 0)
+        layout.addStretch(1)
+        layout.addWidget(self._foot)
+        self._foot.hide()
 
     def sizeHint(self) -> QSize:
         """Room for all lines."""
         return QSize(250, 220)
 
-    def show_snapshot(self, snapshot: Snapshot, _changed: frozenset[Result]) -> None:
+    def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
         """Take the numbers."""
-        self._readout = snapshot.readout
-        self._faded = Result.READOUT in snapshot.outdated
-        self.update()
+        readout = snapshot.readout
+        rows = rows_of(snapshot)
+        names = () if readout is None else tuple(n for n in SET_NAMES if n in readout.of)
+        faded = Result.READOUT in snapshot.outdated
+        self._show_note(snapshot)
+        if (
+            rows != self._rows
+            or names != self._names
+            or faded != self._faded
+            or changed & {Result.TRIALS}
+        ):
+            self._rows, self._names, self._faded = rows, names, faded
+            self.update()
+
+    def _show_note(self, snapshot: Snapshot) -> None:
+        words = counts_differ(snapshot)
+        self.note.set_words(words)
+        self.match.setChecked(snapshot.state.match)
+        self._foot.setVisible(bool(words))
+
+    def _match(self, checked: bool) -> None:
+        self.ways.do(with_matched_counts(on=checked))
 
     def table(self) -> dict[str, list[str]]:
         """What is written, by column: for tests, for the clipboard and for screen readers."""
-        readout = self._readout
-        if readout is None:
-            return {}
-        return {
-            name: [line.words(readout.of[name]) for line in LINES]
-            for name in SET_NAMES
-            if name in readout.of
-        }
+        return {name: [row.cells.get(name, "") for row in self._rows] for name in self._names}
+
+    def row_names(self) -> list[str]:
+        """Names of the written lines."""
+        return [row.name for row in self._rows]
+
+    def _room(self) -> int:
+        return self.height() - (self._foot.height() if self._foot.isVisible() else 0)
 
     def _line_height(self) -> float:
         wanted = QFontMetricsF(self.font()).height() + 3
-        return min(wanted, (self.height() - 4) / (len(LINES) + 1))
+        return min(wanted, (self._room() - 4) / (len(self._rows) + 1))
 
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Write the table."""
@@ -145,13 +222,13 @@ class ReadoutView(View):
         if high < metrics.height() - 1:
             painter.setFont(theme.font(max(6.5, 9.0 * high / metrics.height())))
             metrics = QFontMetricsF(painter.font())
-        names = max(metrics.horizontalAdvance(line.name) for line in LINES) + 10
+        names = max(metrics.horizontalAdvance(row.name) for row in self._rows) + 10
         wide = max(48.0, min(84.0, (self.width() - names - 8) / len(SET_NAMES)))
         painter.setOpacity(0.45 if self._faded else 1.0)
         painter.setPen(QColor(self.look.muted))
-        for number, line in enumerate(LINES):
+        for number, row in enumerate(self._rows):
             box = QRectF(4, 2 + high * (number + 1), names, high)
-            painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, line.name)
+            painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, row.name)
         for column, (name, cells) in enumerate(table.items()):
             left = names + 4 + wide * column
             point = left + wide * 0.44
@@ -184,8 +261,8 @@ class ReadoutView(View):
         """Each line explains itself."""
         if isinstance(event, QHelpEvent) and event.type() == QEvent.Type.ToolTip:
             number = int((event.pos().y() - 2) / max(1.0, self._line_height())) - 1
-            if 0 <= number < len(LINES):
-                line = LINES[number]
-                QToolTip.showText(event.globalPos(), f"{line.name}: {line.definition}", self)
+            if 0 <= number < len(self._rows):
+                row = self._rows[number]
+                QToolTip.showText(event.globalPos(), f"{row.name.strip()}: {row.definition}", self)
                 return True
         return super().event(event)
