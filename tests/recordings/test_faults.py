@@ -125,7 +125,7 @@ def test_untyped_channels_with_electrode_names_are_taken_as_eeg(tmp_path, made):
 @pytest.mark.parametrize(("rows", "message"), [
     ([["time"], ["1"]], "a_events.tsv: has no column named onset"),
     ([["onset", "x"], ["1", "2"], ["soon", "3"]], "the onset of event 2 is not a number"),
-    ([["onset", "x"], ["n/a", "2"]], "the onset of event 1 is not a number"),
+    ([["onset", "x"], ["n/a", "2"]], "the onset of event 1 is missing; give it in seconds"),
     ([["onset", "x"], ["1"]], "line 2 has 1 cells for 2 columns"),
     ([["onset", "x", "x"], ["1", "2", "3"]], "has a blank or repeated column name"),
     ([[""]], "a_events.tsv: is empty"),
@@ -162,7 +162,7 @@ def test_file_that_shrinks_after_it_was_opened(tmp_path, made):
     path = write_edf(tmp_path / "a.edf", made)
     recording = open_recording(path)
     path.write_bytes(path.read_bytes()[:4000])
-    with pytest.raises(InputError, match=r"a\.edf: (cannot be read|ends before)"):
+    with pytest.raises(InputError, match=r"a\.edf: was changed after it was opened; open"):
         cut_trials(recording, Cut(window_s=(-0.4, 0.4)))
     path.unlink()
     with pytest.raises(InputError, match=r"a\.edf: .*missing"):

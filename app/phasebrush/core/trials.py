@@ -131,6 +131,8 @@ class Trials:
         baseline and channels even for ready-made epochs.
     warnings : tuple of str
         What the person should know: dropped events, flat channels, odd units.
+    unusable : mapping of str to str
+        Channels of the recording that give no voltages and are not among ``ch_names``, and why.
     """
 
     data_uv: NDArray[np.float32]
@@ -147,6 +149,7 @@ class Trials:
     cut: Cut
     columns: Mapping[str, NDArray[Any]] = field(default_factory=dict)
     warnings: tuple[str, ...] = ()
+    unusable: Mapping[str, str] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
         n_trials, n_channels, n_samples = self.data_uv.shape

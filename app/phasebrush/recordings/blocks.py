@@ -87,7 +87,9 @@ class Blocks:
         self._held_start = 0
         self._held = np.zeros((0, 0))
 
-    def get(self, start: int, stop: int) -> tuple[NDArray[np.float64], NDArray[np.bool_]]:
+    def get(
+        self, start: int, stop: int
+    ) -> tuple[NDArray[np.float64], NDArray[np.bool_], NDArray[np.bool_]]:
         """One stretch, which may run past the ends of the recording.
 
         Beyond the ends the recording is continued by its point reflection about the last
@@ -100,6 +102,8 @@ class Blocks:
         finite : ndarray of bool, shape (samples,)
             False where a channel held no number; such gaps are bridged by a straight line
             before the filter.
+        gaps : ndarray of bool, shape (needed channels, samples)
+            Where which channel, as read, held no number; without samples if nowhere.
         """
         first, last = start - self._reach, stop + self._reach
         index = _reflected(np.arange(first, last), self._n_samples)
@@ -107,13 +111,16 @@ class Blocks:
         raw = self._read(inside_first, int(index.max()) + 1)
         data = self._referencing(raw, axis=0)
         data, finite = _without_gaps(data)
+        gaps = np.zeros((len(raw), 0), dtype=bool) if finite.all() else ~np.isfinite(raw)
         if first < 0 or last > self._n_samples:
             finite = finite[index - inside_first]
             data = _reflect(data, index - inside_first, first, self._n_samples, inside_first)
+            gaps = gaps[:, index - inside_first] if gaps.size else gaps
         if self._kernel is not None:
             data = filter_inside(data, self._kernel)
             finite = finite[self._reach : self._reach + data.shape[-1]]
-        return data, finite
+            gaps = gaps[:, self._reach : self._reach + data.shape[-1]]
+        return data, finite, gaps
 
     def _read(self, start: int, stop: int) -> NDArray[np.float64]:
         """Read the needed channels; what the last call left is used again."""

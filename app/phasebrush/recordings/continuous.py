@@ -2,21 +2,19 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from phasebrush.core.trials import Source
 from phasebrush.errors import InputError
+from phasebrush.recordings.as_opened import AsOpened
 from phasebrush.recordings.bids import BidsNames, names_of
-from phasebrush.recordings.channels import (
-    bad_warning,
-    listed,
-    looks_like_eeg,
-    shown_name,
-    unique_names,
-)
-from phasebrush.recordings.events import Events, Marks, sort_out
+from phasebrush.recordings.channels import bad_warning, listed, looks_like_eeg, tidy_names
+from phasebrush.recordings.events import Events, Marks, nearest_samples, sort_out
+from phasebrush.recordings.events_inside import check_inside
 from phasebrush.recordings.events_table import events_table_beside, read_events_table
 from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
 from phasebrush.recordings.positions import positions_for
@@ -26,14 +24,18 @@ from phasebrush.recordings.triggers import (
     read_trigger_events,
     trigger_channel,
 )
+from phasebrush.recordings.words import plain_text, shortened
 
 if TYPE_CHECKING:
     from collections.abc import Callable
-    from pathlib import Path
 
     from numpy.typing import NDArray
 
+    from phasebrush.recordings.checked import Checked
+
 UV_PER_V = 1e6
+# A file that stands for so many more numbers than it has bytes is all gap: damaged.
+_MOST_PER_BYTE = 200
 
 
 class FileSamples:
@@ -44,9 +46,11 @@ class FileSamples:
         self._indices = indices
         self._path = path
         self._reader = reader
+        self._as_opened = AsOpened(path, files_of(raw, path))
 
     def read_uv(self, channels: NDArray[np.intp], start: int, stop: int) -> NDArray[np.float64]:
         """Read EEG channels, shape (channels, samples), microvolts."""
+        self._as_opened.check()
         with faults_in_words(self._path, self._reader):
             data: NDArray[np.float64] = self._raw.get_data(
                 picks=self._indices[channels], start=start, stop=stop, verbose="ERROR"
@@ -57,9 +61,16 @@ class FileSamples:
         return data
 
 
+def files_of(raw: Any, path: Path) -> tuple[Path, ...]:
+    """Header and data files of an opened recording, each once."""
+    named = (Path(str(name)) for name in raw.filenames if name is not None)
+    return tuple(dict.fromkeys((path, *named)))
+
+
 def open_continuous(
     path: Path,
     kind: str,
+    checked: Checked,
     *,
     progress: Callable[[float], None] | None = None,
     stopped: Callable[[], bool] | None = None,
@@ -72,6 +83,8 @@ def open_continuous(
         The file (the header file of BrainVision).
     kind : str
         ``"edf"``, ``"bdf"``, ``"brainvision"`` or ``"raw"`` (FIF).
+    checked : Checked
+        What a look at the header found.
     progress, stopped : callable, optional
         As for `open_recording`; used while a trigger channel is read.
 
@@ -83,6 +96,7 @@ def open_continuous(
     reader = {"edf": "EDF", "bdf": "BDF", "brainvision": "BrainVision", "raw": "FIF"}[kind]
     with faults_in_words(path, reader), quietly() as said:
         raw = _open_raw(path, kind)
+    _check_size(raw, path)
     bids = names_of(path)
     names, types, warnings = _channels(raw, bids)
     eeg = np.array([i for i, one in enumerate(types) if one == "eeg"], dtype=np.intp)
@@ -104,6 +118,14 @@ def open_continuous(
     bad = {names[i] for i, name in enumerate(raw.ch_names) if name in raw.info["bads"]}
     bad |= {name for name, row in bids.channels.items() if row.status == "bad"}
     bad_names = tuple(name for name in eeg_names if name in bad)
+    unusable = {names[i]: why for i, why in checked.unusable.items() if types[i] == "eeg"}
+    if len(unusable) == len(eeg_names):
+        name, why = next(iter(unusable.items()))
+        raise InputError(
+            f"none of its EEG channels can be used ({shortened(name)}: {why})",
+            "export the recording again",
+            path,
+        )
     return Recording(
         path=path,
         source=Source(str(path), bids.title, reader, continuous=True),
@@ -117,8 +139,15 @@ def open_continuous(
         bad_names=bad_names,
         bad_spans=marks.bad_spans,
         breaks=marks.breaks,
-        warnings=(*remarks(said), *warnings, *bad_warning(bad_names)),
+        warnings=(
+            *checked.warnings,
+            *remarks(said),
+            *warnings,
+            *bad_warning(bad_names),
+            *marks.warnings,
+        ),
         bids=bids.entities,
+        unusable=unusable,
     )
 
 
@@ -133,9 +162,28 @@ def _open_raw(path: Path, kind: str) -> Any:
     return io.read_raw_fif(path, preload=False, allow_maxshield=False, verbose=False)
 
 
+def _check_size(raw: Any, path: Path) -> None:
+    """Compare what the header promises with what the files can hold."""
+    n_samples, sfreq_hz = int(raw.n_times), float(raw.info["sfreq"])
+    if not (np.isfinite(sfreq_hz) and sfreq_hz > 0):
+        raise InputError(
+            f"its header gives a sampling rate of {sfreq_hz:g} Hz", "export it again", path
+        )
+    if n_samples < 2:
+        raise InputError(f"it holds {n_samples} samples of each channel", "export it again", path)
+    n_bytes = sum(file.stat().st_size for file in files_of(raw, path))
+    if n_samples * len(raw.ch_names) > _MOST_PER_BYTE * n_bytes:
+        raise InputError(
+            f"its header promises {n_samples:,} samples of {len(raw.ch_names)} channels, far more "
+            f"than its {n_bytes:,} bytes can hold",
+            "copy or export the file again",
+            path,
+        )
+
+
 def _channels(raw: Any, bids: BidsNames) -> tuple[tuple[str, ...], list[str], tuple[str, ...]]:
     """Names and types ("eeg" or another word) of all channels, and what to say about them."""
-    names, warnings = unique_names([shown_name(name) for name in raw.ch_names])
+    names, warnings = tidy_names(raw.ch_names)
     types = ["eeg" if one == "eeg" else one for one in raw.get_channel_types()]
     for index, (recorded, name) in enumerate(zip(raw.ch_names, names, strict=True)):
         row = bids.channels.get(recorded) or bids.channels.get(name)
@@ -175,11 +223,14 @@ def _marks(
         noted = sort_out(*_annotated(raw), sfreq_hz)
     table = events_table_beside(path)
     if table is not None:
-        listed_marks = sort_out(*read_events_table(table, sfreq_hz), sfreq_hz)
+        events, durations_s, said = read_events_table(table, sfreq_hz)
+        listed_marks = sort_out(events, durations_s, sfreq_hz)
+        outside = check_inside(listed_marks.events, int(raw.n_times), sfreq_hz, table)
         return Marks(
             listed_marks.events,
             np.concatenate([listed_marks.bad_spans, noted.bad_spans]),
             np.union1d(listed_marks.breaks, noted.breaks),
+            (*said, *outside),
         )
     stim = [
         name
@@ -188,7 +239,8 @@ def _marks(
     ]
     name = trigger_channel(stim)
     if len(noted.events) or name is None:
-        return noted
+        outside = check_inside(noted.events, int(raw.n_times), sfreq_hz, path)
+        return replace(noted, warnings=outside)
 
     def read(start: int, stop: int) -> NDArray[np.float64]:
         with faults_in_words(path, reader):
@@ -211,8 +263,8 @@ def _annotated(raw: Any) -> tuple[Events, NDArray[np.float64]]:
     late_s = raw.first_samp / raw.info["sfreq"]
     onsets_s = np.asarray(notes.onset, dtype=np.float64) - late_s
     events = Events(
-        labels=tuple(" ".join(str(text).split()) or "n/a" for text in notes.description),
-        onset_samples=np.rint(onsets_s * raw.info["sfreq"]).astype(np.int64),
+        labels=tuple(plain_text(str(text)) or "n/a" for text in notes.description),
+        onset_samples=nearest_samples(onsets_s, float(raw.info["sfreq"])),
         onsets_s=onsets_s,
         response_times_s=np.full(len(onsets_s), np.nan),
         source="annotations",

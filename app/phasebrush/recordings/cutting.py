@@ -9,10 +9,19 @@ import numpy as np
 from phasebrush.core.trials import Cut, Trials
 from phasebrush.errors import InputError, JobStopped
 from phasebrush.recordings.blocks import Blocks, Referencing
+from phasebrush.recordings.channels import unusable_line
+from phasebrush.recordings.filled import Filled, without_dead
 from phasebrush.recordings.filtering import design_filter
+from phasebrush.recordings.library import faults_in_words
 from phasebrush.recordings.plan import Plan, plan_cut
-from phasebrush.recordings.quality import check_size, data_warnings, marked_warnings
+from phasebrush.recordings.quality import (
+    check_size,
+    data_warnings,
+    marked_warnings,
+    overlap_warnings,
+)
 from phasebrush.recordings.ready_cut import fill_from_ready
+from phasebrush.recordings.room import room_for
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator
@@ -25,7 +34,6 @@ if TYPE_CHECKING:
 # and at most a minute.
 _BLOCK_NUMBERS = 1_000_000
 _BLOCK_S = 60.0
-_LARGEST_BYTES = 16 * 2**30
 
 
 def cut_trials(
@@ -65,14 +73,17 @@ def cut_trials(
     JobStopped
         If ``stopped`` said so.
     """
-    plan = plan_cut(recording, cut)
-    data = _room(recording, plan)
     tell = progress if progress is not None else _silent
     stop = stopped if stopped is not None else _never
-    if recording.ready is None:
-        keep = _fill_from_samples(recording, cut, plan, data, tell, stop)
-    else:
-        keep = fill_from_ready(recording.ready, plan, data, tell, stop)
+    plan = plan_cut(recording, cut)
+    data, filled = _filled(recording, cut, plan, tell, stop)
+    sound = without_dead(recording, cut, filled)
+    if sound is not None:
+        # Once more without them, as their gaps are in the reference and in every trial.
+        del data
+        recording, plan = sound, plan_cut(sound, cut)
+        data, filled = _filled(recording, cut, plan, tell, stop)
+    keep = filled.keep
     if not keep.any():
         raise InputError(
             "every trial holds samples that are no number",
@@ -86,21 +97,21 @@ def cut_trials(
     return trials
 
 
-def _room(recording: Recording, plan: Plan) -> NDArray[np.float32]:
-    shape = (len(plan.rows), len(plan.picks), plan.grid.n_out)
-    n_bytes = 4 * shape[0] * shape[1] * shape[2]
-    too_much = InputError(
-        f"{shape[0]} trials of {shape[1]} channels and {shape[2]} samples need "
-        f"{n_bytes / 2**30:.1f} GB",
-        "choose fewer channels, a shorter window or a lower sampling rate",
-        recording.path,
-    )
-    if n_bytes > _LARGEST_BYTES:
-        raise too_much
-    try:
-        return np.empty(shape, dtype=np.float32)
-    except MemoryError as fault:
-        raise too_much from fault
+def _filled(
+    recording: Recording,
+    cut: Cut,
+    plan: Plan,
+    tell: Callable[[float], None],
+    stop: Callable[[], bool],
+) -> tuple[NDArray[np.float32], Filled]:
+    """Make room for the trials and read them in."""
+    data = room_for(recording, plan)
+    with faults_in_words(recording.path, recording.source.reader):
+        if recording.ready is None:
+            filled = _fill_from_samples(recording, cut, plan, data, tell, stop)
+        else:
+            filled = fill_from_ready(recording.ready, plan, data, tell, stop)
+    return data, filled
 
 
 def _fill_from_samples(
@@ -110,35 +121,36 @@ def _fill_from_samples(
     data: NDArray[np.float32],
     tell: Callable[[float], None],
     stop: Callable[[], bool],
-) -> NDArray[np.bool_]:
-    """Fill in trials from a continuous recording; return which hold numbers only."""
+) -> Filled:
+    """Fill in trials from a continuous recording; say which hold numbers only."""
     assert recording.samples is not None  # noqa: S101 - checked by the caller
     kernel = _kernel(recording, cut)
-    blocks = Blocks(
-        recording.samples, recording.n_samples, Referencing(plan.picks, plan.references), kernel
-    )
+    referencing = Referencing(plan.picks, plan.references)
+    blocks = Blocks(recording.samples, recording.n_samples, referencing, kernel)
     grid = plan.grid
     starts = recording.events.onset_samples[plan.rows] + grid.read_start
     length = grid.read_stop - grid.read_start
     reach = 0 if kernel is None else len(kernel) // 2
     longest = min(_BLOCK_NUMBERS // len(recording.eeg_names), int(_BLOCK_S * recording.sfreq_hz))
     longest = max(longest, 4 * reach)  # else a long filter works mostly on overlap
-    finite = np.ones(len(starts), dtype=bool)
+    filled = Filled.whole(len(starts), referencing.needed)
     done = 0
     for group in group_trials(starts, length, longest=longest, gap=2 * reach + length):
         if stop():
             raise JobStopped
         origin = int(starts[group[0]])
-        block, is_number = blocks.get(origin, int(starts[group[-1]]) + length)
+        block, is_number, gaps = blocks.get(origin, int(starts[group[-1]]) + length)
         for trial in group:
             at = int(starts[trial]) - origin
             plan.finish(block[:, at : at + length], out=data[trial])
             needed = at + grid.need_start - grid.read_start
             stretch = is_number[needed : needed + grid.need_stop - grid.need_start]
-            finite[trial] = bool(stretch.all())
+            filled.keep[trial] = bool(stretch.all())
+            if gaps.size and not filled.keep[trial]:
+                filled.gaps[trial] = gaps[:, needed : needed + len(stretch)].any(axis=1)
         done += len(group)
         tell(0.99 * done / len(starts))
-    return finite
+    return filled
 
 
 def group_trials(
@@ -202,6 +214,7 @@ def _assemble(
     names = tuple(recording.eeg_names[pick] for pick in plan.picks)
     lost = int(np.count_nonzero(~keep))
     said = [*recording.warnings, *plan.reasons]
+    said += [unusable_line(name, why) for name, why in recording.unusable.items()]
     if lost:
         holds = "1 trial holds" if lost == 1 else f"{lost} trials hold"
         gone = "was" if lost == 1 else "were"
@@ -210,6 +223,7 @@ def _assemble(
         said += marked_warnings(
             recording, events.onset_samples, plan.grid.need_start, plan.grid.need_stop
         )
+        said += overlap_warnings(events.onsets_s, cut.window_s)
     single = frozenset(recording.eeg_names[i] for i in plan.references if len(plan.references) == 1)
     said += data_warnings(data, names, ignore=single)
     return Trials(
@@ -227,6 +241,7 @@ def _assemble(
         cut=cut,
         columns=dict(events.columns),
         warnings=tuple(dict.fromkeys(said)),
+        unusable=dict(recording.unusable),
     )
 
 

@@ -10,12 +10,14 @@ import numpy as np
 
 from phasebrush.core.trials import Source
 from phasebrush.errors import InputError
+from phasebrush.recordings.as_opened import AsOpened
 from phasebrush.recordings.bids import names_of
-from phasebrush.recordings.channels import bad_warning, shown_name, unique_names
+from phasebrush.recordings.channels import bad_warning, tidy_names
 from phasebrush.recordings.events import Events, column_from
 from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
 from phasebrush.recordings.positions import positions_for
 from phasebrush.recordings.recording import Recording
+from phasebrush.recordings.words import plain_text
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -33,9 +35,11 @@ class FifTrials:
         self.times_s = times_s
         self._indices = indices
         self._path = path
+        self._as_opened = AsOpened(path, (path,))
 
     def read_uv(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[np.float64]]:
         """Yield groups of trials, shape (trials, channels, samples), microvolts."""
+        self._as_opened.check()
         with faults_in_words(self._path, _READER), _opened(self._path) as epochs:
             for start, stop in groups:
                 data = epochs[start:stop].get_data(picks=self._indices, verbose="ERROR")
@@ -81,7 +85,8 @@ def open_fif_epochs(path: Path) -> Recording:
         raise InputError(
             f"none of its {len(types)} channels is EEG", "set the channel types in the file", path
         )
-    names, warnings = unique_names([shown_name(name) for name in epochs.ch_names])
+    _check_times(path, times_s, float(epochs.info["sfreq"]))
+    names, warnings = tidy_names(epochs.ch_names)
     eeg_names = tuple(names[i] for i in eeg)
     bids = names_of(path)
     bads = epochs.info["bads"]
@@ -100,6 +105,17 @@ def open_fif_epochs(path: Path) -> Recording:
         warnings=(*remarks(said), *warnings, *bad_warning(bad_names)),
         bids=bids.entities,
     )
+
+
+def _check_times(path: Path, times_s: NDArray[np.float64], sfreq_hz: float) -> None:
+    if not (np.isfinite(sfreq_hz) and sfreq_hz > 0):
+        raise InputError(
+            f"its header gives a sampling rate of {sfreq_hz:g} Hz", "export it again", path
+        )
+    if len(times_s) < 2 or not np.isfinite(times_s).all():
+        raise InputError(
+            f"its trials have {len(times_s)} samples", "export epochs of 2 samples or more", path
+        )
 
 
 def _events(epochs: Any) -> Events:
@@ -121,7 +137,9 @@ def _events(epochs: Any) -> Events:
     else:
         onsets_s = samples / rate_hz
     return Events(
-        labels=tuple(str(by_code.get(code, code)) for code in epochs.events[:, 2]),
+        labels=tuple(
+            plain_text(str(by_code.get(code, code))) or "n/a" for code in epochs.events[:, 2]
+        ),
         onset_samples=samples,
         onsets_s=onsets_s,
         response_times_s=responses,

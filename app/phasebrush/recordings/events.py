@@ -17,6 +17,7 @@ if TYPE_CHECKING:
 # Marks of a stretch or an interruption rather than of an event. "bad" must stand alone
 # or before a separator: a label "badge" is an event.
 _BAD = re.compile(r"^bad(?![a-z0-9])", re.IGNORECASE)
+_FARTHEST = 2.0**53
 _BREAK = re.compile(r"^(new segment|edge|boundary)(?![a-z0-9])|^bad.?boundary$", re.IGNORECASE)
 
 
@@ -82,11 +83,12 @@ class Events:
 
 @dataclass(frozen=True, eq=False)
 class Marks:
-    """Events, and what the same list says about bad stretches and interruptions."""
+    """Events, what the same list says about bad stretches and interruptions, and what is odd."""
 
     events: Events
     bad_spans: NDArray[np.int64]
     breaks: NDArray[np.int64]
+    warnings: tuple[str, ...] = ()
 
 
 def sort_out(events: Events, durations_s: NDArray[np.float64], sfreq_hz: float) -> Marks:
@@ -109,7 +111,7 @@ def sort_out(events: Events, durations_s: NDArray[np.float64], sfreq_hz: float) 
     is_break = np.array([bool(_BREAK.search(label)) for label in events.labels], dtype=bool)
     is_bad = np.array([bool(_BAD.search(label)) for label in events.labels], dtype=bool) & ~is_break
     starts = events.onset_samples
-    lengths = np.rint(np.nan_to_num(durations_s) * sfreq_hz).astype(np.int64)
+    lengths = nearest_samples(np.nan_to_num(durations_s), sfreq_hz)
     stops = starts + np.maximum(lengths, 1)
     breaks = np.unique(starts[is_break])
     return Marks(
@@ -117,6 +119,16 @@ def sort_out(events: Events, durations_s: NDArray[np.float64], sfreq_hz: float) 
         bad_spans=np.stack([starts[is_bad], stops[is_bad]], axis=1),
         breaks=breaks[breaks > 0],
     )
+
+
+def nearest_samples(times_s: NDArray[np.float64], sfreq_hz: float) -> NDArray[np.int64]:
+    """Sample nearest to each time; times that no recording lasts stop at 2**53 samples.
+
+    Beyond it (some thousand years) a double cannot tell samples apart, and a sum with the
+    length of a trial must not run over.
+    """
+    with np.errstate(over="ignore"):
+        return np.rint(np.clip(times_s * sfreq_hz, -_FARTHEST, _FARTHEST)).astype(np.int64)
 
 
 def column_from(values: Sequence[Any]) -> NDArray[Any]:

@@ -2,12 +2,21 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+import re
+from typing import TYPE_CHECKING, Any, NoReturn
 
 import numpy as np
 
 from phasebrush.errors import InputError
-from phasebrush.recordings.events import Events, column_from, is_missing, number_in
+from phasebrush.recordings.events import (
+    Events,
+    column_from,
+    is_missing,
+    nearest_samples,
+    number_in,
+)
+from phasebrush.recordings.unreadable import unreadable
+from phasebrush.recordings.words import plain_text
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -16,6 +25,10 @@ if TYPE_CHECKING:
 
 _BASE = ("onset", "duration")
 _SUFFIXES = ("_eeg", "_ieeg", "_meg")
+_LARGEST_BYTES = 200_000_000
+_DECIMAL_COMMA = re.compile(r"[-+]?\d+,\d+")
+# Common practice, no source: nobody takes a minute to press a key.
+_LONGEST_RESPONSE_S = 60.0
 
 
 def events_table_beside(path: Path) -> Path | None:
@@ -46,15 +59,17 @@ def read_table(path: Path) -> dict[str, list[str]]:
     InputError
         If it is not text, has no header, or a row is longer or shorter than the header.
     """
-    try:
-        text = path.read_text(encoding="utf-8-sig")
-    except UnicodeDecodeError as fault:
-        raise InputError("is not UTF-8 text", "save the table as UTF-8", path) from fault
-    lines = [line.rstrip("\r") for line in text.replace("\r\n", "\n").split("\n")]
+    text = _text_of(path)
+    lines = text.replace("\r\n", "\n").replace("\r", "\n").split("\n")
     filled = [(number, line) for number, line in enumerate(lines, 1) if line.strip()]
     if not filled:
         raise InputError("is empty", "write at least a header row, or take the table away", path)
-    names = [name.strip() for name in filled[0][1].split("\t")]
+    names = [plain_text(name) for name in filled[0][1].split("\t")]
+    if len(names) == 1 and re.search("[,;]", names[0]):
+        mark = "semicolons" if ";" in names[0] else "commas"
+        raise InputError(
+            f"is separated by {mark}, not by tabs", "save it as tab-separated text", path
+        )
     if len(set(names)) != len(names) or "" in names:
         raise InputError(
             "has a blank or repeated column name (BIDS allows neither)", "rename the column", path
@@ -69,12 +84,29 @@ def read_table(path: Path) -> dict[str, list[str]]:
                 path,
             )
         for name, cell in zip(names, cells, strict=True):
-            table[name].append(cell.strip())
+            table[name].append(plain_text(cell))
     return table
 
 
-def read_events_table(path: Path, sfreq_hz: float) -> tuple[Events, NDArray[np.float64]]:
-    """Read events and their durations from a table in BIDS form.
+def _text_of(path: Path) -> str:
+    """Whole text of a table, of 200 MB at most."""
+    try:
+        with path.open("rb") as stream:
+            data = stream.read(_LARGEST_BYTES + 1)
+    except OSError as fault:
+        raise unreadable(fault, path) from fault
+    if len(data) > _LARGEST_BYTES:
+        raise InputError("is larger than 200 MB", "take out what is no event", path)
+    try:
+        return data.decode("utf-8-sig")
+    except UnicodeDecodeError as fault:
+        raise InputError("is not UTF-8 text", "save the table as UTF-8", path) from fault
+
+
+def read_events_table(
+    path: Path, sfreq_hz: float
+) -> tuple[Events, NDArray[np.float64], tuple[str, ...]]:
+    """Read events, their durations and what is odd about them from a table in BIDS form.
 
     The label is ``trial_type``, or ``value`` where that is missing. ``response_time`` is in
     seconds from the event. Every further column is kept.
@@ -96,12 +128,7 @@ def read_events_table(path: Path, sfreq_hz: float) -> tuple[Events, NDArray[np.f
         raise InputError("has no column named onset", "add one, in seconds from the start", path)
     onsets_s = np.array([number_in(cell) for cell in table["onset"]], dtype=np.float64)
     if np.isnan(onsets_s).any():
-        row = int(np.flatnonzero(np.isnan(onsets_s))[0]) + 1
-        raise InputError(
-            f"the onset of event {row} is not a number (onsets are seconds from the start)",
-            "correct it or take the row out",
-            path,
-        )
+        _refuse_onset(table["onset"], int(np.flatnonzero(np.isnan(onsets_s))[0]), path)
     durations = table.get("duration", ["n/a"] * len(onsets_s))
     responses = column_from(table.get("response_time", ["n/a"] * len(onsets_s)))
     numeric = np.issubdtype(responses.dtype, np.number)
@@ -110,13 +137,47 @@ def read_events_table(path: Path, sfreq_hz: float) -> tuple[Events, NDArray[np.f
         used.add("value")
     events = Events(
         labels=_labels(table, len(onsets_s)),
-        onset_samples=np.rint(onsets_s * sfreq_hz).astype(np.int64),
+        onset_samples=nearest_samples(onsets_s, sfreq_hz),
         onsets_s=onsets_s,
         response_times_s=responses if numeric else np.full(len(onsets_s), np.nan),
         columns={name: column_from(cells) for name, cells in table.items() if name not in used},
         source="events.tsv",
     )
-    return events, np.array([number_in(cell) for cell in durations], dtype=np.float64)
+    said = _about_responses(responses, numeric=numeric)
+    return events, np.array([number_in(cell) for cell in durations], dtype=np.float64), said
+
+
+def _refuse_onset(cells: list[str], row: int, path: Path) -> NoReturn:
+    """Say what is wrong with an onset; its text is repeated only where it is a number."""
+    wrong = f"the onset of event {row + 1} is "
+    if _DECIMAL_COMMA.fullmatch(cells[row]):
+        point = cells[row].replace(",", ".")
+        raise InputError(
+            f"{wrong}{cells[row]}, with a decimal comma", f"write decimal points ({point})", path
+        )
+    if is_missing(cells[row]):
+        raise InputError(f"{wrong}missing", "give it in seconds or take the row out", path)
+    raise InputError(
+        f"{wrong}not a number (onsets are seconds from the start)",
+        "correct it or take the row out",
+        path,
+    )
+
+
+def _about_responses(responses: NDArray[Any], *, numeric: bool) -> tuple[str, ...]:
+    """Warn of response times that are none."""
+    if not numeric:
+        commas = any(_DECIMAL_COMMA.fullmatch(cell) for cell in responses)
+        why = "has decimal commas; write decimal points" if commas else "holds text"
+        return (f"response_time {why}: it is kept as a column and not used as response times",)
+    known = responses[np.isfinite(responses)]
+    if len(known) and float(np.median(known)) > _LONGEST_RESPONSE_S:
+        middle_s = float(np.median(known))
+        return (f"response times are read as seconds, and half are over {middle_s:,.0f}: check",)
+    negative = int(np.count_nonzero(known < 0))
+    if negative:
+        return (f"{negative} of {len(known)} response times are negative: before the event",)
+    return ()
 
 
 def _labels(table: dict[str, list[str]], n_events: int) -> tuple[str, ...]:

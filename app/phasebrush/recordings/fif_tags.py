@@ -8,13 +8,15 @@ from __future__ import annotations
 
 import gzip
 import struct
+import zlib
+from pathlib import Path
 from typing import IO, TYPE_CHECKING, NamedTuple, cast
 
 from phasebrush.errors import InputError
+from phasebrush.recordings.unreadable import unreadable
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
-    from pathlib import Path
 
 _HEAD = struct.Struct(">iIii")
 FILE_ID = 100
@@ -22,6 +24,14 @@ BLOCK_START = 104
 ID_TYPE = 31
 RAW_BLOCKS = frozenset({102, 112, 119})
 EPOCHS_BLOCK = 373
+_AGAIN = "copy or export the file again"
+_BITE = 64 * 2**20
+_MOST_GROWTH = 200
+"""Samples of EEG shrink to a half or a third; what grows 200-fold is made to fill a memory."""
+
+
+class LoopError(ValueError):
+    """A file that would be read without end."""
 
 
 class Tag(NamedTuple):
@@ -47,8 +57,10 @@ def tags(stream: IO[bytes]) -> Iterator[Tag]:
     ------
     EOFError
         If the file ends inside a tag, or before the last one.
+    LoopError
+        If a tag sends the reader back, from where it would never come out.
     """
-    end = stream.seek(0, 2)
+    end = _expanded_end(stream) if _is_packed(stream) else stream.seek(0, 2)
     at = 0
     while True:
         stream.seek(at)
@@ -64,9 +76,28 @@ def tags(stream: IO[bytes]) -> Iterator[Tag]:
         yield Tag(kind, kind_of_data, size, data)
         if following < 0:
             return
-        at = following if following > 0 else data + size
+        place = following if following > 0 else data + size
+        if place <= at:
+            raise LoopError(f"the tag at byte {at} leads back to byte {place}")
+        at = place
         if at > end:
             raise EOFError(f"the next tag is said to be at byte {at} of {end}")
+
+
+def _is_packed(stream: object) -> bool:
+    return isinstance(stream, gzip.GzipFile)
+
+
+def _expanded_end(stream: IO[bytes]) -> int:
+    """What a compressed file expands to, in bytes."""
+    packed = Path(str(stream.name)).stat().st_size
+    most = max(_MOST_GROWTH * packed, _BITE)
+    end = 0
+    while (reached := stream.seek(end + _BITE)) > end:
+        end = reached
+        if end > most:
+            raise LoopError(f"it expands to more than {_MOST_GROWTH} times its size")
+    return end
 
 
 def what_fif_holds(path: Path) -> str:
@@ -80,7 +111,7 @@ def what_fif_holds(path: Path) -> str:
     Raises
     ------
     InputError
-        If the file is cut off.
+        If the file is cut off or damaged.
     """
     holds = "neither"
     try:
@@ -94,10 +125,12 @@ def what_fif_holds(path: Path) -> str:
                     holds = "epochs"
                 elif block in RAW_BLOCKS and holds == "neither":
                     holds = "raw"
-    except (EOFError, gzip.BadGzipFile) as fault:
-        raise InputError(
-            f"is cut off ({fault})" if isinstance(fault, EOFError) else "is not gzip inside",
-            "copy or export the file again",
-            path,
-        ) from fault
+    except EOFError as fault:
+        raise InputError(f"is cut off ({fault})", _AGAIN, path) from fault
+    except LoopError as fault:
+        raise InputError(f"is damaged ({fault})", _AGAIN, path) from fault
+    except (gzip.BadGzipFile, zlib.error) as fault:
+        raise InputError("is not gzip inside, or damaged", _AGAIN, path) from fault
+    except OSError as fault:
+        raise unreadable(fault, path) from fault
     return holds

@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from phasebrush.errors import InputError
 from phasebrush.recordings.fif_tags import what_fif_holds
+from phasebrush.recordings.unreadable import unreadable
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -32,7 +33,7 @@ def kind_of(path: Path) -> str:
         with path.open("rb") as stream:
             head = stream.read(256)
     except OSError as fault:
-        raise InputError("cannot be opened", "check that you may read it", path) from fault
+        raise unreadable(fault, path) from fault
     if not head:
         raise InputError("is empty (0 bytes)", "copy or export the file again", path)
     name = path.name.lower()

@@ -11,6 +11,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from phasebrush.errors import InputError, JobStopped
+from phasebrush.recordings.unreadable import unreadable
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator
@@ -21,15 +22,14 @@ _capture_lock = threading.RLock()
 
 _UNIMPORTANT = re.compile(
     r"does not conform to|Online software filter|(high|low)pass|No info on DataPoints"
-    r"|Invalid (measurement date|patient)|birthday|Missing header|contains multiple samples",
+    r"|Invalid (measurement date|patient)|birthday|Missing header|contains multiple samples"
+    # These are looked for in the header before the library is asked, and said by name.
+    r"|Number of records|Scaling factor|Physical range|mixed sampling",
     re.IGNORECASE | re.DOTALL,
 )
 _IN_OUR_WORDS = (
     ("Channel names are not unique", "channel names repeat in the file and were numbered"),
-    ("mixed sampling frequencies", "slower channels were raised to the fastest channel's rate"),
     ("MarkerFile", "the marker file that the header names is missing"),
-    ("Physical range is not defined", "the header gives no physical range for some channels"),
-    ("Scaling factor", "the header gives no scale for some channels"),
     ("Unsupported physical dimension", "some channels have a unit that is not known"),
     ("Omitted", "some annotations lie outside the recording and were left out"),
     ("outside data range", "some annotations lie outside the recording and were left out"),
@@ -123,6 +123,8 @@ def faults_in_words(path: Path, what: str) -> Iterator[None]:
         raise InputError(
             f"{which} is missing", "put the files that belong together in one folder", path
         ) from fault
+    except OSError as fault:
+        raise unreadable(fault, path) from fault
     except Exception as fault:  # the one place where a library's faults end
         raise InputError(
             f"cannot be read as {what} ({type(fault).__name__})",

@@ -11,6 +11,7 @@ from phasebrush.recordings.bids import entities_of, file_stem, title_of
 from phasebrush.recordings.file_kind import ENDINGS, kind_of
 from phasebrush.recordings.library import faults_in_words, quietly
 from phasebrush.recordings.recording import Listed
+from phasebrush.recordings.unreadable import unreadable
 
 _DESCRIPTION = "dataset_description.json"
 _PART = re.compile(r"^(?P<whole>.+)-\d{1,3}$")
@@ -38,21 +39,28 @@ def list_recordings(folder: str | Path) -> list[Listed]:
         If there is no such folder, or nothing in it that can be opened.
     """
     root = Path(folder)
-    if not root.is_dir():
-        raise InputError("is no folder", "check its name", root)
-    if (root / _DESCRIPTION).is_file():
-        found = _in_dataset(root)
-    else:
-        found = _in_flat(root)
-        for below in sorted(root.iterdir()):
-            if (below / _DESCRIPTION).is_file():
-                found += _in_dataset(below)
+    try:
+        found = _listed(root)
+    except OSError as fault:
+        raise unreadable(fault, root) from fault
     if not found:
         raise InputError(
             "holds no recording that can be opened",
             "choose a folder with .vhdr, .edf, .bdf, .fif or .npz files, or a BIDS dataset",
             root,
         )
+    return found
+
+
+def _listed(root: Path) -> list[Listed]:
+    if not root.is_dir():
+        raise InputError("is no folder", "check its name", root)
+    if (root / _DESCRIPTION).is_file():
+        return _in_dataset(root)
+    found = _in_flat(root)
+    for below in sorted(root.iterdir()):
+        if (below / _DESCRIPTION).is_file():
+            found += _in_dataset(below)
     return found
 
 

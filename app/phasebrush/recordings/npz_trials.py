@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import zipfile
+from collections import Counter
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -11,12 +12,15 @@ from numpy.lib import format as npy
 
 from phasebrush.core.trials import Source
 from phasebrush.errors import InputError
+from phasebrush.recordings.as_opened import AsOpened
 from phasebrush.recordings.bids import file_stem
-from phasebrush.recordings.channels import unique_names
+from phasebrush.recordings.channels import tidy_names
 from phasebrush.recordings.events import Events
 from phasebrush.recordings.library import faults_in_words
+from phasebrush.recordings.memory import free_bytes
 from phasebrush.recordings.positions import standard_positions
 from phasebrush.recordings.recording import Recording
+from phasebrush.recordings.words import plain_text, shortened
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator
@@ -30,6 +34,11 @@ _KEYS = "data (trials x channels x samples, volts), times_s and ch_names"
 # Small members (times, names, labels) never need more than this.
 _SMALL_BYTES = 64 * 2**20
 _EVEN = 1e-3
+_LONGEST_STEP_S = 1e6
+# Deflate gives at most 1032 bytes for one (the longest match is 258 bytes, in 2 bits);
+# bzip2 and LZMA, which NumPy does not write, give more, and are refused where they do.
+_MOST_GROWTH = 1032
+_BLOCK = 65536
 
 
 @dataclass(frozen=True)
@@ -58,9 +67,11 @@ class NpzTrials:
         self._path = path
         self._data = data
         self.times_s = times_s
+        self._as_opened = AsOpened(path, (path,))
 
     def read_uv(self, groups: Iterable[tuple[int, int]]) -> Iterator[NDArray[np.float64]]:
         """Yield groups of trials, shape (trials, channels, samples), microvolts."""
+        self._as_opened.check()
         rows = self._whole if self._data.fortran else self._streamed
         with faults_in_words(self._path, _READER):
             for values in rows(groups):
@@ -105,12 +116,11 @@ def open_npz(path: Path) -> Recording:
         labels = _labels(path, members, data.shape[0])
         rate_hz = _small(path, members["sfreq_hz"]) if "sfreq_hz" in members else None
     sfreq_hz = _rate(path, times_s, rate_hz)
-    repeated = sorted({name for name in texts if texts.count(name) > 1})
+    repeated = sorted(name for name, count in Counter(texts).items() if count > 1)
     if repeated:
-        raise InputError(
-            f"ch_names repeats {repeated[0]!r}", "give each channel its own name", path
-        )
-    names, warnings = unique_names(texts)
+        name = shortened(plain_text(repeated[0]))
+        raise InputError(f"ch_names repeats {name!r}", "give each channel its own name", path)
+    names, warnings = tidy_names(texts)
     n_trials = data.shape[0]
     order = np.arange(n_trials, dtype=np.int64)
     return Recording(
@@ -137,11 +147,13 @@ def open_npz(path: Path) -> Recording:
 def _members(path: Path) -> dict[str, Member]:
     """Headers of the arrays in the archive, each checked against the size it has there."""
     found: dict[str, Member] = {}
+    size = path.stat().st_size
     with zipfile.ZipFile(path) as archive:
         for entry in archive.infolist():
             if not entry.filename.endswith(".npy"):
                 continue
-            name = entry.filename.removesuffix(".npy")
+            name = shortened(plain_text(entry.filename.removesuffix(".npy")))
+            _check_entry(path, name, entry, size)
             with archive.open(entry) as stream:
                 version = npy.read_magic(stream)
                 read = npy.read_array_header_1_0 if version == (1, 0) else npy.read_array_header_2_0
@@ -162,6 +174,18 @@ def _members(path: Path) -> dict[str, Member]:
     return found
 
 
+def _check_entry(path: Path, name: str, entry: zipfile.ZipInfo, size: int) -> None:
+    """Compare what the archive's own list says about a member with the size of the file."""
+    most = entry.compress_size * (1 if entry.compress_type == zipfile.ZIP_STORED else _MOST_GROWTH)
+    if entry.header_offset + entry.compress_size > size or entry.file_size > most + _BLOCK:
+        raise InputError(
+            f"{name} is said to hold {entry.file_size:,} bytes, which {size:,} bytes of file "
+            "cannot give",
+            "copy or write the archive again",
+            path,
+        )
+
+
 def _require(path: Path, members: dict[str, Member]) -> None:
     """Check that the needed arrays are there, of the right kind, and fit one another."""
     for key in ("data", "times_s", "ch_names"):
@@ -174,6 +198,7 @@ def _require(path: Path, members: dict[str, Member]) -> None:
             "store numbers as trials x channels x samples, in volts",
             path,
         )
+    _check_room(path, members["data"])
     for key, wanted in (("times_s", (shape[2],)), ("ch_names", (shape[1],))):
         if members[key].shape != wanted:
             raise InputError(
@@ -183,6 +208,20 @@ def _require(path: Path, members: dict[str, Member]) -> None:
             )
     if members["times_s"].dtype.kind not in "fiu" or members["ch_names"].dtype.kind not in "US":
         raise InputError("times_s must be numbers and ch_names texts", f"store {_KEYS}", path)
+
+
+def _check_room(path: Path, data: Member) -> None:
+    """Refuse what could not be read: one trial at a time, or all where they lie crosswise."""
+    at_once = data.n_bytes if data.fortran else data.n_bytes // data.shape[0]
+    # Once as stored, once in double precision.
+    needed = at_once + 8 * (at_once // data.dtype.itemsize)
+    if needed > free_bytes():
+        what = "data in Fortran order needs" if data.fortran else "one trial needs"
+        raise InputError(
+            f"{what} {needed / 2**30:,.1f} GB of memory, more than is free",
+            "store fewer channels or shorter trials, one trial after the other (C order)",
+            path,
+        )
 
 
 def _small(path: Path, member: Member) -> NDArray[Any]:
@@ -202,16 +241,18 @@ def _labels(path: Path, members: dict[str, Member], n_trials: int) -> tuple[str,
             "store one label for each trial",
             path,
         )
-    return tuple(str(label) for label in _small(path, members["label"]))
+    return tuple(plain_text(str(one)) or "n/a" for one in _small(path, members["label"]))
 
 
 def _rate(path: Path, times_s: NDArray[np.float64], given: NDArray[Any] | None) -> float:
     """Work out the sampling rate from evenly spaced times, compared with the one that is given."""
     if len(times_s) < 2 or not np.isfinite(times_s).all():
         raise InputError("times_s needs at least 2 finite numbers", "store seconds", path)
-    steps = np.diff(times_s)
-    step = float(times_s[-1] - times_s[0]) / (len(times_s) - 1)
-    if step <= 0 or np.abs(steps - step).max() > _EVEN * step:
+    with np.errstate(over="ignore", invalid="ignore"):  # times of 1e308 s are refused below
+        steps = np.diff(times_s)
+        step = float(times_s[-1] - times_s[0]) / (len(times_s) - 1)
+        even = 0 < step < _LONGEST_STEP_S and np.abs(steps - step).max() <= _EVEN * step
+    if not even:
         raise InputError(
             f"times_s is not evenly spaced (steps {steps.min():.6g} to {steps.max():.6g} s)",
             "store seconds from the event at one sampling rate",
@@ -219,7 +260,8 @@ def _rate(path: Path, times_s: NDArray[np.float64], given: NDArray[Any] | None) 
         )
     if given is None:
         return 1.0 / step
-    rate_hz = float(np.asarray(given, dtype=np.float64).reshape(-1)[0]) if given.size == 1 else 0.0
+    one_number = given.size == 1 and given.dtype.kind in "fiu"
+    rate_hz = float(given.reshape(-1)[0]) if one_number else 0.0
     if not rate_hz > 0 or abs(rate_hz * step - 1) > _EVEN:
         raise InputError(
             f"sfreq_hz does not fit times_s, whose step is {step:.6g} s ({1 / step:.6g} Hz)",

@@ -10,8 +10,10 @@ from phasebrush.recordings.continuous import open_continuous
 from phasebrush.recordings.epochs_ready import open_fif_epochs
 from phasebrush.recordings.file_checks import check_complete
 from phasebrush.recordings.file_kind import kind_of
+from phasebrush.recordings.library import faults_in_words
 from phasebrush.recordings.listing import list_recordings
 from phasebrush.recordings.npz_trials import open_npz
+from phasebrush.recordings.unreadable import unreadable
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -48,15 +50,20 @@ def open_recording(
     JobStopped
         If ``stopped`` said so.
     """
-    file = _one_file(Path(path))
+    try:
+        file = _one_file(Path(path))
+    except OSError as fault:  # a name that the system cannot take, for instance
+        raise unreadable(fault, Path(path)) from fault
     kind = kind_of(file)
-    check_complete(file, kind)
-    if kind == "epochs":
-        recording = open_fif_epochs(file)
-    elif kind == "npz":
-        recording = open_npz(file)
-    else:
-        recording = open_continuous(file, kind, progress=progress, stopped=stopped)
+    # Whatever a header can do to a library, a person is told one line.
+    with faults_in_words(file, kind.upper()):
+        checked = check_complete(file, kind)
+        if kind == "epochs":
+            recording = open_fif_epochs(file)
+        elif kind == "npz":
+            recording = open_npz(file)
+        else:
+            recording = open_continuous(file, kind, checked, progress=progress, stopped=stopped)
     if progress is not None:
         progress(1.0)
     return recording

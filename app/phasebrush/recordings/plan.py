@@ -18,6 +18,7 @@ from phasebrush.recordings.plan_checks import (
     trial_grid,
     whole_window,
 )
+from phasebrush.recordings.words import shortened
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -174,7 +175,7 @@ def _chosen(recording: Recording, cut: Cut) -> NDArray[np.intp]:
     for label in (*cut.labels, *((cut.response_label,) if cut.response_label else ())):
         if label not in known:
             raise InputError(
-                f"has no event {label!r}",
+                f"has no event {shortened(label)!r}",
                 f"choose among {listed(sorted(known), 12)}",
                 recording.path,
             )

@@ -9,8 +9,9 @@ import numpy as np
 
 from phasebrush.core.trials import AS_RECORDED, AVERAGE, Cut
 from phasebrush.errors import InputError
-from phasebrush.recordings.channels import listed
+from phasebrush.recordings.channels import listed, unusable_line
 from phasebrush.recordings.resampling import Grid, grid_for, ready_grid
+from phasebrush.recordings.words import shortened
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -133,9 +134,11 @@ def picked_channels(recording: Recording, cut: Cut) -> NDArray[np.intp]:
     Raises
     ------
     InputError
-        If a name is unknown or comes twice, or there is none.
+        If a name is unknown, comes twice or is that of an unusable channel, or there is none.
     """
-    wanted = recording.eeg_names if cut.channels is None else cut.channels
+    wanted = cut.channels
+    if wanted is None:
+        wanted = tuple(name for name in recording.eeg_names if name not in recording.unusable)
     if not wanted or len(set(wanted)) != len(wanted):
         raise InputError(
             "the choice of channels is empty or repeats a name",
@@ -148,18 +151,19 @@ def picked_channels(recording: Recording, cut: Cut) -> NDArray[np.intp]:
 def reference_channels(recording: Recording, cut: Cut) -> NDArray[np.intp]:
     """Find the channels whose mean is the reference; none for voltages as recorded.
 
-    Channels that the file marks as bad take no part in the average.
+    Channels that the file marks as bad, or that give no voltages, take no part in the average.
 
     Raises
     ------
     InputError
-        If a name is unknown.
+        If a name is unknown or that of an unusable channel.
     """
     if cut.reference == AS_RECORDED:
         return np.zeros(0, dtype=np.intp)
     if cut.reference == AVERAGE:
-        good = [name for name in recording.eeg_names if name not in recording.bad_names]
-        return _indices(recording, good or recording.eeg_names)
+        usable = [name for name in recording.eeg_names if name not in recording.unusable]
+        good = [name for name in usable if name not in recording.bad_names]
+        return _indices(recording, good or usable)
     if isinstance(cut.reference, str):
         return _indices(recording, (cut.reference,))
     return _indices(recording, cut.reference)
@@ -171,8 +175,14 @@ def _indices(recording: Recording, names: tuple[str, ...] | list[str]) -> NDArra
         if name not in places:
             what = "no EEG channel" if name in recording.other_names else "no channel"
             raise InputError(
-                f"has {what} {name!r}",
+                f"has {what} {shortened(name)!r}",
                 f"choose among {listed(recording.eeg_names, 12)}",
+                recording.path,
+            )
+        if name in recording.unusable:
+            raise InputError(
+                unusable_line(name, recording.unusable[name]),
+                "choose other channels",
                 recording.path,
             )
     return np.array([places[name] for name in names], dtype=np.intp)

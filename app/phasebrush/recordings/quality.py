@@ -115,6 +115,31 @@ def marked_warnings(
     return tuple(said)
 
 
+def overlap_warnings(
+    onsets_s: NDArray[np.float64], window_s: tuple[float, float]
+) -> tuple[str, ...]:
+    """Count trials that share most of their shown window with another: no independent draws.
+
+    Windows that touch at their ends are common where stimuli follow one another closely;
+    from half a window on, a trial is more its neighbour than itself (common practice, no
+    source).
+
+    Parameters
+    ----------
+    onsets_s : ndarray of float64, shape (trials,)
+        Event times, in any order.
+    window_s : tuple of float
+        Shown window.
+    """
+    apart_s = np.diff(np.sort(onsets_s))
+    n_close = int(np.count_nonzero(apart_s < (window_s[1] - window_s[0]) / 2))
+    if not n_close:
+        return ()
+    verb = "1 trial shares" if n_close == 1 else f"{n_close} trials share"
+    line = f"{verb} more than half of the window with the trial before"
+    return (f"{line}; tests take trials as independent",)
+
+
 def _count(number: int, one: str, many: str, what: str) -> str:
     if number == 1:
         return f"1 trial {one} {what}; it was kept"

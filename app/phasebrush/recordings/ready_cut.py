@@ -8,6 +8,7 @@ import numpy as np
 
 from phasebrush.errors import JobStopped
 from phasebrush.recordings.blocks import Referencing
+from phasebrush.recordings.filled import Filled
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator
@@ -26,7 +27,7 @@ def fill_from_ready(
     data: NDArray[np.float32],
     tell: Callable[[float], None],
     stop: Callable[[], bool],
-) -> NDArray[np.bool_]:
+) -> Filled:
     """Fill in ready-made trials.
 
     At a new rate each trial is continued beyond its ends by point reflection about its last
@@ -45,8 +46,8 @@ def fill_from_ready(
 
     Returns
     -------
-    ndarray of bool, shape (trials,)
-        Which trials hold numbers only.
+    Filled
+        Which trials hold numbers only, and which channels do not.
 
     Raises
     ------
@@ -54,7 +55,7 @@ def fill_from_ready(
         If ``stop`` said so.
     """
     referencing = Referencing(plan.picks, plan.references)
-    finite = np.ones(len(plan.rows), dtype=bool)
+    filled = Filled.whole(len(plan.rows), referencing.needed)
     n_channels = max(len(referencing.needed), data.shape[1])
     at_once = max(1, _GROUP_NUMBERS // (n_channels * len(ready.times_s)))
     done = 0
@@ -63,15 +64,17 @@ def fill_from_ready(
     groups = [(a, b) for a, b in spans if ((plan.rows >= a) & (plan.rows < b)).any()]
     for (first, until), group in zip(groups, ready.read_uv(_unless(stop, groups)), strict=True):
         wanted = plan.rows[(plan.rows >= first) & (plan.rows < until)]
-        values = referencing(group[wanted - first][:, referencing.needed], axis=1)
+        raw = group[wanted - first][:, referencing.needed]
+        values = referencing(raw, axis=1)
         here = slice(done, done + len(wanted))
-        finite[here] = np.isfinite(values).all(axis=(1, 2))
-        if not finite[here].all():
-            values = np.where(finite[here][:, None, None], values, 0.0)
+        filled.keep[here] = np.isfinite(values).all(axis=(1, 2))
+        if not filled.keep[here].all():
+            filled.gaps[here] = ~np.isfinite(raw).all(axis=2)
+            values = np.where(filled.keep[here][:, None, None], values, 0.0)
         plan.finish(_continued(values, plan), out=data[here])
         done += len(wanted)
         tell(0.99 * done / len(plan.rows))
-    return finite
+    return filled
 
 
 def _unless(stop: Callable[[], bool], groups: list[tuple[int, int]]) -> Iterator[tuple[int, int]]:

@@ -77,6 +77,8 @@ class Recording:
         What the person should know.
     bids : mapping of str to str or None
         BIDS entities of the file name, ``{"sub": "01", "task": "lantern"}`` for instance.
+    unusable : mapping of str to str
+        EEG channels that give no voltages, and why. They are left out of every cut.
     """
 
     path: Path
@@ -94,6 +96,7 @@ class Recording:
     breaks: NDArray[np.int64] = field(default_factory=lambda: np.zeros(0, dtype=np.int64))
     warnings: tuple[str, ...] = ()
     bids: Mapping[str, str] | None = None
+    unusable: Mapping[str, str] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
         if (self.samples is None) == (self.ready is None):

@@ -53,9 +53,15 @@ def code_onsets(
     """
     if len(codes) == 0:
         return np.zeros(0, dtype=np.int64), np.zeros(0, dtype=np.int64)
-    starts = np.flatnonzero(np.diff(codes)) + 1
-    bounds = np.concatenate([[0], starts, [len(codes)]])
-    values = codes[bounds[:-1]]
+    starts = np.concatenate([[0], np.flatnonzero(np.diff(codes)) + 1])
+    return _onsets_of_runs(starts, codes[starts], len(codes))
+
+
+def _onsets_of_runs(
+    starts: NDArray[np.int64], values: NDArray[np.int64], n_samples: int
+) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+    """Events among stretches of one value each, which begin at ``starts``."""
+    bounds = np.concatenate([starts, [n_samples]])
     lengths = np.diff(bounds)
     before = np.concatenate([[0], values[:-1]])
     after = np.concatenate([values[1:], [0]])
@@ -63,10 +69,8 @@ def code_onsets(
     wanted = (values != 0) & ~passing
     wanted[0] = False
     # A passing state between two runs of the same code is a glitch inside that code.
-    for index in np.flatnonzero(passing[:-1]):
-        inside = index and not passing[index - 1]
-        if inside and values[index - 1] == values[index + 1]:
-            wanted[index + 1] = False
+    glitch = passing[1:-1] & ~passing[:-2] & (values[:-2] == values[2:])
+    wanted[np.flatnonzero(glitch) + 2] = False
     return bounds[:-1][wanted].astype(np.int64), values[wanted]
 
 
@@ -105,18 +109,23 @@ def read_trigger_events(
     JobStopped
         If ``stopped`` said so.
     """
-    codes = np.zeros(n_samples, dtype=np.int64)
+    # Only where the value changes is kept: a long recording has many samples, but few events.
+    starts, values, last = [], [], None
     for start in range(0, n_samples, _BLOCK):
         if stopped is not None and stopped():
             raise JobStopped
         stop = min(start + _BLOCK, n_samples)
         piece = np.rint(np.nan_to_num(read(start, stop))).astype(np.int64)
-        codes[start:stop] = np.bitwise_and(np.abs(piece), mask)
+        codes = np.bitwise_and(np.abs(piece), mask)
+        places = np.flatnonzero(np.diff(codes, prepend=codes[0] + 1 if last is None else last))
+        starts.append(places + start)
+        values.append(codes[places])
+        last = codes[-1]
         if progress is not None:
             progress(stop / n_samples)
-    samples, values = code_onsets(codes)
+    samples, events = _onsets_of_runs(np.concatenate(starts), np.concatenate(values), n_samples)
     return Events(
-        labels=tuple(str(value) for value in values),
+        labels=tuple(str(value) for value in events),
         onset_samples=samples,
         onsets_s=samples / sfreq_hz,
         response_times_s=np.full(len(samples), np.nan),
