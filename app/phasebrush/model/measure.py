@@ -18,6 +18,8 @@ from phasebrush.model.intents import Intent
 from phasebrush.model.state import DEFAULT_SPOT, DEFAULT_TRANSFORM
 from phasebrush.model.subset import Subset
 from phasebrush.model.workbench import Workbench
+from phasebrush.recordings.channels import listed, shown_name, unusable_line
+from phasebrush.recordings.words import plain_text, shortened
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -25,7 +27,7 @@ if TYPE_CHECKING:
     from phasebrush.core.parts import Part
     from phasebrush.core.spot import Spot
     from phasebrush.core.transform_settings import TransformSettings
-    from phasebrush.core.trials import Cut
+    from phasebrush.core.trials import Cut, Trials
     from phasebrush.model.results import SetName, Snapshot
     from phasebrush.model.state import State
 
@@ -109,11 +111,7 @@ def _measured(question: Question, say: Say) -> tuple[Snapshot, SetName]:
     bench.listeners.failed = _raise
     recording = recordings.open_recording(question.path)
     trials = recordings.cut_trials(recording, _cut(question, recording))
-    if question.channel not in trials.ch_names:
-        raise InputError(
-            f"there is no channel {question.channel}",
-            f"choose one of {', '.join(trials.ch_names)}",
-        )
+    _check_channel(question.channel, recording, trials)
     bench.do(_settings(question))
     bench.take_trials(trials)
     bench.flush()
@@ -130,6 +128,27 @@ def _measured(question: Question, say: Say) -> tuple[Snapshot, SetName]:
             "choose another key or a larger part",
         )
     return snapshot, "A"
+
+
+def _check_channel(asked: str, recording: recordings.Recording, trials: Trials) -> None:
+    """Refuse a channel that cannot be measured; say what it is called where that is known."""
+    if asked in trials.ch_names:
+        return
+    name = shortened(asked)
+    remedy = f"choose one of {listed(trials.ch_names, 64)}"
+    plain = shown_name(plain_text(asked))
+    if asked in trials.unusable:
+        wrong = unusable_line(asked, trials.unusable[asked])
+    elif plain != asked and plain in trials.ch_names:
+        wrong = f"there is no channel {name}: the EEG before a name is left out here"
+        remedy = f"ask for {plain}"
+    elif asked in recording.other_names:
+        wrong = f"channel {name} is no EEG, by its type or its name"
+    else:
+        wrong = f"there is no channel {name}"
+        near = [one for one in trials.ch_names if one.casefold() == plain.casefold()]
+        remedy = f"ask for {near[0]}" if near else remedy
+    raise InputError(wrong, remedy)
 
 
 def _check(question: Question, snapshot: Snapshot) -> None:

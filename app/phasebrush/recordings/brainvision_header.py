@@ -4,10 +4,11 @@ from __future__ import annotations
 
 import math
 import re
+from collections import Counter
 from typing import TYPE_CHECKING
 
 from phasebrush.errors import InputError
-from phasebrush.recordings.checked import Checked
+from phasebrush.recordings.words import plain_text, shortened
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -22,18 +23,13 @@ _MOST_CHANNELS = 10_000
 _FASTEST_HZ = 1e6
 
 
-def check_brainvision(path: Path) -> Checked:
+def check_brainvision(path: Path) -> None:
     """Check header, data file and marker file against one another.
 
     Parameters
     ----------
     path : Path
         The header file.
-
-    Returns
-    -------
-    Checked
-        Channels without a scale, by their place.
 
     Raises
     ------
@@ -59,7 +55,7 @@ def check_brainvision(path: Path) -> Checked:
     markers = _part(entries, "markerfile", path)
     if markers is not None and markers.is_file():
         _check_markers(markers)
-    return Checked(unusable=_without_scale(entries, n_channels, path))
+    _check_channels(entries, n_channels, path)
 
 
 def _entries(path: Path) -> dict[str, str]:
@@ -153,13 +149,12 @@ def _check_data(entries: dict[str, str], n_channels: int, data: Path, path: Path
         )
 
 
-def _without_scale(entries: dict[str, str], n_channels: int, path: Path) -> dict[int, str]:
-    """Channels whose resolution gives no voltages.
+def _check_channels(entries: dict[str, str], n_channels: int, path: Path) -> None:
+    """Check that each channel is described and has a scale.
 
     A line is ``Ch1=name,reference,resolution,unit``; a decimal comma splits the resolution
     in two and would silently make it another number.
     """
-    unusable = {}
     given = {int(match[1]) for key in entries if (match := _CHANNEL.match(key))}
     missing = sorted(set(range(1, n_channels + 1)) - given)
     if missing:
@@ -169,6 +164,7 @@ def _without_scale(entries: dict[str, str], n_channels: int, path: Path) -> dict
             _REPAIR,
             path,
         )
+    _check_names([entries[f"ch{i + 1}"].split(",")[0] for i in range(n_channels)], path)
     for place in range(1, n_channels + 1):
         cells = entries[f"ch{place}"].split(",")
         resolution, unit = (*cells, "", "", "")[2:4]
@@ -179,13 +175,21 @@ def _without_scale(entries: dict[str, str], n_channels: int, path: Path) -> dict
                 path,
             )
         value = _number(resolution) if resolution.strip() else 1.0
-        if not math.isfinite(value):
+        if value == 0 or not math.isfinite(value):
+            what = "of 0" if value == 0 else "that is no number"
+            raise InputError(f"its header gives channel {place} a resolution {what}", _REPAIR, path)
+
+
+def _check_names(names: list[str], path: Path) -> None:
+    """The library cannot read two channels of one name from this format."""
+    for name, count in Counter(names).items():
+        if count > 1:
+            what = f"the name {shortened(plain_text(_decoded(name)))!r}" if name else "no name"
             raise InputError(
-                f"its header gives channel {place} a resolution that is no number", _REPAIR, path
+                f"its header gives {what} to {count} channels",
+                "give each channel its own name in the header",
+                path,
             )
-        if value == 0:
-            unusable[place - 1] = "its resolution in the header is 0, so it has no scale"
-    return unusable
 
 
 def _check_markers(markers: Path) -> None:

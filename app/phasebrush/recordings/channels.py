@@ -96,7 +96,9 @@ def unique_names(names: Sequence[str]) -> tuple[tuple[str, ...], tuple[str, ...]
     said = []
     if repeated:
         said.append(f"channel names repeat and were numbered: {listed(repeated)}")
-    if counts[""]:
+    if counts[""] == 1:
+        said.append("1 channel has no name and was given one by its place")
+    elif counts[""]:
         said.append(f"{counts['']} channels have no name and were given one by their place")
     return tuple(unique), tuple(said)
 

@@ -109,7 +109,7 @@ def open_continuous(
     marks = _marks(raw, path, reader, progress=progress, stopped=stopped)
     if len(marks.events) == 0:
         raise InputError(
-            "has no events, so no trials can be cut",
+            "has no events, so no trials can be cut" + _why_none(said),
             f"put a table {path.stem.removesuffix('_eeg')}_events.tsv beside it, "
             "or add annotations or a trigger channel",
             path,
@@ -160,6 +160,12 @@ def _open_raw(path: Path, kind: str) -> Any:
     if kind == "brainvision":
         return io.read_raw_brainvision(path, preload=False, verbose=False)
     return io.read_raw_fif(path, preload=False, allow_maxshield=False, verbose=False)
+
+
+def _why_none(said: list[str]) -> str:
+    """Why a recording has no events, where the library met the reason."""
+    lost = [words for words in remarks(said) if words.startswith("the marker file")]
+    return f": {lost[0]}" if lost else ""
 
 
 def _check_size(raw: Any, path: Path) -> None:
@@ -225,6 +231,10 @@ def _marks(
     if table is not None:
         events, durations_s, said = read_events_table(table, sfreq_hz)
         listed_marks = sort_out(events, durations_s, sfreq_hz)
+        if len(listed_marks.events) == 0:
+            raise InputError(
+                "holds no event", "add a row for each event, its onset in seconds", table
+            )
         outside = check_inside(listed_marks.events, int(raw.n_times), sfreq_hz, table)
         return Marks(
             listed_marks.events,

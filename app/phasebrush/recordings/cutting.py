@@ -19,6 +19,7 @@ from phasebrush.recordings.quality import (
     data_warnings,
     marked_warnings,
     overlap_warnings,
+    rate_warnings,
 )
 from phasebrush.recordings.ready_cut import fill_from_ready
 from phasebrush.recordings.room import room_for
@@ -213,7 +214,7 @@ def _assemble(
     events = recording.events.rows(plan.rows[keep])
     names = tuple(recording.eeg_names[pick] for pick in plan.picks)
     lost = int(np.count_nonzero(~keep))
-    said = [*recording.warnings, *plan.reasons]
+    said = [*recording.warnings, *rate_warnings(recording.sfreq_hz), *plan.reasons]
     said += [unusable_line(name, why) for name, why in recording.unusable.items()]
     if lost:
         holds = "1 trial holds" if lost == 1 else f"{lost} trials hold"

@@ -7,6 +7,7 @@ size in bytes, and where the next tag is (0: right behind, -1: none).
 from __future__ import annotations
 
 import gzip
+import math
 import struct
 import zlib
 from pathlib import Path
@@ -24,6 +25,10 @@ BLOCK_START = 104
 ID_TYPE = 31
 RAW_BLOCKS = frozenset({102, 112, 119})
 EPOCHS_BLOCK = 373
+CHANNEL_COUNT = 200
+SAMPLING_RATE = 201
+_LOOKED_AT = frozenset({BLOCK_START, CHANNEL_COUNT, SAMPLING_RATE})
+_MOST_CHANNELS = 10_000
 _AGAIN = "copy or export the file again"
 _BITE = 64 * 2**20
 _MOST_GROWTH = 200
@@ -117,10 +122,14 @@ def what_fif_holds(path: Path) -> str:
     try:
         with open_fif(path) as stream:
             for tag in tags(stream):
-                if tag.kind != BLOCK_START or tag.size != 4:
+                if tag.kind not in _LOOKED_AT or tag.size != 4:
                     continue
                 stream.seek(tag.offset)
-                block = struct.unpack(">i", stream.read(4))[0]
+                data = stream.read(4)
+                if tag.kind != BLOCK_START:
+                    _check_number(tag.kind, data, path)
+                    continue
+                block = struct.unpack(">i", data)[0]
                 if block == EPOCHS_BLOCK:
                     holds = "epochs"
                 elif block in RAW_BLOCKS and holds == "neither":
@@ -134,3 +143,15 @@ def what_fif_holds(path: Path) -> str:
     except OSError as fault:
         raise unreadable(fault, path) from fault
     return holds
+
+
+def _check_number(kind: int, data: bytes, path: Path) -> None:
+    """Refuse a number of channels or a sampling rate that no recording has."""
+    if kind == CHANNEL_COUNT:
+        count = struct.unpack(">i", data)[0]
+        if not 1 <= count <= _MOST_CHANNELS:
+            raise InputError(f"its header gives {count} channels", _AGAIN, path)
+        return
+    rate_hz = struct.unpack(">f", data)[0]
+    if not (math.isfinite(rate_hz) and rate_hz > 0):
+        raise InputError(f"its header gives a sampling rate of {rate_hz:g} Hz", _AGAIN, path)

@@ -39,5 +39,5 @@ def check_complete(path: Path, kind: str) -> Checked:
     if kind == "bdf":
         return check_edf(path, 3)
     if kind == "brainvision":
-        return check_brainvision(path)
+        check_brainvision(path)
     return Checked()

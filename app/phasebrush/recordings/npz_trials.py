@@ -251,7 +251,15 @@ def _rate(path: Path, times_s: NDArray[np.float64], given: NDArray[Any] | None) 
     with np.errstate(over="ignore", invalid="ignore"):  # times of 1e308 s are refused below
         steps = np.diff(times_s)
         step = float(times_s[-1] - times_s[0]) / (len(times_s) - 1)
+        rising = bool((steps > 0).all())
         even = 0 < step < _LONGEST_STEP_S and np.abs(steps - step).max() <= _EVEN * step
+    if not rising:
+        raise InputError(
+            f"times_s does not rise from sample to sample (steps {steps.min():.6g} to "
+            f"{steps.max():.6g} s)",
+            "store seconds from the event, one after the other",
+            path,
+        )
     if not even:
         raise InputError(
             f"times_s is not evenly spaced (steps {steps.min():.6g} to {steps.max():.6g} s)",

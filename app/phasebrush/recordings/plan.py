@@ -149,6 +149,7 @@ def plan_cut(recording: Recording, cut: Cut, *, allow_none: bool = False) -> Pla
     grid, times_s, skipped = trial_grid(recording, cut, wide_s)
     rows, reasons = _fitting(recording, chosen, grid)
     if len(rows) == 0 and not allow_none:
+        _check_length(recording, wide_s, grid)
         raise InputError(
             f"no trials are left ({'; '.join(reasons) or 'no event has a chosen label'})",
             "choose other labels or a shorter window",
@@ -166,6 +167,17 @@ def plan_cut(recording: Recording, cut: Cut, *, allow_none: bool = False) -> Pla
         n_chosen=len(chosen),
         reasons=reasons,
     )
+
+
+def _check_length(recording: Recording, wide_s: tuple[float, float], grid: Grid) -> None:
+    """Say it where no trial could ever fit in."""
+    if recording.continuous and grid.need_stop - grid.need_start > recording.n_samples:
+        raise InputError(
+            f"a trial of {wide_s[0]:g} to {wide_s[1]:g} s, margins included, is longer than the "
+            f"recording ({recording.duration_s:g} s)",
+            "choose a shorter window",
+            recording.path,
+        )
 
 
 def _chosen(recording: Recording, cut: Cut) -> NDArray[np.intp]:

@@ -19,6 +19,7 @@ if TYPE_CHECKING:
 # Common practice, no source: scalp EEG spans some 10 to 200 microvolts in a trial.
 SMALLEST_UV = 0.05
 LARGEST_UV = 5_000.0
+_SLOWEST_HZ, _FASTEST_HZ = 20.0, 100_000.0
 IMPOSSIBLE_UV = 1e9
 """A thousand volts: no amplifier gives it, and sums of its squares lose their digits."""
 # A channel is flat when it spans less than this part of what the others span: an absolute
@@ -113,6 +114,14 @@ def marked_warnings(
     if n_crossed:
         said.append(_count(n_crossed, "runs", "run", "across an interruption of the recording"))
     return tuple(said)
+
+
+def rate_warnings(sfreq_hz: float) -> tuple[str, ...]:
+    """Warn of a sampling rate that no EEG has: then times are in another unit than seconds."""
+    if _SLOWEST_HZ <= sfreq_hz <= _FASTEST_HZ:
+        return ()
+    much = "low" if sfreq_hz < _SLOWEST_HZ else "high"
+    return (f"the sampling rate is {sfreq_hz:g} Hz, very {much} for EEG: check the unit of time",)
 
 
 def overlap_warnings(
