@@ -56,7 +56,8 @@ CASES = (
     Case("a sampling interval of 0", brainvision({"Interval=10000": "Interval=0"}),
          refused="its header gives no sampling interval above 0 (SamplingInterval=, microseconds, "
                  f"with a decimal point); {_REPAIR}"),
-    Case("a sampling interval with a decimal comma", brainvision({"Interval=10000": "Interval=10000,0"}),
+    Case("a sampling interval with a decimal comma",
+         brainvision({"Interval=10000": "Interval=10000,0"}),
          refused="its header gives no sampling interval above 0 (SamplingInterval=, microseconds, "
                  f"with a decimal point); {_REPAIR}"),
     Case("a resolution with a decimal comma", brainvision({"Ch2=Cz,,1,": "Ch2=Cz,,0,1,"}),
@@ -70,8 +71,8 @@ CASES = (
          refused="its header names no number format that is known (BinaryFormat=); export it as "
                  "one of INT_16, UINT_16, INT_32, IEEE_FLOAT_32"),
     Case("microvolts called volts", brainvision({"µV": "V"}),
-         warned="a trial typically spans 112,061,312 µV from peak to peak, far more than EEG (5,000 "
-                "µV); check the unit in the file"),
+         warned="a trial typically spans 112,061,312 µV from peak to peak, far more than EEG "
+                "(5,000 µV); check the unit in the file"),
     Case("a unit that is none", brainvision({"µV": "furlong"}),
          warned="no channel is marked as EEG; taken as EEG by name: Fp1, Cz, Oz"),
     Case("a marker without a position",

@@ -2,11 +2,25 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from case import Case
-from good_files import edf
+from good_files import ONSETS_S, edf
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 _AGAIN = "copy or export the file again"
 _REPAIR = "export the recording again"
+
+
+def _slipped(folder: Path) -> Path:
+    """One byte too many in the patient field: all later fields and samples are moved."""
+    path = edf()(folder)
+    content = path.read_bytes()
+    path.write_bytes(content[:90] + b"x" + content[90:])
+    return path
+
 
 CASES = (
     Case("ends inside its first header", edf(part=0.001),
@@ -42,13 +56,16 @@ CASES = (
     Case("an interrupted recording", edf({"reserved": "EDF+D"}),
          refused="is an interrupted (EDF+D) recording, whose event times cannot be placed; save it "
                  "as a continuous one (EDF+C)"),
-    Case("a header that slipped by a byte", edf({"version": "0 ", "patient": "x" * 80, "records": ""}),
+    Case("no number of records", edf({"records": ""}),
          refused=f"has a damaged header; {_AGAIN}"),
+    Case("a header that slipped by a byte", _slipped,
+         warned="the file goes on for 1 byte behind its last whole data record: left out"),
     Case("a physical minimum in words", edf(signal={(1, "physical minimum"): "low"}),
          refused=f"its header gives signal 2 a physical minimum that is no number; {_REPAIR}"),
     Case("an infinite physical maximum", edf(signal={(1, "physical maximum"): "inf"}),
          refused=f"its header gives signal 2 a physical maximum that is no number; {_REPAIR}"),
-    Case("decimal commas in the header", edf(signal={(i, "physical maximum"): "400,0" for i in range(3)}),
+    Case("decimal commas in the header",
+         edf(signal={(i, "physical maximum"): "400,0" for i in range(3)}),
          loaded=lambda trials: abs(float(trials.data_uv.std()) - 20) < 1),
     Case("no samples in a record", edf(signal={(1, "samples"): "0"}),
          refused=f"its header gives signal 2 0 samples in a record; {_REPAIR}"),
@@ -73,7 +90,11 @@ CASES = (
                 "raised to the fastest"),
     Case("annotations but no signals", edf(names=()),
          refused="holds annotations but no signals; open the recording itself"),
+    Case("annotations in Latin-1", edf(label="grün", encoding="latin-1"),
+         loaded=lambda trials: set(trials.labels) == {"grün"}),
+    Case("annotations before and after the recording", edf(notes=(-2.0, *ONSETS_S, 45.0)),
+         warned="some annotations lie outside the recording and were left out"),
     Case("a channel without a unit", edf(signal={(i, "unit"): "" for i in range(3)}),
-         warned="a trial typically spans 112,062,256 µV from peak to peak, far more than EEG (5,000 "
-                "µV); check the unit in the file"),
+         warned="a trial typically spans 112,062,256 µV from peak to peak, far more than EEG "
+                "(5,000 µV); check the unit in the file"),
 )  # fmt: skip

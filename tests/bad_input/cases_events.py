@@ -50,7 +50,8 @@ CASES = (
          refused="has a blank or repeated column name (BIDS allows neither); rename the column"),
     Case("a table in UTF-16", table(rows(*ONSETS_S).encode("utf-16")), about=_TABLE,
          refused="is not UTF-8 text; save the table as UTF-8"),
-    Case("a table in Latin-1", table("onset\ttrial_type\n4\tgrün\n".encode("latin-1")), about=_TABLE,
+    Case("a table in Latin-1", table("onset\ttrial_type\n4\tgrün\n".encode("latin-1")),
+         about=_TABLE,
          refused="is not UTF-8 text; save the table as UTF-8"),
     Case("an onset in words", table(rows(4, "soon")), about=_TABLE,
          refused="the onset of event 2 is not a number (onsets are seconds from the start); "

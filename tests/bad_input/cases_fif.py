@@ -62,7 +62,8 @@ CASES = (
          refused=f"cannot be read as FIF (<...>); {_READ}"),
     Case("FIF with a sampling rate of 0", fif(_put(SFREQ, 16, struct.pack(">f", 0.0))),
          refused=f"its header gives a sampling rate of 0 Hz; {_AGAIN}"),
-    Case("FIF with a sampling rate that is no number", fif(_put(SFREQ, 16, struct.pack(">f", float("nan")))),
+    Case("FIF with a sampling rate that is no number",
+         fif(_put(SFREQ, 16, struct.pack(">f", float("nan")))),
          refused=f"its header gives a sampling rate of nan Hz; {_AGAIN}"),
     Case("FIF with a negative sampling rate", fif(_put(SFREQ, 16, struct.pack(">f", -100.0))),
          refused=f"its header gives a sampling rate of -100 Hz; {_AGAIN}"),
@@ -101,17 +102,18 @@ CASES = (
     Case("flat channels only", raw_fif(np.zeros((3, 3000))),
          warned="3 channels are flat in most trials: Fp1, Cz, Oz"),
     Case("microvolts stored as volts", raw_fif(noise_uv()),
-         warned="a trial typically spans 112,061,312 µV from peak to peak, far more than EEG (5,000 "
-                "µV); check the unit in the file"),
+         warned="a trial typically spans 112,061,312 µV from peak to peak, far more than EEG "
+                "(5,000 µV); check the unit in the file"),
     Case("volts stored a million times too small", raw_fif(noise_uv() * 1e-12),
-         warned="a trial typically spans 0.00011 µV from peak to peak, far less than EEG (0.05 µV); "
-                "check the unit in the file"),
+         warned="a trial typically spans 0.00011 µV from peak to peak, far less than EEG (0.05 "
+                "µV); check the unit in the file"),
     Case("voltages of a power plant", raw_fif(noise_uv() * 1e4),
          refused="its voltages reach 7.24e+11 µV, which no amplifier gives; check the unit or the "
                  "export"),
     Case("one channel", raw_fif(_volts()[2:], NAMES[2:]),
          loaded=lambda trials: trials.ch_names == ("Oz",)),
-    Case("one trial", raw_fif(_volts(), onsets=ONSETS_S[:1]), loaded=lambda trials: len(trials) == 1),
+    Case("one trial", raw_fif(_volts(), onsets=ONSETS_S[:1]),
+         loaded=lambda trials: len(trials) == 1),
     Case("overlapping trials", raw_fif(_volts(), onsets=tuple(4 + 0.5 * k for k in range(20))),
          warned="19 trials share more than half of the window with the trial before; tests take "
                 "trials as independent"),

@@ -3,10 +3,13 @@
 from __future__ import annotations
 
 import gzip
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 from case import Case
-from good_files import brainvision, edf, file, fif, joined, npz
+from good_files import brainvision, edf, fif, file, joined, npz
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 _AGAIN = "copy or export the file again"
 _KNOWN = "open a BrainVision header (.vhdr), .edf, .bdf, .fif or .npz file"

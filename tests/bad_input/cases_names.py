@@ -24,7 +24,8 @@ CASES = (
     Case("every channel without a name", brainvision({"Fp1,,": ",,", "Cz,,": ",,", "Oz,,": ",,"}),
          refused="its header gives no name to 3 channels; give each channel its own name in the "
                  "header"),
-    Case("a channel name twice in a BrainVision header", brainvision({"Cz,,": "Öz,,", "Oz,,": "Öz,,"}),
+    Case("a channel name twice in a BrainVision header",
+         brainvision({"Cz,,": "Öz,,", "Oz,,": "Öz,,"}),
          refused="its header gives the name 'Öz' to 2 channels; give each channel its own name in "
                  "the header"),
     Case("a name of 300 characters", npz(ch_names=np.array(["x" * 300, "Cz", "Oz"])),
@@ -50,7 +51,8 @@ CASES = (
          refused="there is no channel oz; ask for Oz"),
     Case("a channel that is not there", _named("Fp1", "Cz", "Oz"), words=("--channel", "Nz"),
          refused="there is no channel Nz; choose one of Fp1, Cz, Oz"),
-    Case("a channel that is no EEG", _named("EOG left", "Cz", "Oz"), words=("--channel", "EOG left"),
+    Case("a channel that is no EEG", _named("EOG left", "Cz", "Oz"),
+         words=("--channel", "EOG left"),
          refused="channel EOG left is no EEG, by its type or its name; choose one of Cz, Oz"),
     Case("a channel that holds no number is asked for",
          raw_fif(np.concatenate([noise_uv(2) * 1e-6, np.full((1, 3000), np.nan)])),

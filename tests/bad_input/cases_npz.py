@@ -4,11 +4,14 @@ from __future__ import annotations
 
 import io
 import zipfile
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 import numpy as np
 from case import Case
 from good_files import npz, trials_volts
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 _KEYS = "store data (trials x channels x samples, volts), times_s and ch_names"
 
@@ -90,8 +93,8 @@ CASES = (
     Case("a time twice", npz(times_s=_times((6, -0.75))),
          refused=f"times_s does not rise from sample to sample (steps 0 to 0.02 s); {_RISE}"),
     Case("a gap in the times", npz(times_s=np.where(np.arange(200) < 50, _times(), _times() + 1)),
-         refused="times_s is not evenly spaced (steps 0.01 to 1.01 s); store seconds from the event "
-                 "at one sampling rate"),
+         refused="times_s is not evenly spaced (steps 0.01 to 1.01 s); store seconds from the "
+                 "event at one sampling rate"),
     Case("times that are all the same", npz(times_s=np.zeros(200)),
          refused=f"times_s does not rise from sample to sample (steps 0 to 0 s); {_RISE}"),
     Case("times beyond all measure", npz(times_s=np.repeat([-1.7e308, 1.7e308], 100)),
@@ -114,9 +117,11 @@ CASES = (
              [trials_volts(11), np.full((1, 3, 200), np.nan)])),
          warned="1 trial holds samples that are no number and was left out"),
     Case("whole numbers in place of volts", npz(data=(trials_volts() * 1e6).astype("<i2")),
-         warned="a trial typically spans 111,500,000 µV from peak to peak, far more than EEG (5,000 "
-                "µV); check the unit in the file"),
-    Case("one trial in an archive", npz(data=trials_volts(1)), loaded=lambda trials: len(trials) == 1),
-    Case("one channel in an archive", npz(data=trials_volts(n_channels=1), ch_names=np.array(["Oz"])),
+         warned="a trial typically spans 111,500,000 µV from peak to peak, far more than EEG "
+                "(5,000 µV); check the unit in the file"),
+    Case("one trial in an archive", npz(data=trials_volts(1)),
+         loaded=lambda trials: len(trials) == 1),
+    Case("one channel in an archive",
+         npz(data=trials_volts(n_channels=1), ch_names=np.array(["Oz"])),
          loaded=lambda trials: trials.ch_names == ("Oz",)),
 )  # fmt: skip

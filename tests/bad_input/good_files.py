@@ -21,7 +21,6 @@ if TYPE_CHECKING:
 RATE_HZ, SECONDS = 100, 30
 NAMES = ("Fp1", "Cz", "Oz")
 ONSETS_S = tuple(float(at) for at in range(4, 26, 2))
-Make = "Callable[[Path], Path]"
 
 
 def noise_uv(n_channels: int = 3, seconds: int = SECONDS, rate_hz: int = RATE_HZ) -> np.ndarray:
@@ -32,7 +31,8 @@ def joined(*makers: Callable[[Path], Path]) -> Callable[[Path], Path]:
     """Several makers in a row; the first one's file is the one that is opened."""
 
     def make(folder: Path) -> Path:
-        return [maker(folder) for maker in makers][0]
+        first, *_others = (maker(folder) for maker in makers)
+        return first
 
     return make
 
@@ -78,6 +78,8 @@ def edf(
     uv: np.ndarray | None = None,
     part: float = 1.0,
     name: str = "a.edf",
+    label: str = "flash",
+    encoding: str = "utf-8",
 ) -> Callable[[Path], Path]:
     """An EDF+ file.
 
@@ -95,7 +97,8 @@ def edf(
             labels.append("EDF Annotations")
             last = len(names)
             fields |= {(last, "label"): labels[-1], (last, "samples"): str(NOTE_BYTES // 2),
-                       (last, "physical minimum"): "-1", (last, "physical maximum"): "1"}  # fmt: skip
+                       (last, "physical minimum"): "-1",
+                       (last, "physical maximum"): "1"}  # fmt: skip
         fields |= dict(signal or {})
         given = {"header bytes": str(256 * (len(labels) + 1)), "records": str(SECONDS),
                  "signals": str(len(labels)), **(head or {})}  # fmt: skip
@@ -112,7 +115,7 @@ def edf(
             for row, count in zip(digital, counts, strict=True):
                 whole += row[second * RATE_HZ :][:count].tobytes()
             if notes:
-                whole += _notes_of(second, notes)
+                whole += _notes_of(second, notes, label.encode(encoding))
         path = folder / name
         path.write_bytes(whole[: int(len(whole) * part)])
         return path
@@ -120,13 +123,13 @@ def edf(
     return make
 
 
-def _notes_of(second: int, notes: tuple[float, ...]) -> bytes:
+def _notes_of(second: int, notes: tuple[float, ...], label: bytes) -> bytes:
     """Time-stamped annotations of one record (EDF+, section 2.2)."""
-    text = f"+{second}\x14\x14\0"
+    text = f"+{second}\x14\x14\0".encode()
     for at in notes:
         if second == min(max(int(at), 0), SECONDS - 1):
-            text += f"{at:+g}\x14flash\x14\0"
-    return text.encode().ljust(NOTE_BYTES, b"\0")
+            text += f"{at:+g}\x14".encode() + label + b"\x14\0"
+    return text.ljust(NOTE_BYTES, b"\0")
 
 
 # -- BrainVision --------------------------------------------------------------------------------

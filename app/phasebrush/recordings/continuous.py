@@ -153,13 +153,22 @@ def open_continuous(
 
 def _open_raw(path: Path, kind: str) -> Any:
     io = library().io
-    if kind == "edf":
-        return io.read_raw_edf(path, preload=False, verbose=False)
-    if kind == "bdf":
-        return io.read_raw_bdf(path, preload=False, verbose=False)
+    if kind in {"edf", "bdf"}:
+        return _open_edf(io.read_raw_edf if kind == "edf" else io.read_raw_bdf, path)
     if kind == "brainvision":
         return io.read_raw_brainvision(path, preload=False, verbose=False)
     return io.read_raw_fif(path, preload=False, allow_maxshield=False, verbose=False)
+
+
+def _open_edf(read: Callable[..., Any], path: Path) -> Any:
+    """Annotations are UTF-8 (EDF+, section 2.2.3); many programs write Latin-1 all the same."""
+    try:
+        return read(path, preload=False, verbose=False)
+    except Exception as fault:
+        # The library wraps what it met in an exception of no kind of its own.
+        if not isinstance(fault.__cause__ or fault.__context__, UnicodeDecodeError):
+            raise
+    return read(path, encoding="latin1", preload=False, verbose=False)
 
 
 def _why_none(said: list[str]) -> str:

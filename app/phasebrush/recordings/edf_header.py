@@ -144,11 +144,18 @@ def _check_records(
     if there < 1 or there < n_records:
         promised = f"{n_records} data records" if n_records >= 0 else "data"
         raise InputError(f"is cut off: it holds {max(there, 0)} of {promised}", _AGAIN, path)
+    beyond = (size - header_bytes) % record_bytes
+    said = []
+    if beyond:
+        more = "1 byte" if beyond == 1 else f"{beyond:,} bytes"
+        said.append(f"the file goes on for {more} behind its last whole data record: left out")
     if n_records < 0:
-        return [f"the header gives no number of data records; the file holds {there}"]
-    if there > n_records:
-        return [f"the header gives {n_records} data records; the file holds {there}, all are taken"]
-    return []
+        said.append(f"the header gives no number of data records; the file holds {there}")
+    elif there > n_records:
+        said.append(
+            f"the header gives {n_records} data records; the file holds {there}, all are taken"
+        )
+    return said
 
 
 def _check_rates(signals: list[_Signal], record_s: float, path: Path) -> list[str]:

@@ -25,6 +25,13 @@ def free_bytes() -> int:
     return _installed() * 3 // 4
 
 
+def size_words(n_bytes: int) -> str:
+    """A number of bytes in words: ``3.2 GB``, ``0.4 MB``."""
+    if n_bytes >= 2**30:
+        return f"{n_bytes / 2**30:,.1f} GB"
+    return f"{n_bytes / 2**20:.2g} MB" if n_bytes < 2**24 else f"{n_bytes / 2**20:.0f} MB"
+
+
 def _available() -> int | None:
     try:
         text = _MEMINFO.read_text(encoding="ascii")

@@ -17,7 +17,7 @@ from phasebrush.recordings.bids import file_stem
 from phasebrush.recordings.channels import tidy_names
 from phasebrush.recordings.events import Events
 from phasebrush.recordings.library import faults_in_words
-from phasebrush.recordings.memory import free_bytes
+from phasebrush.recordings.memory import free_bytes, size_words
 from phasebrush.recordings.positions import standard_positions
 from phasebrush.recordings.recording import Recording
 from phasebrush.recordings.words import plain_text, shortened
@@ -218,7 +218,7 @@ def _check_room(path: Path, data: Member) -> None:
     if needed > free_bytes():
         what = "data in Fortran order needs" if data.fortran else "one trial needs"
         raise InputError(
-            f"{what} {needed / 2**30:,.1f} GB of memory, more than is free",
+            f"{what} {size_words(needed)} of memory, more than is free",
             "store fewer channels or shorter trials, one trial after the other (C order)",
             path,
         )

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from phasebrush.errors import InputError
-from phasebrush.recordings.memory import free_bytes
+from phasebrush.recordings.memory import free_bytes, size_words
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -43,7 +43,7 @@ def room_for(recording: Recording, plan: Plan) -> NDArray[np.float32]:
             most = min(most, n_bytes // 2)
     raise InputError(
         f"{shape[0]} trials of {shape[1]} channels and {shape[2]} samples need "
-        f"{n_bytes / 2**30:,.1f} GB, and there is room for {most / 2**30:,.1f} GB",
+        f"{size_words(n_bytes)}, and there is room for {size_words(most)}",
         _what_fits(shape, most),
         recording.path,
     )
