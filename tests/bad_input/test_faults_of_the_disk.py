@@ -153,7 +153,7 @@ def test_a_cut_that_does_not_fit_into_memory(tmp_path, monkeypatch, free, remedy
     cut = Cut(window_s=(-1.0, 1.0), baseline_s=None)
     line = refused(cut_trials, recording, cut)
     assert line.startswith(
-        "a.edf: 11 trials of 3 channels and 201 samples need 0.03 MB, and there is "
+        "a.edf: 11 trials of 3 channels and 201 samples need 0.025 MB, and there is "
     )
     assert remedy in line
 
@@ -162,7 +162,7 @@ def test_trials_that_do_not_fit_one_by_one(tmp_path, monkeypatch):
     """A sparse archive may stand for any size; the check comes before the first sample."""
     monkeypatch.setattr("phasebrush.recordings.npz_trials.free_bytes", lambda: 8000)
     assert refused(open_recording, npz()(tmp_path)) == (
-        "a.npz: one trial needs 0.01 MB of memory, more than is free; store fewer channels or "
+        "a.npz: one trial needs 0.0092 MB of memory, more than is free; store fewer channels or "
         "shorter trials, one trial after the other (C order)"
     )
     crosswise = npz(data=np.asfortranarray(trials_volts()))(tmp_path)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+import os
 import threading
 from dataclasses import dataclass
 from pathlib import Path
@@ -65,15 +66,20 @@ def data_files(path: str | Path) -> tuple[Path, ...]:
 
 def _brainvision_parts(header: Path) -> list[Path]:
     with header.open("rb") as stream:
-        text = stream.read(_HEADER_BYTES).decode("latin-1")
+        head = stream.read(_HEADER_BYTES)
+    try:
+        text = head.decode("utf-8-sig")
+    except UnicodeDecodeError:  # older headers are Latin-1
+        text = head.decode("latin-1")
     pairs = [line.partition("=") for line in text.splitlines() if not line.startswith(";")]
     named = {key.strip().lower(): value.strip() for key, _, value in reversed(pairs)}
     found = []
     for key in ("markerfile", "datafile"):
-        name = named.get(key, "").replace("$b", header.stem)
-        part = header.with_name(name.replace("\\", "/").rsplit("/", 1)[-1] or header.name)
-        if part != header and part.is_file():
-            found.append(part)
+        name = named.get(key, "").replace("$b", header.stem).replace("\\", "/").rsplit("/", 1)[-1]
+        part = os.path.join(header.parent, name)  # noqa: PTH118 - takes any name, as headers may
+        # As above: Path.is_file raises for names that the system cannot take.
+        if name != header.name and os.path.isfile(part):  # noqa: PTH113
+            found.append(Path(part))
     return found
 
 

@@ -125,12 +125,12 @@ class _Search:
         self._stopped = stopped
         self._near: dict[str, list[str]] | None = None
         # A place where one recording lies is no place to find another at.
-        self.taken = {kept.path for kept in workspace.recordings if Path(kept.path).is_file()}
+        self.taken = {kept.path for kept in workspace.recordings if _is_file(kept.path)}
 
     def find(self, kept: Kept, number: int) -> tuple[str | None, bool]:
         """The place of a recording (None if there is none), and whether it holds the same."""
         others = [place for place in (kept.elsewhere,) if place and place not in self.taken]
-        known = [place for place in (kept.path, *others) if Path(place).is_file()]
+        known = [place for place in (kept.path, *others) if _is_file(place)]
         first, same = self._best(kept, known, number)
         if first is not None:
             return first, same
@@ -193,6 +193,11 @@ class _Search:
                     elif entry.is_file():
                         yield Path(entry.path)
             level = below
+
+
+def _is_file(place: str) -> bool:
+    """Whether there is a file; no where the system cannot even take the name."""
+    return os.path.isfile(place)  # noqa: PTH113 - Path.is_file raises for a name that is too long
 
 
 def _entries(folder: Path) -> list[os.DirEntry[str]]:
