@@ -2,8 +2,13 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 from case import Case
 from good_files import brainvision
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 _AGAIN = "copy or export the file again"
 _REPAIR = "correct the header, or export the recording again"
@@ -11,6 +16,14 @@ _POSITIONS = (
     "line 7: a marker needs type, description, position and size, the last two as whole numbers; "
     "correct the line or take it out"
 )
+
+
+def _latin1_markers(folder: Path) -> Path:
+    path = brainvision()(folder)
+    markers = path.with_suffix(".vmrk")
+    markers.write_bytes(markers.read_bytes().replace(b"Mk2=Stimulus", b"Mk2=Gr\xfcn"))
+    return path
+
 
 CASES = (
     Case("the data file is missing", brainvision(leave_out=("eeg",)),
@@ -81,6 +94,19 @@ CASES = (
     Case("a marker at a position in words",
          brainvision(markers={"Mk2=Stimulus,S  1,401": "Mk2=Stimulus,S  1,soon"}),
          refused=_POSITIONS, about="a.vmrk"),
+    Case("markers in Latin-1", _latin1_markers, about="a.vmrk",
+         refused="line 7 is not UTF-8 text; save the file as UTF-8"),
+    Case("no orientation of the data", brainvision({"DataOrientation=MULTIPLEXED": ""}),
+         refused="its header says neither DataOrientation=MULTIPLEXED nor VECTORIZED; correct the "
+                 "header, or export the recording again"),
+    Case("a channel that is a name alone", brainvision({"Ch2=Cz,,1,µV": "Ch2=Cz"}),
+         refused="its header describes channel 2 by 1 values, not by name, reference, resolution "
+                 f"and unit; {_REPAIR}"),
+    Case("a data format that is not known", brainvision({"DataFormat=BINARY": "DataFormat=GOLD"}),
+         refused=f"its header says neither DataFormat=BINARY nor ASCII; {_REPAIR}"),
+    Case("a section twice", brainvision({"[Comment]": "[Common Infos]"}),
+         refused="has a header whose text is damaged: a section or a key is missing or comes twice; "
+                 "correct it, or export the recording again"),
     Case("markers beyond the end", brainvision(markers={",401,1,0": ",999999999,1,0"}),
          warned="some annotations lie outside the recording and were left out"),
     Case("a header with a byte-order mark and Windows line ends",

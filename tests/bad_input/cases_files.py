@@ -72,11 +72,9 @@ CASES = (
          file("a_raw.fif.gz", gzip.compress(bytes(200_000_000), 9)),
          refused=f"is damaged (it expands to more than 200 times its size); {_AGAIN}"),
     Case("no NumPy archive inside", file("a.npz", b"PK\x03\x04" + bytes(50)),
-         refused="cannot be read as NumPy archive (BadZipFile); check that the file is complete, "
-                 "or export it again"),
+         refused="is damaged or incomplete (no sound archive); copy or write it again"),
     Case("a NumPy archive that is cut off", lambda folder: _cut(npz()(folder), 0.6),
-         refused="cannot be read as NumPy archive (BadZipFile); check that the file is complete, "
-                 "or export it again"),
+         refused="is damaged or incomplete (no sound archive); copy or write it again"),
 )  # fmt: skip
 
 

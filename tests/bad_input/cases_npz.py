@@ -43,6 +43,15 @@ def _lying(shape: tuple[int, ...], *, dtype: str = "<f8", claim: bool):
     return make
 
 
+def _damaged(folder: Path) -> Path:
+    """A byte among the samples is another: only the archive's checksum knows."""
+    path = npz()(folder)
+    content = bytearray(path.read_bytes())
+    content[20_000] ^= 1
+    path.write_bytes(content)
+    return path
+
+
 def _claim(path: Path, size: int) -> None:
     """Overwrite the size that the archive's list gives for its last member (PKZIP 4.3.12)."""
     content = bytearray(path.read_bytes())
@@ -113,6 +122,8 @@ CASES = (
     Case("an archive that promises gigabytes", _lying((12, 3, 10_000_000), claim=True),
          refused="data is said to hold 2,880,000,128 bytes, which <...> bytes of file cannot give; "
                  "copy or write the archive again"),
+    Case("an archive with a byte changed", _damaged,
+         refused="is damaged or incomplete (no sound archive); copy or write it again"),
     Case("a trial that is no number", npz(data=np.concatenate(
              [trials_volts(11), np.full((1, 3, 200), np.nan)])),
          warned="1 trial holds samples that are no number and was left out"),

@@ -21,7 +21,12 @@ from phasebrush.model.workspace_file import workspace_bytes
 NAMES, RATE_HZ, SECONDS = ("Fp1", "Cz", "Oz"), 100, 16
 ONSETS_S = (3.0, 5.0, 7.0, 9.0, 11.0, 13.0)
 
-Files = dict[str, bytes]
+
+class Files(dict[str, bytes]):
+    """Files of a recording by name. A case that fails is left in the test's folder."""
+
+    def __repr__(self) -> str:
+        return ", ".join(f"{name} ({len(content)} bytes)" for name, content in self.items())
 
 
 def _volts() -> np.ndarray:
@@ -32,7 +37,7 @@ def _made(write) -> Files:
     """Names and bytes of the files that a function writes into a folder."""
     with tempfile.TemporaryDirectory() as folder:
         write(Path(folder))
-        return {file.name: file.read_bytes() for file in sorted(Path(folder).iterdir())}
+        return Files({file.name: file.read_bytes() for file in sorted(Path(folder).iterdir())})
 
 
 def _edf(folder: Path, *, bdf: bool) -> None:

@@ -50,7 +50,7 @@ def test_missing_empty_and_unknown(tmp_path):
     (tmp_path / "c.edf").write_bytes(bytes(range(256)) * 8)
     assert "is in no format known here; open a BrainVision header" in fault(tmp_path / "c.edf")
     (tmp_path / "d.npz").write_bytes(b"PK\x03\x04" + bytes(50))
-    assert "cannot be read as NumPy archive (BadZipFile)" in fault(tmp_path / "d.npz")
+    assert "is damaged or incomplete (no sound archive); copy" in fault(tmp_path / "d.npz")
 
 
 @pytest.mark.parametrize("bdf", [False, True])

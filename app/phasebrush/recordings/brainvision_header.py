@@ -51,6 +51,10 @@ def check_brainvision(path: Path) -> None:
     if not 1 <= n_channels <= _MOST_CHANNELS:
         raise InputError(f"its header gives {n_channels} channels", _REPAIR, path)
     _check_rate(entries, path)
+    if entries.get("dataorientation") not in {"MULTIPLEXED", "VECTORIZED"}:
+        raise InputError(
+            "its header says neither DataOrientation=MULTIPLEXED nor VECTORIZED", _REPAIR, path
+        )
     _check_data(entries, n_channels, data, path)
     markers = _part(entries, "markerfile", path)
     if markers is not None and markers.is_file():
@@ -129,7 +133,10 @@ def _check_data(entries: dict[str, str], n_channels: int, data: Path, path: Path
     size = data.stat().st_size
     if size == 0:
         raise InputError(f"its data file ({data.suffix}) is empty", _AGAIN, path)
-    if entries.get("dataformat", "BINARY").upper() != "BINARY":
+    form = entries.get("dataformat", "")
+    if form not in {"BINARY", "ASCII"}:
+        raise InputError("its header says neither DataFormat=BINARY nor ASCII", _REPAIR, path)
+    if form == "ASCII":
         return
     width = _BINARY.get(entries.get("binaryformat", ""))
     if width is None:
@@ -167,7 +174,14 @@ def _check_channels(entries: dict[str, str], n_channels: int, path: Path) -> Non
     _check_names([entries[f"ch{i + 1}"].split(",")[0] for i in range(n_channels)], path)
     for place in range(1, n_channels + 1):
         cells = entries[f"ch{place}"].split(",")
-        resolution, unit = (*cells, "", "", "")[2:4]
+        if len(cells) < 3:
+            raise InputError(
+                f"its header describes channel {place} by {len(cells)} values, not by name, "
+                "reference, resolution and unit",
+                _REPAIR,
+                path,
+            )
+        resolution, unit = (*cells, "")[2:4]
         if resolution.strip().isdecimal() and unit.strip().isdecimal():
             raise InputError(
                 f"its header gives channel {place} a resolution with a decimal comma",
@@ -192,12 +206,23 @@ def _check_names(names: list[str], path: Path) -> None:
             )
 
 
+def _utf8(line: bytes, number: int, markers: Path) -> str:
+    """The library reads markers in the code page of the system, which is UTF-8 nearly always."""
+    try:
+        return line.decode("utf-8")
+    except UnicodeDecodeError as fault:
+        raise InputError(
+            f"line {number} is not UTF-8 text", "save the file as UTF-8", markers
+        ) from fault
+
+
 def _check_markers(markers: Path) -> None:
     """Check that each marker has a position: ``Mk1=type,description,position,size,channel``."""
     if markers.stat().st_size > _LARGEST_TEXT:
         raise InputError("is far larger than a list of markers", _AGAIN, markers)
-    lines = markers.read_bytes().decode("latin-1").splitlines()
-    for number, line in enumerate(lines, 1):
+    lines = markers.read_bytes().splitlines()
+    for number, coded in enumerate(lines, 1):
+        line = _utf8(coded, number, markers)
         if not _MARKER.match(line):
             continue
         cells = line.split(",")

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import configparser
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -156,7 +157,14 @@ def _open_raw(path: Path, kind: str) -> Any:
     if kind in {"edf", "bdf"}:
         return _open_edf(io.read_raw_edf if kind == "edf" else io.read_raw_bdf, path)
     if kind == "brainvision":
-        return io.read_raw_brainvision(path, preload=False, verbose=False)
+        try:
+            return io.read_raw_brainvision(path, preload=False, verbose=False)
+        except configparser.Error as fault:
+            raise InputError(
+                "has a header whose text is damaged: a section or a key is missing or comes twice",
+                "correct it, or export the recording again",
+                path,
+            ) from fault
     return io.read_raw_fif(path, preload=False, allow_maxshield=False, verbose=False)
 
 

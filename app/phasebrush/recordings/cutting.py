@@ -107,7 +107,9 @@ def _filled(
 ) -> tuple[NDArray[np.float32], Filled]:
     """Make room for the trials and read them in."""
     data = room_for(recording, plan)
-    with faults_in_words(recording.path, recording.source.reader):
+    # Voltages beyond all measure are refused once all are there (`check_size`).
+    overflow = np.errstate(over="ignore", invalid="ignore")
+    with faults_in_words(recording.path, recording.source.reader), overflow:
         if recording.ready is None:
             filled = _fill_from_samples(recording, cut, plan, data, tell, stop)
         else:

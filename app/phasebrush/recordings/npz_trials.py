@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import zipfile
+import zlib
 from collections import Counter
+from contextlib import contextmanager
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -73,7 +75,7 @@ class NpzTrials:
         """Yield groups of trials, shape (trials, channels, samples), microvolts."""
         self._as_opened.check()
         rows = self._whole if self._data.fortran else self._streamed
-        with faults_in_words(self._path, _READER):
+        with faults_in_words(self._path, _READER), _damage_in_words(self._path):
             for values in rows(groups):
                 yield np.asarray(values, dtype=np.float64) * UV_PER_V
 
@@ -107,7 +109,7 @@ def open_npz(path: Path) -> Recording:
     InputError
         With the key that is missing or does not fit.
     """
-    with faults_in_words(path, _READER):
+    with faults_in_words(path, _READER), _damage_in_words(path):
         members = _members(path)
         _require(path, members)
         data = members["data"]
@@ -142,6 +144,17 @@ def open_npz(path: Path) -> Recording:
         ready=NpzTrials(path, data, times_s),
         warnings=(*warnings, "event times are not in the file; trials count as back to back"),
     )
+
+
+@contextmanager
+def _damage_in_words(path: Path) -> Iterator[None]:
+    """Say it plainly where the archive itself is broken: its list, its packing, a checksum."""
+    try:
+        yield
+    except (zipfile.BadZipFile, zlib.error, EOFError) as fault:
+        raise InputError(
+            "is damaged or incomplete (no sound archive)", "copy or write it again", path
+        ) from fault
 
 
 def _members(path: Path) -> dict[str, Member]:
