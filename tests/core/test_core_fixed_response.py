@@ -9,9 +9,9 @@ from scipy import integrate, special, stats
 
 from phasebrush.core.fixed_response import (
     fixed_response,
-    projected_normal_length,
     projections,
 )
+from phasebrush.core.projected_normal import projected_normal_length
 from phasebrush.core.slope_test import slope_on_rank
 from phasebrush.core.steps import step_of_trial
 
@@ -95,6 +95,12 @@ class TestSlope:
     def test_ties_share_their_rank(self):
         y = np.array([1.0, 2.0, 4.0, 8.0])
         assert slope_on_rank(y, np.array([1.0, 1.0, 2.0, 2.0])).slope_uv == pytest.approx(2.25)
+
+    def test_an_infinite_key_has_a_rank_and_a_missing_one_has_none(self):
+        y = np.array([1.0, 2.0, 4.0, 8.0])
+        least = slope_on_rank(y, np.array([-np.inf, 1.0, 2.0, 3.0]))
+        assert least == slope_on_rank(y, np.arange(4.0))
+        assert slope_on_rank(np.append(y, 3.0), np.append(np.arange(4.0), np.nan)) == least
 
     def test_no_slope_on_a_constant_key_or_two_trials(self):
         assert slope_on_rank(np.arange(5.0), np.ones(5)) is None

@@ -65,6 +65,21 @@ class TestReasons:
         found = phase_between(values, a, b)
         assert found.reason.startswith("A and B are not phase-locked")
 
+    def test_a_set_of_nobody(self):
+        values, a, b = two_sets(0, 30, 0.0, 2.0)
+        assert phase_between(values, a, b).reason == "A has no trial with a phase at the spot"
+        nobody = phase_between(values, a, a)
+        assert nobody.reason == "A and B have no trial with a phase at the spot"
+
+    def test_a_locked_set_too_small_for_an_interval(self):
+        """Four equal phases have a Rayleigh p of exp(sqrt(17) - 9) = 0.0076 (Wilkie 1983)."""
+        values, a, b = two_sets(4, 30, 0.0, 4.0)
+        values[a] = 1j
+        found = phase_between(values, a, b)
+        assert found.p_a == pytest.approx(np.exp(np.sqrt(17) - 9))
+        assert found.locked
+        assert found.reason == "A has 4 trials with a phase, an interval needs at least 5"
+
     @pytest.mark.parametrize("n_a", [0, 1, 4])
     def test_few_trials_have_no_interval(self, n_a):
         values, a, b = two_sets(n_a, 30, 0.0, 2.0)

@@ -63,7 +63,8 @@ def test_every_draw_as_a_loop_would_compute_it():
                 ppc[at, time] = np.mean(pairs)
         power = np.mean(np.abs(exact[drawn][:, 1:3]) ** 2, axis=0)
         ppcs.append(ppc.mean(axis=0))
-        itcs.append(np.sqrt(np.clip((1 + 16 * ppc) / 17, 0, 1)).mean(axis=0))
+        n_phase = np.count_nonzero(exact[:, 1:3], axis=0)
+        itcs.append(np.sqrt(np.clip((1 + (n_phase - 1) * ppc) / n_phase, 0, 1)).mean(axis=0))
         db = decibel(power, coefficients.times_s, coefficients.valid[1:3], BASELINE_S)
         dbs.append(db.mean(axis=0))
     for name, draws in (("ppc", ppcs), ("itc", itcs), ("power_db", dbs)):
@@ -122,6 +123,36 @@ class TestRules:
         )
         assert np.isnan(few.power_db_high).all()
         assert few.n == 4
+
+    @pytest.mark.parametrize("n", [5, 6])
+    def test_draws_of_one_trial_alone_do_not_take_the_band_away(self, n):
+        """Of 1,000 draws of 5 trials 1.6 are expected to hold one trial five times."""
+        counts = resample_counts(n, 1000, np.random.default_rng(1))
+        assert (counts.max(axis=1) == n).any()
+        found = trace_bands(
+            coefficients_of(invented(20)), np.arange(20) < n, rows(4, 1), baseline_s=BASELINE_S
+        )
+        assert (found.ppc_low < found.ppc_high).all()
+        assert (found.itc_low < found.itc_high).all()
+
+    def test_where_fewer_than_5_trials_have_a_phase_there_is_no_band_of_it(self):
+        values = invented(12)
+        values[:8, 1, 3] = 0
+        values[:7, 1, 4] = 0
+        found = trace_bands(
+            coefficients_of(values), np.ones(12, bool), rows(4, 1), baseline_s=BASELINE_S
+        )
+        assert np.isnan(found.itc_high[3])
+        assert np.isnan(found.ppc_low[3])
+        assert np.isfinite(found.itc_high[4])
+        assert np.isfinite(found.power_db_high[3])
+
+    def test_arrays_are_read_only(self):
+        found = trace_bands(
+            coefficients_of(invented(20)), np.ones(20, bool), rows(4, 1), baseline_s=BASELINE_S
+        )
+        with pytest.raises(ValueError, match="read-only"):
+            found.itc_low[0] = 0.0
 
     def test_without_a_baseline_there_is_phase_but_no_db(self):
         found = trace_bands(

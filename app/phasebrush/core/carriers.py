@@ -6,10 +6,10 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
-from scipy import optimize, special
 
-from phasebrush.core.phase import chance_itc, itc_from_sums, ppc, unit_phasors
+from phasebrush.core.phase import chance_itc, itc_from_sums, unit_phasors
 from phasebrush.core.resample import BAND_PERCENT
+from phasebrush.core.von_mises import concentration
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -23,7 +23,6 @@ MOST_LEFT_OUT = 0.9
 POINTS = 46
 FEWEST_TRIALS = 10
 PHASES_AT_ONCE = 1_000_000
-LARGEST_LENGTH = 0.9999
 
 
 @dataclass(frozen=True, eq=False)
@@ -47,6 +46,9 @@ class Carriers:
     share : float
         Share to leave out until ITC is within chance; 0 where it is from the start, NaN where
         it never is.
+    even_share : tuple of float
+        The same for evenly aligned phases: 2.5th percentile, median, 97.5th percentile; 1 where
+        it never is.
     sharpness : float
         Second cosine moment: mean of cos 2(phi - mean phase) (Mardia & Jupp 2000, Directional
         Statistics, section 2.3; from memory).
@@ -67,6 +69,7 @@ class Carriers:
     even_high: Floats
     n: int
     share: float
+    even_share: tuple[float, float, float]
     sharpness: float
     even_sharpness: tuple[float, float, float]
     draws: int
@@ -93,7 +96,7 @@ class Carriers:
         found = f"second cosine moment {self.sharpness:.2f}, evenly aligned {low:.2f} to {high:.2f}"
         start = (
             f"Without the {100 * self.share:.0f} % of the trials that are most aligned, ITC is "
-            "within chance. "
+            f"within chance ({_share_words(self.even_share)} if all were aligned alike). "
         )
         if self.sharpness > high:
             return start + (
@@ -148,11 +151,12 @@ def carriers(
     counts = counts[counts <= max(n - 2, 0)]
     itc = fallen(units[None], counts)[0] if n else np.full(counts.size, np.nan)
     chance = np.asarray(chance_itc(n - counts), np.float64).reshape(-1)
-    kappa = _concentration(float(itc[0]), n)
+    kappa = concentration(float(itc[0]), n)
     rng = [np.random.default_rng([seed, stream]) for stream in (0, 1)]
     random, _ = _drawn(lambda size: rng[0].uniform(-np.pi, np.pi, size), n, draws, counts)
     even, peaks = _drawn(lambda size: rng[1].vonmises(0.0, kappa, size), n, draws, counts)
-    low, middle, high = np.percentile(peaks, (BAND_PERCENT[0], 50.0, BAND_PERCENT[1]))
+    # A curve that never is within chance counts as the largest share: NaN would hide it.
+    even_shares = np.nan_to_num(_share(even, chance, counts, n), nan=1.0)
     random_low, random_high = np.percentile(random, BAND_PERCENT, axis=0)
     even_low, even_high = np.percentile(even, BAND_PERCENT, axis=0)
     return Carriers(
@@ -168,7 +172,8 @@ def carriers(
         n=n,
         share=float(_share(itc[None], chance, counts, n)[0]),
         sharpness=float(second_moment(units[None])[0]) if n else float("nan"),
-        even_sharpness=(float(low), float(middle), float(high)),
+        even_share=_spread(even_shares),
+        even_sharpness=_spread(peaks),
         draws=draws,
         seed=seed,
     )
@@ -228,14 +233,13 @@ def _share(curves: Floats, chance: Floats, counts: NDArray[np.intp], n: int) -> 
     return np.where(within.any(axis=1), counts[first] / max(n, 1), np.nan)
 
 
-def _concentration(itc: float, n: int) -> float:
-    """Von Mises concentration whose mean resultant length squared is the PPC of the trials."""
-    square = float(ppc(itc, n))
-    length = min(float(np.sqrt(square)) if square > 0.0 else 0.0, LARGEST_LENGTH)
-    if length < 1e-6:
-        return 0.0
+def _spread(draws: Floats) -> tuple[float, float, float]:
+    """2.5th percentile, median and 97.5th percentile."""
+    low, middle, high = np.percentile(draws, (BAND_PERCENT[0], 50.0, BAND_PERCENT[1]))
+    return float(low), float(middle), float(high)
 
-    def excess(kappa: float) -> float:
-        return float(special.i1e(kappa) / special.i0e(kappa)) - length
 
-    return float(optimize.brentq(excess, 1e-9, 1e5))
+def _share_words(shares: tuple[float, float, float]) -> str:
+    low, _middle, high = shares
+    end = f"{100 * high:.0f} %" if high < 1.0 else f"more than {100 * MOST_LEFT_OUT:.0f} %"
+    return f"{100 * low:.0f} to {end}"

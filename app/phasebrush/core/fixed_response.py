@@ -6,9 +6,10 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
-from scipy import special, stats
+from scipy import stats
 
 from phasebrush.core.phase import itc_from_sums, rayleigh_p, unit_phasors
+from phasebrush.core.projected_normal import projected_normal_length
 from phasebrush.core.slope_test import SlopeTest, slope_on_rank
 
 if TYPE_CHECKING:
@@ -39,7 +40,7 @@ class StepCheck:
     itc : float
         ITC as measured.
     predicted_itc : float
-        ITC of a response of fixed shape on this step's background.
+        ITC of a response of fixed shape on this step's background, of endlessly many trials.
     """
 
     n: int
@@ -47,6 +48,19 @@ class StepCheck:
     band_uv: float
     itc: float
     predicted_itc: float
+
+    @property
+    def expected_itc(self) -> float:
+        """The predicted ITC as n trials would show it, chance included: what to hold ITC against.
+
+        sqrt( rho^2 + (1 - rho^2) / n ), from E[ITC^2] of n independent phases of mean resultant
+        length rho (Vinck et al. 2010, NeuroImage 51:112-122: PPC is without bias); 0.14 and not
+        0 for no response and 48 trials.
+        """
+        if self.n < 1:
+            return float("nan")
+        square = self.predicted_itc**2
+        return float(np.sqrt(square + (1.0 - square) / self.n))
 
 
 @dataclass(frozen=True)
@@ -161,7 +175,7 @@ def fixed_response(
         line_uv=float(y.mean()) if n else float("nan"),
         n=n,
         rayleigh_p=p,
-        slope=None if withheld else slope_on_rank(y, key),
+        slope=slope,
         withheld=withheld,
     )
 
@@ -184,31 +198,6 @@ def projections(values: Complexes) -> Floats:
     known = lengths > 0.0
     directions = np.where(known, np.conj(others) / np.where(known, lengths, 1.0), np.nan)
     return np.asarray((values * directions).real)
-
-
-def projected_normal_length(g: Floats | float) -> Floats:
-    """Mean resultant length of a projected normal distribution.
-
-    rho(g) = sqrt(pi g / 2) exp(-g) ( I0(g) + I1(g) ), g = |M|^2 / (2 P_res) with P_res the mean
-    |X - M|^2: phases of a fixed M plus circular complex Gaussian background (Kendall 1974, J R
-    Stat Soc B 36:365-417; Mardia & Jupp 2000, Directional Statistics, section 3.5.6). With
-    scaled Bessel functions, as exp(-g) I0(g) alone would overflow.
-
-    Parameters
-    ----------
-    g : float or ndarray of float64
-        0 or more; infinite for no background.
-
-    Returns
-    -------
-    ndarray of float64
-        0 to 1.
-    """
-    g = np.asarray(g, np.float64)
-    finite = np.isfinite(g)
-    safe = np.where(finite, g, 0.0)
-    rho = np.sqrt(np.pi * safe / 2.0) * (special.ive(0, safe) + special.ive(1, safe))
-    return np.where(finite, rho, np.where(np.isnan(g), np.nan, 1.0))[()]
 
 
 def _step(values: Complexes, y: Floats, inside: NDArray[np.bool_]) -> StepCheck:

@@ -44,21 +44,22 @@ def slope_on_rank(y: Floats, key_values: Floats) -> SlopeTest | None:
 
     HC3 divides each residual by 1 - h, h its leverage: near-unbiased where the spread of y
     depends on the key (MacKinnon & White 1985, J Econometrics 29:305-325; Long & Ervin 2000,
-    Am Stat 54:217-224; from memory). Equal values share their mean rank.
+    Am Stat 54:217-224; from memory). Equal values share their mean rank; an infinite one (the
+    decibels of no power) has a rank like any other.
 
     Parameters
     ----------
     y : ndarray of float64, shape (N,)
         The quantity, microvolts.
     key_values : ndarray of float64, shape (N,)
-        The key.
+        The key; trials without a value (NaN) are left out.
 
     Returns
     -------
     SlopeTest or None
         None where all keys are equal or there are fewer than 3 trials.
     """
-    known = np.isfinite(y) & np.isfinite(key_values)
+    known = np.isfinite(y) & ~np.isnan(key_values)
     y, ranks = y[known], stats.rankdata(key_values[known])
     n = len(y)
     spread = ranks.std() if n else 0.0

@@ -8,7 +8,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from phasebrush.core.coefficients import between
-from phasebrush.core.resample import BAND_PERCENT, FEWEST_FOR_BAND, resample_counts
+from phasebrush.core.resample import (
+    BAND_PERCENT,
+    FEWEST_FOR_BAND,
+    percentile_band,
+    resample_counts,
+)
 from phasebrush.errors import JobStopped
 
 if TYPE_CHECKING:
@@ -70,6 +75,12 @@ def trace_bands(
     pairs of different trials count for PPC, and ITC is carried over from PPC at this n, as
     `phasebrush.core.steps.steps_at` explains. Each draw has its own dB baseline.
 
+    Coverage on made-up trials (524 time points each, bands of 1 and of 4 frequencies, von Mises
+    phases of concentration 0, 1 and 4, exponential power): PPC and ITC 0.88 to 1.00 at n = 20,
+    0.92 to 1.00 at n = 40, 0.93 to 1.00 at n = 100, high where there is hardly any alignment;
+    dB 0.88 to 0.92, 0.91 to 0.94 and 0.91 to 0.95. Below 5 trials, or 5 with a phase, there are
+    no bands.
+
     Parameters
     ----------
     coefficients : Coefficients
@@ -112,16 +123,13 @@ def trace_bands(
             raise JobStopped
         block = values[trials, row]
         in_baseline = valid[row] & between(times_s, *baseline_s)
-        sums[0] += (ppc := _ppc(counts, squares, block))
-        sums[1] += np.sqrt(np.clip((1.0 + (n - 1) * ppc) / n, 0.0, 1.0))
+        ppc, itc = _alignment(counts, squares, block)
+        sums[0] += ppc
+        sums[1] += itc
         sums[2] += _decibel(counts, block, in_baseline)
     sums /= rows.size
     trusted = np.logical_and.reduce(valid[rows], axis=0)
-    sums[:, :, ~trusted] = np.nan
-    ends = np.full((2, 3, n_times), np.nan)
-    if trusted.any():
-        ends[:, :, trusted] = np.percentile(sums[:, :, trusted], BAND_PERCENT, axis=1)
-    return _band(ends, n, draws, seed)
+    return _band(_ends(sums, trusted), n, draws, seed)
 
 
 def _band(ends: Floats, n: int, draws: int, seed: int) -> TraceBand:
@@ -140,10 +148,23 @@ def _band(ends: Floats, n: int, draws: int, seed: int) -> TraceBand:
     )
 
 
-def _ppc(
+def _ends(sums: NDArray[np.float32], trusted: Mask) -> Floats:
+    """Percentiles over draws, shape (2, 3, T); draws without a value are left out."""
+    ends = np.full((2, len(sums), trusted.size), np.nan)
+    if not trusted.any():
+        return ends
+    ends[:, :, trusted] = np.percentile(sums[:, :, trusted], BAND_PERCENT, axis=1)
+    # Of few trials a draw may hold one alone, which has no pair: one such draw of a thousand
+    # must not take the band away.
+    for kind, column in np.argwhere(np.isnan(ends[0]) & trusted):
+        ends[:, kind, column] = percentile_band(sums[kind, :, column].astype(np.float64))
+    return ends
+
+
+def _alignment(
     counts: NDArray[np.float32], squares: NDArray[np.float32], block: NDArray[np.complex64]
-) -> NDArray[np.float32]:
-    """PPC of every draw over pairs of different trials, shape (draws, T)."""
+) -> tuple[NDArray[np.float32], NDArray[np.float32]]:
+    """PPC of every draw over pairs of different trials, and the ITC it stands for, (draws, T)."""
     lengths = np.abs(block)
     has_phase = lengths > 0.0
     lengths[~has_phase] = 1.0
@@ -156,8 +177,12 @@ def _ppc(
         phases = has_phase.astype(np.float32)
         drawn, with_itself = counts @ phases, squares @ phases
     pairs = np.square(drawn) - with_itself
+    n_phase = np.count_nonzero(has_phase, axis=0).astype(np.float32)
+    known = (pairs > 0.5) & (n_phase >= FEWEST_FOR_BAND)
     with np.errstate(invalid="ignore", divide="ignore"):
-        return np.where(pairs > 0.5, (resultant - with_itself) / pairs, np.nan)
+        ppc = np.where(known, (resultant - with_itself) / pairs, np.float32(np.nan))
+    n_phase = np.maximum(n_phase, 1.0)
+    return ppc, np.sqrt(np.clip((1.0 + (n_phase - 1.0) * ppc) / n_phase, 0.0, 1.0))
 
 
 def _decibel(
