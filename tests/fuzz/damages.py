@@ -88,6 +88,46 @@ def edf_fields(draw: DrawFn) -> Files:
     return Files({"a.edf": bytes(content)})
 
 
+def _tags(content: bytes) -> list[bytes]:
+    """A FIF file as its row of tags; each tells its size in its third number (big-endian)."""
+    found, at = [], 0
+    while at < len(content):
+        size = 16 + int.from_bytes(content[at + 8 : at + 12], "big")
+        found.append(content[at : at + size])
+        at += size
+    return found
+
+
+@st.composite
+def fif_tags(draw: DrawFn) -> Files:
+    """A FIF file whose row of tags is sound, but not what is in them.
+
+    The directory at the end and the pointers to it no longer fit once a size has changed, as in
+    files that were put together by hand.
+    """
+    name = draw(st.sampled_from(("a_raw.fif", "a_epo.fif")))
+    tags = _tags(sound("FIF" if name == "a_raw.fif" else "epochs")[name])
+    for _ in range(draw(st.integers(1, 3))):
+        at = draw(st.integers(1, len(tags) - 2))
+        tag = bytearray(tags[at])
+        how = draw(st.sampled_from(("data", "data", "data", "number", "kind", "lose", "double")))
+        if how == "data" and len(tag) > 16:
+            place = draw(st.integers(16, len(tag) - 1))
+            piece = draw(st.binary(min_size=1, max_size=8))[: len(tag) - place]
+            tag[place : place + len(piece)] = piece
+        elif how == "number" and len(tag) >= 20:
+            value = draw(st.sampled_from((-1, 0, 1, 2, 1000, 2**31 - 1, -(2**31), 0x7FC00000)))
+            tag[16:20] = value.to_bytes(4, "big", signed=True)
+        elif how == "kind":
+            tag[:8] = tags[draw(st.integers(0, len(tags) - 1))][:8]
+        elif how == "lose":
+            tag = bytearray()
+        else:
+            tag *= 2
+        tags[at] = bytes(tag)
+    return Files({name: b"".join(tags)})
+
+
 @st.composite
 def brainvision_lines(draw: DrawFn) -> Files:
     """A BrainVision recording with values of its texts put wrong, or lines lost or doubled."""
