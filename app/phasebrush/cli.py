@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import os
 import re
 import sys
 from dataclasses import dataclass
@@ -106,7 +107,8 @@ def _open_arguments(parser: argparse.ArgumentParser) -> None:
 def _run_open(arguments: argparse.Namespace) -> int:
     from phasebrush.gui.application import Wish, run
 
-    if arguments.path and not Path(arguments.path).exists():
+    # Path.exists raises for names that the system cannot take.
+    if arguments.path and not os.path.exists(arguments.path):  # noqa: PTH110
         raise InputError("there is no such file or folder", "check the path", arguments.path)
     wish = Wish(
         path=arguments.path,

@@ -105,8 +105,8 @@ CASES = (
     Case("a data format that is not known", brainvision({"DataFormat=BINARY": "DataFormat=GOLD"}),
          refused=f"its header says neither DataFormat=BINARY nor ASCII; {_REPAIR}"),
     Case("a section twice", brainvision({"[Comment]": "[Common Infos]"}),
-         refused="has a header whose text is damaged: a section or a key is missing or comes twice; "
-                 "correct it, or export the recording again"),
+         refused="has a header whose text is damaged: a section or a key is missing or comes "
+                 "twice; correct it, or export the recording again"),
     Case("markers beyond the end", brainvision(markers={",401,1,0": ",999999999,1,0"}),
          warned="some annotations lie outside the recording and were left out"),
     Case("a header with a byte-order mark and Windows line ends",
