@@ -3,10 +3,15 @@
 from __future__ import annotations
 
 import struct
+from typing import TYPE_CHECKING
 
+import mne
 import numpy as np
 from case import Case
 from good_files import NAMES, ONSETS_S, epochs_fif, fif, fif_tag, noise_uv, raw_fif, trials_volts
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 _AGAIN = "copy or export the file again"
 _READ = "check that the file is complete, or export it again"
@@ -42,6 +47,24 @@ def _one_sample(value: float) -> np.ndarray:
     volts = noise_uv() * 1e-6
     volts[1, 430] = value
     return volts
+
+
+def _twins(folder: Path) -> Path:
+    """Three epochs at the same sample of the recording, which tells trials apart no more."""
+    made = mne.read_epochs(epochs_fif(trials_volts())(folder), verbose="ERROR")
+    made.events[3:6, 0] = made.events[3, 0]
+    made.save(folder / "b_epo.fif", fmt="double", verbose="ERROR")
+    return folder / "b_epo.fif"
+
+
+def _split(folder: Path) -> Path:
+    volts = np.random.default_rng(1).normal(0, 2e-5, (3, 150_000))
+    info = mne.create_info(list(NAMES), 100, "eeg")
+    raw = mne.io.RawArray(volts, info, verbose="ERROR")
+    raw.set_annotations(mne.Annotations([10.0, 20.0], [0.0] * 2, ["flash"] * 2))
+    raw.save(folder / "a_raw.fif", split_size="2MB", verbose="ERROR")
+    (folder / "a_raw-1.fif").unlink()
+    return folder / "a_raw.fif"
 
 
 CASES = (
@@ -126,6 +149,12 @@ CASES = (
          refused="its trials have 1 samples; export epochs of 2 samples or more"),
     Case("one epoch", epochs_fif(trials_volts(n_trials=1)),
          loaded=lambda trials: len(trials) == 1),
+    Case("epochs of the same event", _twins,
+         refused="two of its trials are of the same event (one sample); export epochs with one "
+                 "trial for each event"),
+    Case("FIF that goes on in a file that is missing", _split,
+         refused="goes on in another file (NAME-1.fif), which is missing; put all its parts in one "
+                 "folder, under the names that they were given"),
     Case("an epoch that holds no number", epochs_fif(np.concatenate(
              [trials_volts(11), np.full((1, 3, 200), np.nan)])),
          warned="1 trial holds samples that are no number and was left out"),

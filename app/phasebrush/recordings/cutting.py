@@ -91,11 +91,20 @@ def cut_trials(
             "check the export, or keep only sound channels when cutting",
             recording.path,
         )
-    data = data if keep.all() else data[keep]
+    data = _kept(data, keep)
     check_size(data, recording.path)
     trials = _assemble(recording, cut, plan, data, keep)
     tell(1.0)
     return trials
+
+
+def _kept(data: NDArray[np.float32], keep: NDArray[np.bool_]) -> NDArray[np.float32]:
+    """Trials that are kept, moved together in place: a copy might not fit into memory."""
+    rows = np.flatnonzero(keep)
+    for place, row in enumerate(rows):
+        if place != row:
+            data[place] = data[row]
+    return data[: len(rows)]
 
 
 def _filled(

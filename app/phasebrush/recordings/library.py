@@ -36,6 +36,14 @@ _IN_OUR_WORDS = (
     ("Limited", "some annotations run past the end of the recording and were shortened"),
 )  # fmt: skip
 
+# What is looked for in a fault's text, and what is said instead of it.
+_FAULTS_IN_OUR_WORDS = (
+    ("next file", "goes on in another file (NAME-1.fif), which is missing",
+     "put all its parts in one folder, under the names that they were given"),
+    ("were not unique", "two of its trials are of the same event (one sample)",
+     "export epochs with one trial for each event"),
+)  # fmt: skip
+
 
 @contextmanager
 def quietly() -> Iterator[list[str]]:
@@ -126,6 +134,9 @@ def faults_in_words(path: Path, what: str) -> Iterator[None]:
     except OSError as fault:
         raise unreadable(fault, path) from fault
     except Exception as fault:  # the one place where a library's faults end
+        for mark, wrong, remedy in _FAULTS_IN_OUR_WORDS:
+            if mark in str(fault):
+                raise InputError(wrong, remedy, path) from fault
         raise InputError(
             f"cannot be read as {what} ({type(fault).__name__})",
             "check that the file is complete, or export it again",
