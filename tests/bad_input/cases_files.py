@@ -56,8 +56,14 @@ CASES = (
                  ".fif or .npz files, or a BIDS dataset"),
     Case("a folder with two recordings", _two,
          refused="holds 2 recordings (a, b); open one of them"),
-    Case("a data file without its header", brainvision(leave_out=("vhdr",)),
-         refused="there is no such file; check its name and folder"),
+    Case("a data file without its header",
+         lambda folder: brainvision(leave_out=("vhdr",))(folder).with_suffix(".eeg"),
+         refused="has no BrainVision header (.vhdr) of the same name beside it; put the three "
+                 "files of the recording in one folder and open the .vhdr"),
+    Case("markers without their header",
+         lambda folder: brainvision(leave_out=("vhdr",))(folder).with_suffix(".vmrk"),
+         refused="has no BrainVision header (.vhdr) of the same name beside it; put the three "
+                 "files of the recording in one folder and open the .vhdr"),
     Case("a workspace in place of a recording",
          file("work.phasebrush.json", '{"format": "phasebrush workspace"}'),
          refused=f"is in no format known here; {_KNOWN}"),

@@ -3,8 +3,6 @@
 from __future__ import annotations
 
 import contextlib
-import resource
-import signal
 import warnings
 from typing import TYPE_CHECKING
 
@@ -28,6 +26,9 @@ def _stop(_number: int, _frame: object) -> None:
 @contextlib.contextmanager
 def limits() -> Iterator[None]:
     """At most 5 s, and a gigabyte more than now: what asks for more meets a MemoryError."""
+    import resource
+    import signal
+
     old = resource.getrlimit(resource.RLIMIT_AS)
     with open("/proc/self/statm", encoding="ascii") as stream:  # noqa: PTH123 - no path of ours
         pages = int(stream.read().split()[0])

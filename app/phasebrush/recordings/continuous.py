@@ -2,9 +2,7 @@
 
 from __future__ import annotations
 
-import configparser
 from dataclasses import replace
-from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -17,7 +15,8 @@ from phasebrush.recordings.channels import bad_warning, listed, looks_like_eeg, 
 from phasebrush.recordings.events import Events, Marks, nearest_samples, sort_out
 from phasebrush.recordings.events_inside import check_inside
 from phasebrush.recordings.events_table import events_table_beside, read_events_table
-from phasebrush.recordings.library import faults_in_words, library, quietly, remarks
+from phasebrush.recordings.library import faults_in_words, quietly, remarks
+from phasebrush.recordings.open_raw import check_size, files_of, open_raw
 from phasebrush.recordings.positions import positions_for
 from phasebrush.recordings.recording import Recording
 from phasebrush.recordings.triggers import (
@@ -29,14 +28,13 @@ from phasebrush.recordings.words import plain_text, shortened
 
 if TYPE_CHECKING:
     from collections.abc import Callable
+    from pathlib import Path
 
     from numpy.typing import NDArray
 
     from phasebrush.recordings.checked import Checked
 
 UV_PER_V = 1e6
-# A file that stands for so many more numbers than it has bytes is all gap: damaged.
-_MOST_PER_BYTE = 200
 
 
 class FileSamples:
@@ -60,12 +58,6 @@ class FileSamples:
             raise InputError("ends before its header says", "copy the file again", self._path)
         data *= UV_PER_V
         return data
-
-
-def files_of(raw: Any, path: Path) -> tuple[Path, ...]:
-    """Header and data files of an opened recording, each once."""
-    named = (Path(str(name)) for name in raw.filenames if name is not None)
-    return tuple(dict.fromkeys((path, *named)))
 
 
 def open_continuous(
@@ -96,8 +88,8 @@ def open_continuous(
     """
     reader = {"edf": "EDF", "bdf": "BDF", "brainvision": "BrainVision", "raw": "FIF"}[kind]
     with faults_in_words(path, reader), quietly() as said:
-        raw = _open_raw(path, kind)
-    _check_size(raw, path)
+        raw = open_raw(path, kind)
+    check_size(raw, path)
     bids = names_of(path)
     names, types, warnings = _channels(raw, bids)
     eeg = np.array([i for i, one in enumerate(types) if one == "eeg"], dtype=np.intp)
@@ -152,56 +144,10 @@ def open_continuous(
     )
 
 
-def _open_raw(path: Path, kind: str) -> Any:
-    io = library().io
-    if kind in {"edf", "bdf"}:
-        return _open_edf(io.read_raw_edf if kind == "edf" else io.read_raw_bdf, path)
-    if kind == "brainvision":
-        try:
-            return io.read_raw_brainvision(path, preload=False, verbose=False)
-        except configparser.Error as fault:
-            raise InputError(
-                "has a header whose text is damaged: a section or a key is missing or comes twice",
-                "correct it, or export the recording again",
-                path,
-            ) from fault
-    return io.read_raw_fif(path, preload=False, allow_maxshield=False, verbose=False)
-
-
-def _open_edf(read: Callable[..., Any], path: Path) -> Any:
-    """Annotations are UTF-8 (EDF+, section 2.2.3); many programs write Latin-1 all the same."""
-    try:
-        return read(path, preload=False, verbose=False)
-    except Exception as fault:
-        # The library wraps what it met in an exception of no kind of its own.
-        if not isinstance(fault.__cause__ or fault.__context__, UnicodeDecodeError):
-            raise
-    return read(path, encoding="latin1", preload=False, verbose=False)
-
-
 def _why_none(said: list[str]) -> str:
     """Why a recording has no events, where the library met the reason."""
     lost = [words for words in remarks(said) if words.startswith("the marker file")]
     return f": {lost[0]}" if lost else ""
-
-
-def _check_size(raw: Any, path: Path) -> None:
-    """Compare what the header promises with what the files can hold."""
-    n_samples, sfreq_hz = int(raw.n_times), float(raw.info["sfreq"])
-    if not (np.isfinite(sfreq_hz) and sfreq_hz > 0):
-        raise InputError(
-            f"its header gives a sampling rate of {sfreq_hz:g} Hz", "export it again", path
-        )
-    if n_samples < 2:
-        raise InputError(f"it holds {n_samples} samples of each channel", "export it again", path)
-    n_bytes = sum(file.stat().st_size for file in files_of(raw, path))
-    if n_samples * len(raw.ch_names) > _MOST_PER_BYTE * n_bytes:
-        raise InputError(
-            f"its header promises {n_samples:,} samples of {len(raw.ch_names)} channels, far more "
-            f"than its {n_bytes:,} bytes can hold",
-            "copy or export the file again",
-            path,
-        )
 
 
 def _channels(raw: Any, bids: BidsNames) -> tuple[tuple[str, ...], list[str], tuple[str, ...]]:

@@ -3,14 +3,10 @@
 from __future__ import annotations
 
 import zipfile
-import zlib
 from collections import Counter
-from contextlib import contextmanager
-from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
-from numpy.lib import format as npy
 
 from phasebrush.core.trials import Source
 from phasebrush.errors import InputError
@@ -20,6 +16,7 @@ from phasebrush.recordings.channels import tidy_names
 from phasebrush.recordings.events import Events
 from phasebrush.recordings.library import faults_in_words
 from phasebrush.recordings.memory import free_bytes, size_words
+from phasebrush.recordings.npz_archive import Member, damage_in_words, members_of, read_small
 from phasebrush.recordings.positions import standard_positions
 from phasebrush.recordings.recording import Recording
 from phasebrush.recordings.words import plain_text, shortened
@@ -33,33 +30,8 @@ if TYPE_CHECKING:
 UV_PER_V = 1e6
 _READER = "NumPy archive"
 _KEYS = "data (trials x channels x samples, volts), times_s and ch_names"
-# Small members (times, names, labels) never need more than this.
-_SMALL_BYTES = 64 * 2**20
 _EVEN = 1e-3
 _LONGEST_STEP_S = 1e6
-# Deflate gives at most 1032 bytes for one (the longest match is 258 bytes, in 2 bits);
-# bzip2 and LZMA, which NumPy does not write, give more, and are refused where they do.
-_MOST_GROWTH = 1032
-_BLOCK = 65536
-
-
-@dataclass(frozen=True)
-class Member:
-    """What the header of one array in the archive promises."""
-
-    name: str
-    shape: tuple[int, ...]
-    dtype: np.dtype[Any]
-    fortran: bool
-    header_bytes: int
-
-    @property
-    def n_bytes(self) -> int:
-        """Bytes that shape and type ask for (Python integers do not overflow)."""
-        total = self.dtype.itemsize
-        for length in self.shape:
-            total *= length
-        return total
 
 
 class NpzTrials:
@@ -75,7 +47,7 @@ class NpzTrials:
         """Yield groups of trials, shape (trials, channels, samples), microvolts."""
         self._as_opened.check()
         rows = self._whole if self._data.fortran else self._streamed
-        with faults_in_words(self._path, _READER), _damage_in_words(self._path):
+        with faults_in_words(self._path, _READER), damage_in_words(self._path):
             for values in rows(groups):
                 yield np.asarray(values, dtype=np.float64) * UV_PER_V
 
@@ -109,14 +81,14 @@ def open_npz(path: Path) -> Recording:
     InputError
         With the key that is missing or does not fit.
     """
-    with faults_in_words(path, _READER), _damage_in_words(path):
-        members = _members(path)
+    with faults_in_words(path, _READER), damage_in_words(path):
+        members = members_of(path)
         _require(path, members)
         data = members["data"]
-        times_s = _small(path, members["times_s"]).astype(np.float64)
-        texts = [str(name) for name in _small(path, members["ch_names"])]
+        times_s = read_small(path, members["times_s"]).astype(np.float64)
+        texts = [str(name) for name in read_small(path, members["ch_names"])]
         labels = _labels(path, members, data.shape[0])
-        rate_hz = _small(path, members["sfreq_hz"]) if "sfreq_hz" in members else None
+        rate_hz = read_small(path, members["sfreq_hz"]) if "sfreq_hz" in members else None
     sfreq_hz = _rate(path, times_s, rate_hz)
     repeated = sorted(name for name, count in Counter(texts).items() if count > 1)
     if repeated:
@@ -144,59 +116,6 @@ def open_npz(path: Path) -> Recording:
         ready=NpzTrials(path, data, times_s),
         warnings=(*warnings, "event times are not in the file; trials count as back to back"),
     )
-
-
-@contextmanager
-def _damage_in_words(path: Path) -> Iterator[None]:
-    """Say it plainly where the archive itself is broken: its list, its packing, a checksum."""
-    try:
-        yield
-    except (zipfile.BadZipFile, zlib.error, EOFError) as fault:
-        raise InputError(
-            "is damaged or incomplete (no sound archive)", "copy or write it again", path
-        ) from fault
-
-
-def _members(path: Path) -> dict[str, Member]:
-    """Headers of the arrays in the archive, each checked against the size it has there."""
-    found: dict[str, Member] = {}
-    size = path.stat().st_size
-    with zipfile.ZipFile(path) as archive:
-        for entry in archive.infolist():
-            if not entry.filename.endswith(".npy"):
-                continue
-            name = shortened(plain_text(entry.filename.removesuffix(".npy")))
-            _check_entry(path, name, entry, size)
-            with archive.open(entry) as stream:
-                version = npy.read_magic(stream)
-                read = npy.read_array_header_1_0 if version == (1, 0) else npy.read_array_header_2_0
-                shape, fortran, dtype = read(stream, max_header_size=10_000)
-                member = Member(name, shape, dtype, fortran, stream.tell())
-            if dtype.hasobject:
-                raise InputError(
-                    f"{name} holds Python objects", "store it as a plain array of numbers", path
-                )
-            if member.header_bytes + member.n_bytes != entry.file_size:
-                raise InputError(
-                    f"{name} promises {member.n_bytes:,} bytes but the archive holds "
-                    f"{entry.file_size - member.header_bytes:,}",
-                    "write the archive again",
-                    path,
-                )
-            found[name] = member
-    return found
-
-
-def _check_entry(path: Path, name: str, entry: zipfile.ZipInfo, size: int) -> None:
-    """Compare what the archive's own list says about a member with the size of the file."""
-    most = entry.compress_size * (1 if entry.compress_type == zipfile.ZIP_STORED else _MOST_GROWTH)
-    if entry.header_offset + entry.compress_size > size or entry.file_size > most + _BLOCK:
-        raise InputError(
-            f"{name} is said to hold {entry.file_size:,} bytes, which {size:,} bytes of file "
-            "cannot give",
-            "copy or write the archive again",
-            path,
-        )
 
 
 def _require(path: Path, members: dict[str, Member]) -> None:
@@ -237,14 +156,6 @@ def _check_room(path: Path, data: Member) -> None:
         )
 
 
-def _small(path: Path, member: Member) -> NDArray[Any]:
-    if member.n_bytes > _SMALL_BYTES:
-        raise InputError(f"{member.name} is {member.n_bytes:,} bytes long", "shorten it", path)
-    with np.load(path, allow_pickle=False) as archive:
-        values: NDArray[Any] = archive[member.name]
-    return values.astype(str) if values.dtype.kind == "S" else values
-
-
 def _labels(path: Path, members: dict[str, Member], n_trials: int) -> tuple[str, ...]:
     if "label" not in members:
         return ("trial",) * n_trials
@@ -254,7 +165,7 @@ def _labels(path: Path, members: dict[str, Member], n_trials: int) -> tuple[str,
             "store one label for each trial",
             path,
         )
-    return tuple(plain_text(str(one)) or "n/a" for one in _small(path, members["label"]))
+    return tuple(plain_text(str(one)) or "n/a" for one in read_small(path, members["label"]))
 
 
 def _rate(path: Path, times_s: NDArray[np.float64], given: NDArray[Any] | None) -> float:

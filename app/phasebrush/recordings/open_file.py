@@ -83,4 +83,9 @@ def _one_file(path: Path) -> Path:
         header = path.with_suffix(".vhdr")
         if header.is_file():
             return header
+        raise InputError(
+            "has no BrainVision header (.vhdr) of the same name beside it",
+            "put the three files of the recording in one folder and open the .vhdr",
+            path,
+        )
     return path
