@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING
 import mne
 import numpy as np
 from case import Case
-from good_files import NAMES, ONSETS_S, epochs_fif, fif, fif_tag, noise_uv, raw_fif, trials_volts
+from good_fif import epochs_fif, fif, fif_tag, raw_fif
+from good_files import NAMES, ONSETS_S, noise_uv, trials_volts
 
 if TYPE_CHECKING:
     from pathlib import Path

@@ -6,7 +6,8 @@ import gzip
 from typing import TYPE_CHECKING
 
 from case import Case
-from good_files import brainvision, edf, fif, file, joined, npz
+from good_fif import fif
+from good_files import brainvision, edf, file, joined, npz
 
 if TYPE_CHECKING:
     from pathlib import Path

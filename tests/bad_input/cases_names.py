@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 from case import Case
-from good_files import brainvision, edf, noise_uv, npz, raw_fif
+from good_fif import raw_fif
+from good_files import brainvision, edf, noise_uv, npz
 
 
 def _named(*names: str):

@@ -8,7 +8,8 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from good_files import brainvision, edf, epochs_fif, npz, raw_fif, table, trials_volts
+from good_fif import epochs_fif, raw_fif
+from good_files import brainvision, edf, npz, table, trials_volts
 
 from phasebrush.cli import main
 from phasebrush.core.trials import Cut
