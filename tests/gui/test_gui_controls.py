@@ -103,8 +103,8 @@ def test_digits_choose_what_the_maps_show(window):
         assert maps.shown == which
         checked = [name for name, b in window.docks.map_buttons.items() if b.isChecked()]
         assert checked == [which]
-    difference = snapshots["A"].itc - snapshots["B"].itc
-    np.testing.assert_allclose(snapshots["A-B"].itc, difference, atol=1e-12)
+    difference = snapshots["A"].locking - snapshots["B"].locking
+    np.testing.assert_allclose(snapshots["A-B"].locking, difference, atol=1e-12)
 
 
 @pytest.mark.parametrize("which", ["all", "A", "B", "A-B"])

@@ -61,7 +61,7 @@ def test_itc_and_power_are_those_of_the_trials_of_the_step(window, view):
     row = int(np.argmin(np.abs(coefficients.freqs_hz - steps.freq_hz)))
     column = int(np.argmin(np.abs(coefficients.times_s - steps.time_s)))
     values = coefficients.values[:, row, column].astype(complex)
-    itc, ppc, power = (measure.bars for measure in view.measures)
+    itc, ppc, power = (measure.bars.drawn for measure in view.measures[:3])
     for step, inside in enumerate(parts(window, 5)):
         phasors = values[inside] / np.abs(values[inside])
         n = len(inside)
@@ -76,20 +76,24 @@ def test_itc_and_power_are_those_of_the_trials_of_the_step(window, view):
             assert low < high
 
 
-def test_chance_is_marked_on_itc_alone(view):
+def test_chance_is_marked_on_itc_and_ppc(view):
     """Zar's Rayleigh test at n = 12: R from p = 0.05 by the formula of methods (Wilkie 1983)."""
     n = 12
     a = 1 + 2 * n + np.log(0.05)
     chance = np.sqrt((1 + 4 * n + 4 * n**2 - a**2) / 4) / n
-    itc, ppc, power = (measure.bars for measure in view.measures)
+    itc, ppc, power, projected = (measure.bars.drawn for measure in view.measures)
     assert itc.chances == pytest.approx([chance] * 5, abs=1e-9)
-    assert (ppc.chances, power.chances) == ((), ())
+    # Vinck et al. 2010: PPC = (n ITC^2 - 1) / (n - 1)
+    assert ppc.chances == pytest.approx([(n * chance**2 - 1) / (n - 1)] * 5, abs=1e-9)
+    assert (power.chances, projected.chances) == ((), ())
 
 
 def test_the_plots_hold_what_they_draw(view):
     for measure in view.measures:
+        if not measure.isVisible():
+            continue
         low, high = measure.getPlotItem().vb.viewRange()[1]
-        ends = [end for band in measure.bars.bands for end in band]
+        ends = [end for band in measure.bars.drawn.bands for end in band]
         assert low <= min(ends)
         assert max(ends) <= high
         left, right = measure.getPlotItem().vb.viewRange()[0]
@@ -122,7 +126,7 @@ def test_the_number_of_steps_is_typed(window, view):
     settle(window)
     assert window.workbench.state.steps == 7
     assert len(view.waves.lines) == 7
-    assert len(view.measures[0].bars.values) == 7
+    assert len(view.measures[0].bars.drawn.values) == 7
     assert window.intents == ["7 steps"]
     window.workbench.undo()
     settle(window)

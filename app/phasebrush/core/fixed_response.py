@@ -62,6 +62,11 @@ class StepCheck:
         square = self.predicted_itc**2
         return float(np.sqrt(square + (1.0 - square) / self.n))
 
+    @property
+    def expected_ppc(self) -> float:
+        """The predicted PPC: rho^2, whatever n is, as PPC is without bias (the same source)."""
+        return self.predicted_itc**2
+
 
 @dataclass(frozen=True)
 class FixedResponse:

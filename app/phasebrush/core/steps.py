@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from phasebrush.core.average import band95_uv, mean_uv, sem_uv
-from phasebrush.core.phase import itc_from_sums, ppc, unit_phasors
+from phasebrush.core.phase import chance_itc, itc_from_sums, ppc, unit_phasors
 from phasebrush.core.resample import FEWEST_FOR_BAND, percentile_band, resample_counts
 from phasebrush.core.sort_keys import sorted_order
 from phasebrush.errors import InputError
@@ -59,6 +59,16 @@ class StepStats:
     itc_band: Band
     ppc_band: Band
     power_band_db: Band
+
+    @property
+    def chance_itc(self) -> float:
+        """ITC that so many phases without any preference exceed with probability 0.05."""
+        return float(chance_itc(self.n_phase))
+
+    @property
+    def chance_ppc(self) -> float:
+        """PPC that so many phases without any preference exceed with probability 0.05."""
+        return float(ppc(self.chance_itc, self.n_phase))
 
     def __post_init__(self) -> None:
         self.mean_uv.flags.writeable = False

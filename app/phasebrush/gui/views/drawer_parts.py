@@ -7,7 +7,17 @@ from typing import TYPE_CHECKING, Any
 
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QAction, QFontMetrics
-from PySide6.QtWidgets import QComboBox, QHBoxLayout, QLabel, QMenu, QToolButton, QWidget
+from PySide6.QtWidgets import (
+    QComboBox,
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QMenu,
+    QPlainTextEdit,
+    QSizePolicy,
+    QToolButton,
+    QWidget,
+)
 
 from phasebrush.gui import theme
 from phasebrush.look.colour_maps import mixed
@@ -99,6 +109,24 @@ def empty_state(words: str, parent: QWidget) -> QLabel:
     label.setWordWrap(True)
     label.setMinimumHeight(40)
     return label
+
+
+class ReadingArea(QPlainTextEdit):
+    """Words to read and to select; scrolls where room is scarce."""
+
+    def __init__(self, parent: QWidget) -> None:
+        super().__init__(parent)
+        self.setReadOnly(True)
+        self.setFrameShape(QFrame.Shape.NoFrame)
+        self.setTabChangesFocus(True)
+        self.setFont(theme.font(9.0))
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Ignored)
+        self.setMinimumSize(60, 30)
+
+    def set_words(self, words: str) -> None:
+        """Change the words; does nothing when they are the same."""
+        if words != self.toPlainText():
+            self.setPlainText(words)
 
 
 def top_line(parent: QWidget, *parts: QWidget | int) -> QHBoxLayout:

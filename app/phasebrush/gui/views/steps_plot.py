@@ -8,8 +8,15 @@ from PySide6.QtCore import QSignalBlocker
 from PySide6.QtWidgets import QHBoxLayout, QSpinBox, QStackedWidget, QVBoxLayout, QWidget
 
 from phasebrush.core.steps import FEWEST_STEPS, MOST_STEPS
+from phasebrush.gui.theme import GRID
 from phasebrush.gui.view import View
-from phasebrush.gui.views.drawer_parts import empty_state, muted_label, plain_tip, top_line
+from phasebrush.gui.views.drawer_parts import (
+    ReadingArea,
+    empty_state,
+    muted_label,
+    plain_tip,
+    top_line,
+)
 from phasebrush.gui.views.step_measures import MEASURES, StepMeasure
 from phasebrush.gui.views.step_waves import StepWaves, number
 from phasebrush.gui.words import ElidedLabel
@@ -26,6 +33,11 @@ NO_STEPS = (
     "No steps yet: they come once the channel is transformed, and need a sort key with a value "
     "for at least as many trials as steps"
 )
+CHECK_TIP = (
+    "Slope of the projected response on the standardised rank of the sort key; "
+    "heteroscedasticity-robust (HC3) standard error, Student's t with n − 2. Shown only where the "
+    "Rayleigh p of all trials at the spot is below 0.01. One point, not corrected."
+)
 DEFINITION = (
     "Steps: the used trials cut into equal-count steps of the sort key, lowest first; sizes "
     "differ by at most 1."
@@ -33,22 +45,25 @@ DEFINITION = (
 
 
 class StepsPlot(View):
-    """Average waveforms of the steps at the left; ITC, PPC and power at the right.
+    """Average waveforms of the steps at the left; what is measured at the spot at the right.
 
     The steps are slow work that nobody else needs: they are worked out while this view is seen.
     """
 
     needs: ClassVar[frozenset[Result]] = frozenset(
-        {Result.STEPS, Result.CURSOR, Result.TRIALS, Result.SHOWN}
+        {Result.STEPS, Result.CURSOR, Result.TRIALS, Result.SHOWN, Result.CONSISTENCY}
     )
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setObjectName("steps_plot")
-        self.setAccessibleName("steps of the sort key: average waveform, ITC, PPC and power")
+        self.setAccessibleName(
+            "steps of the sort key: average, phase alignment, power, fixed-response check"
+        )
         self.setToolTip(
-            "Used trials in equal-count steps of the sort key: average (µV), and ITC, PPC and "
-            "power (dB re 1 µV²) at the spot's centre with 95 % bands (bootstrap, 1,000 draws)."
+            "Used trials in equal-count steps of the sort key: average (µV), and ITC or PPC and "
+            "power (dB re 1 µV²) at the spot's centre with 95 % bands (bootstrap, 1,000 draws); "
+            "projected response against the fixed-response line."
         )
         self._steps: Steps | None = None
         self.count = QSpinBox(self)
@@ -67,6 +82,10 @@ class StepsPlot(View):
         self.waves.hovered = self._hovered
         self.waves.zoomed = self._zoomed
         self.measures = tuple(StepMeasure(measured, self) for measured in MEASURES)
+        self.check = ReadingArea(self)
+        self.check.setObjectName("fixedResponseCheck")
+        self.check.setAccessibleName("fixed-response check in words")
+        self.check.setToolTip(CHECK_TIP)
         self._lay_out()
         self.count.valueChanged.connect(self._cut)
 
@@ -76,9 +95,11 @@ class StepsPlot(View):
         row = QHBoxLayout(plots)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(0)
-        row.addWidget(self.waves, 6)
+        row.addWidget(self.waves, 10)
         for measure in self.measures:
-            row.addWidget(measure, 2)
+            row.addWidget(measure, 4)
+        row.addSpacing(GRID)
+        row.addWidget(self.check, 6)
         self._pages = QStackedWidget(self)
         self._pages.addWidget(self._empty)
         self._pages.addWidget(plots)
@@ -104,12 +125,15 @@ class StepsPlot(View):
         if self._steps is not snapshot.steps:
             self._steps = snapshot.steps
             self._draw()
+        for measure, name in ((self.measures[0], "ITC"), (self.measures[1], "PPC")):
+            measure.setVisible(name == state.consistency)
         drawn = trials is not None and snapshot.steps is not None
         self._empty.setText(NO_RECORDING if trials is None else NO_STEPS)
         self._pages.setCurrentIndex(1 if drawn else 0)
         faded = Result.STEPS in snapshot.outdated
         for plot in (self.waves, *self.measures):
             plot.fade(on=faded)
+        self.check.setEnabled(not faded)
         self.words.set_words(self._summary(faded=faded) if drawn else "")
 
     def _draw(self) -> None:
@@ -117,6 +141,22 @@ class StepsPlot(View):
         for measure in self.measures:
             measure.show_steps(self._steps)
         self.waves.setToolTip(self._tip())
+        self.check.set_words(self._check_words())
+
+    def _check_words(self) -> str:
+        steps = self._steps
+        if steps is None or steps.fixed is None:
+            return ""
+        if not steps.valid:
+            return "The spot is too near the end of the data to be checked."
+        fixed, slope = steps.fixed, steps.fixed.slope
+        numbers = ""
+        if slope is not None:
+            numbers = (
+                f"\nslope {number(slope.slope_uv)} µV per SD of the key's rank, "
+                f"t({slope.df}) = {number(slope.t)}"
+            )
+        return f"Fixed-response check. {fixed.sentence}{numbers}"
 
     def _summary(self, *, faded: bool) -> str:
         steps = self._steps
@@ -125,10 +165,11 @@ class StepsPlot(View):
         sizes = sorted({step.n for step in steps.of})
         each = f"{sizes[0]} to {sizes[-1]}" if len(sizes) > 1 else f"{sizes[0]}"
         time_s = f"{steps.time_s:.2f}".replace("-", "−")
-        words = (
-            f"by {steps.key_title}, {each} trials each · ITC, PPC, power at "
-            f"{steps.freq_hz:.1f} Hz, {time_s} s · dotted: ITC that chance exceeds once in 20"
-        )
+        words = f"by {steps.key_title}, {each} trials each · at {steps.freq_hz:.1f} Hz, {time_s} s"
+        if steps.valid:
+            words += " · dotted: chance 5 % · open diamonds: a response of fixed shape"
+        else:
+            words += ": too near the end of the data, nothing is read there"
         return f"{words} · dimmed: of an earlier choice" if faded else words
 
     def _tip(self) -> str:
@@ -138,11 +179,11 @@ class StepsPlot(View):
             return DEFINITION
         unit = f" {steps.key_unit}" if steps.key_unit else ""
         lines = [f"{DEFINITION} {steps.key_title}:"]
-        lines += [
-            f"step {place}: n {step.n}, {number(step.key_low)} to {number(step.key_high)}{unit}, "
-            f"ITC {number(step.itc)}, PPC {number(step.ppc)}, power {number(step.power_db)} dB"
-            for place, step in enumerate(steps.of, start=1)
-        ]
+        for place, step in enumerate(steps.of, start=1):
+            line = f"step {place}: n {step.n}, {number(step.key_low)} to {number(step.key_high)}"
+            read = f", ITC {number(step.itc)}, PPC {number(step.ppc)}"
+            read += f", power {number(step.power_db)} dB"
+            lines.append(f"{line}{unit}{read if steps.valid else ''}")
         return plain_tip("\n".join(lines))
 
     # -- intents out --------------------------------------------------------------------------
