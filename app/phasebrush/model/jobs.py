@@ -116,6 +116,10 @@ class JobBoard:
         """The jobs that have not answered yet."""
         return tuple(self._running.values())
 
+    def runs(self, kind: str) -> bool:
+        """Whether a job of this kind has not answered yet."""
+        return kind in self._running
+
     def start(self, job: Job) -> None:
         """Start a job; an earlier one of the same kind is told to stop and its answer dropped."""
         if self._closed:
