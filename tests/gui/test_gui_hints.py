@@ -54,7 +54,7 @@ def test_the_strip_says_row_and_key(window):
     assert numbers(said.rsplit(":", 1)[1])[0] == pytest.approx(value, abs=0.0051)
 
 
-@pytest.mark.parametrize(("name", "result"), [("itc_map", "itc"), ("power_map", "power_db")])
+@pytest.mark.parametrize(("name", "result"), [("itc_map", "locking"), ("power_map", "power_db")])
 def test_a_map_says_frequency_time_and_value(window, name, result):
     view = getattr(window.docks.views, name)
     maps = window.workbench.snapshot.maps

@@ -28,7 +28,7 @@ from phasebrush.gui.views.readout import ReadoutView
 from phasebrush.gui.views.recordings_list import RecordingsList
 from phasebrush.gui.views.stack_view import StackView
 from phasebrush.gui.views.subset_cards import SubsetCards
-from phasebrush.gui.views.trace_view import LockingTrace, PowerTrace
+from phasebrush.gui.views.traces import LockingTrace, PowerTrace
 from phasebrush.look.tokens import DARK, LIGHT
 from phasebrush.model.results import Snapshot
 from phasebrush.model.stale import Result

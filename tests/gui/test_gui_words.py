@@ -21,9 +21,10 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 from window_eye import pixels, plots
-from window_tools import pick_both, settle
+from window_tools import key, pick_both, settle
 
 from phasebrush.core.sort_keys import SortKey
+from phasebrush.core.spot import Spot
 from phasebrush.gui.panel import TitleLine
 from phasebrush.look.tokens import DARK, LIGHT, rgb
 from phasebrush.model import intents
@@ -165,20 +166,31 @@ def test_no_scale_uses_automatic_prefixes(window):
             assert "x0.001" not in axis.labelString()
 
 
+@pytest.mark.parametrize("part", ["total", "induced"])
+@pytest.mark.parametrize("shown", ["all", "A-B"])
 @pytest.mark.parametrize("size", [(1600, 1000), (1280, 800)])
-def test_no_title_is_cut_short(open_window, size):
-    """With three hundred trials, A and B picked, and a spot with long numbers."""
+def test_no_title_is_cut_short(open_window, size, shown, part):
+    """With three hundred trials, A and B picked by what is read, and a spot with long numbers."""
     window = open_window(invented_trials(300), size=size)
-    pick_both(window)
-    window.workbench.do(intents.show_in_maps("A-B"))
+    key(window, Qt.Key.Key_T)
     settle(window)
+    window.workbench.do(intents.show_in_maps(shown))
+    window.workbench.do(intents.show_power_part(part))
+    window.workbench.do(
+        intents.move_spot(Spot(low_hz=18.0, high_hz=22.0, start_s=-0.22, end_s=-0.21))
+    )
+    window.workbench.do(intents.sort_by(SortKey("phase")))
+    settle(window)
+    key(window, Qt.Key.Key_T)
+    settle(window)
+    assert window.workbench.snapshot.circles.at_spot == ("A", "B")
     cut = []
     for line in window.findChildren(TitleLine):
         label = next(c for c in line.children() if c.objectName() == "panelTitle")
         if line.isVisible():
-            need = label.fontMetrics().horizontalAdvance(line.title)
+            need = label.fontMetrics().horizontalAdvance(line.shown_title)
             if need > label.width():
-                cut.append(f"{line.title!r} needs {need} and has {label.width()} pixels")
+                cut.append(f"{line.shown_title!r} needs {need} and has {label.width()} pixels")
     assert not cut, "; ".join(cut)
 
 

@@ -1,4 +1,4 @@
-"""Horizontal lines at the ITC that chance exceeds once in 20, and the words beside them."""
+"""Horizontal lines at the ITC or PPC that chance exceeds once in 20, and what they are."""
 
 from __future__ import annotations
 
@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 import pyqtgraph as pg
 from PySide6.QtCore import QLineF, QPointF, QRectF
-from PySide6.QtGui import QColor
+from PySide6.QtGui import QColor, QFontMetricsF
 
 from phasebrush.gui import theme
 from phasebrush.gui.time_plot import pen
@@ -21,6 +21,9 @@ if TYPE_CHECKING:
     from phasebrush.model.results import SetName
 
 
+LINES_OF_ROOM = 3
+
+
 class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
     """One dotted line a set of trials, painted in one go.
 
@@ -32,7 +35,6 @@ class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
         self._look = LIGHT
         self._levels: dict[str, float] = {}
         self._words = ""
-        self._at = 0.0
         self._font = theme.font(7.5)
         self.setZValue(1)
 
@@ -43,7 +45,7 @@ class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
 
     @property
     def words(self) -> str:
-        """What is written at the line that matters most."""
+        """What is written at the top left, where the plot is high enough."""
         return self._words
 
     def set_look(self, look: Look) -> None:
@@ -51,11 +53,12 @@ class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
         self._look = look
         self.update()
 
-    def show_levels(self, levels: Mapping[SetName, float], words: str, at: float) -> None:
-        """Draw a line for each set; ``words`` stand above the level ``at``."""
-        self._levels = {name: level for name, level in levels.items() if 0 < level < 1}
-        self._words, self._at = words, at
-        self.update()
+    def show_levels(self, levels: Mapping[SetName, float], words: str) -> None:
+        """Draw a line for each set; ``words`` say what they are."""
+        drawn: dict[str, float] = {name: level for name, level in levels.items() if 0 < level < 1}
+        if (drawn, words) != (self._levels, self._words):
+            self._levels, self._words = drawn, words
+            self.update()
 
     def boundingRect(self) -> QRectF:
         """The whole plot."""
@@ -83,8 +86,18 @@ class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
             painter.setPen(pen(colour, dotted=True))
             painter.drawLine(QLineF(area.left(), y, area.right(), y))
         if self._words:
-            painter.setFont(self._font)
-            painter.setPen(QColor(self._look.muted))
-            y = way.map(QPointF(0, self._at)).y()
-            painter.drawText(QPointF(area.left() + 4, y - 3), self._words)
+            self._write(painter, area)
         painter.restore()
+
+    def _write(self, painter: QPainter, area: QRectF) -> None:
+        metrics = QFontMetricsF(self._font)
+        if area.height() < LINES_OF_ROOM * metrics.height():
+            return
+        wide = metrics.horizontalAdvance(self._words)
+        tag = QRectF(area.left() + 2, area.top() + 1, wide + 4, metrics.height())
+        veil = QColor(self._look.panel)
+        veil.setAlpha(200)
+        painter.fillRect(tag, veil)
+        painter.setFont(self._font)
+        painter.setPen(QColor(self._look.muted))
+        painter.drawText(QPointF(tag.left() + 2, tag.bottom() - metrics.descent()), self._words)

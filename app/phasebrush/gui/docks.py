@@ -19,7 +19,7 @@ from phasebrush.gui.views.phase_dial import PhaseDial
 from phasebrush.gui.views.readout import ReadoutView
 from phasebrush.gui.views.recordings_list import RecordingsList
 from phasebrush.gui.views.subset_cards import SubsetCards
-from phasebrush.gui.views.trace_view import LockingTrace, PowerTrace
+from phasebrush.gui.views.traces import LockingTrace, PowerTrace
 
 if TYPE_CHECKING:
     from phasebrush.gui.view import View
@@ -202,7 +202,8 @@ class Docks:
             self.itc.title_line.set_title(f"{maps.measure} · {words}{n}")
             part = "Power" if maps.part == "total" else f"{maps.part.capitalize()} power"
             self.power.title_line.set_title(
-                f"{part} · {words}{n}, dB re baseline {seconds(start)[:-2]} to {seconds(end)}"
+                f"{part} · {words}{n}, dB re baseline {seconds(start)[:-2]} to {seconds(end)}",
+                f"{part} · {words}{n}, dB",
             )
             self.measure.show_value(state.consistency)
             self.part.show_value(state.power_part)
@@ -213,6 +214,9 @@ class Docks:
         if dial is not None:
             where = f"{seconds(dial.time_s)}, {dial.freq_hz:.1f} Hz"
             trust = "" if dial.valid else " (not to be trusted)"
-            self.dial.title_line.set_title(f"Phase at {where}{trust}")
+            doubt = trust and " · not trusted"
+            self.dial.title_line.set_title(f"Phase at {where}{trust}", f"{where}{doubt}")
             picked = " · picked here" if snapshot.circles.at_spot else ""
-            self.readout.title_line.set_title(f"At the spot, {where}{trust}{picked}")
+            self.readout.title_line.set_title(
+                f"At the spot, {where}{trust}{picked}", f"{where}{doubt}{picked}"
+            )

@@ -32,7 +32,6 @@ class TitleLine(QFrame):
         self._layout.setContentsMargins(GRID, 0, GRID // 2, 0)
         self._layout.setSpacing(2)
         self._layout.addWidget(self._label, 1)
-        self._title = title
 
     def sizeHint(self) -> QSize:
         """As high as every title line: a dock asks for this, not for the fixed height."""
@@ -45,13 +44,16 @@ class TitleLine(QFrame):
     @property
     def title(self) -> str:
         """The words of the title."""
-        return self._title
+        return self._label.words
 
-    def set_title(self, title: str) -> None:
+    @property
+    def shown_title(self) -> str:
+        """The title for this width: the short one where the whole one does not fit."""
+        return self._label.shown
+
+    def set_title(self, title: str, short: str = "") -> None:
         """Change the words; does nothing when they are the same."""
-        if title != self._title:
-            self._title = title
-            self._label.set_words(title)
+        self._label.set_words(title, short)
 
     def add(self, control: QWidget) -> None:
         """Put a control at the right end."""

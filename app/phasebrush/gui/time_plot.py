@@ -171,6 +171,7 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         axis = self.getPlotItem().getAxis("left")
         if axis.labelText != words:
             axis.setLabel(words, **{"font-size": "8pt", "color": self.look.muted})
+            axis.resizeEvent()  # a name of another length is put into the middle here only
 
     def hide_bottom_ticks(self) -> None:
         """Leave the time axis to the plot below, which shares it."""
@@ -202,6 +203,11 @@ class TimePlot(pg.PlotWidget):  # type: ignore[misc]
         if self._ranges[1] != (low, high):
             self._ranges[1] = (low, high)
             self.getPlotItem().vb.setYRange(low, high, padding=0)
+
+    @property
+    def value_range(self) -> tuple[float, float]:
+        """The values shown; before any were set, 0 to 1."""
+        return self._ranges[1] or (0.0, 1.0)
 
     def set_cursor_time(self, time_s: float) -> None:
         """Move the time cursor."""

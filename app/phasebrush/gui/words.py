@@ -21,6 +21,7 @@ class ElidedLabel(QLabel):
     def __init__(self, words: str = "", parent: QWidget | None = None, lines: int = 1) -> None:
         super().__init__(parent)
         self._words = words
+        self._short = ""
         self._lines = lines
         self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
         self.setToolTip(words)
@@ -38,10 +39,18 @@ class ElidedLabel(QLabel):
         """As high as it is."""
         return QSize(0, self.sizeHint().height())
 
-    def set_words(self, words: str) -> None:
-        """Change the words."""
-        if words != self._words:
-            self._words = words
+    @property
+    def shown(self) -> str:
+        """The words for this width, before anything is cut off."""
+        if not self._short:
+            return self._words
+        fits = self.fontMetrics().horizontalAdvance(self._words) <= self.width()
+        return self._words if fits else self._short
+
+    def set_words(self, words: str, short: str = "") -> None:
+        """Change the words; ``short`` stands in for them where room is scarce."""
+        if (words, short) != (self._words, self._short):
+            self._words, self._short = words, short
             self.setToolTip(words)
             self.setAccessibleName(words)
             self.update()
@@ -58,7 +67,7 @@ class ElidedLabel(QLabel):
             flags = Qt.AlignmentFlag.AlignTop | Qt.TextFlag.TextWordWrap
             painter.drawText(self.rect(), flags, words)
         else:
-            words = painter.fontMetrics().elidedText(self._words, mode, self.width())
+            words = painter.fontMetrics().elidedText(self.shown, mode, self.width())
             painter.drawText(self.rect(), Qt.AlignmentFlag.AlignVCenter, words)
         painter.end()
 

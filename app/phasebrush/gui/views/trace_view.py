@@ -2,17 +2,17 @@
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
-from phasebrush.gui.chance_levels import ChanceLevels
 from phasebrush.gui.colour_bar import WIDTH
 from phasebrush.gui.curves import IN_A, IN_ALL, IN_B, Bands, Line, PlotArea
-from phasebrush.gui.number_words import fixed
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
 from phasebrush.gui.view import View
+from phasebrush.gui.views.picked_strip import PickedStrip, picked_spans
 from phasebrush.model.intents import move_cursor, zoom_time
 from phasebrush.model.results import SET_NAMES
 from phasebrush.model.stale import Result
@@ -28,12 +28,17 @@ if TYPE_CHECKING:
     Floats = NDArray[np.float64]
 
 
+OVER_THE_END = 6
+LOW_PLOT = 44.0
+"""Pixels below which an axis has room for two numbers only."""
+
+
 class TraceView(View):
     """One band trace for all trials, A and B."""
 
     needs: ClassVar[frozenset[Result]] = frozenset(
         {Result.TRIALS, Result.MAPS, Result.TRACES, Result.SPOT, Result.CURSOR, Result.SHOWN,
-         Result.RESTED}
+         Result.CIRCLES, Result.RESTED}
     )  # fmt: skip
 
     def __init__(self, name: str, axis_name: str, parent: QWidget | None = None) -> None:
@@ -44,9 +49,11 @@ class TraceView(View):
         layout.setContentsMargins(0, 0, 0, 0)
         layout.addWidget(self.plot)
         self.plot.name_axes(axis_name, "time from event (s)")
+        # A number at the end of a low axis may reach this far beyond it.
+        self.plot.getPlotItem().getAxis("left").setStyle(hideOverlappingLabels=OVER_THE_END)
         self.lines = {item: Line(item) for item in SET_NAMES}
-        self.bands = Bands()
-        self.plot.add(self.bands, *self.lines.values())
+        self.bands, self.picked = Bands(), PickedStrip()
+        self.plot.add(self.bands, self.picked, *self.lines.values())
         self.plot.zoomed = self._zoomed
         self.plot.pressed = self.plot.dragged = self._moved
         self.plot.hovered = self._hovered
@@ -75,7 +82,12 @@ class TraceView(View):
         if self._traces is not snapshot.traces:
             self._traces = snapshot.traces
             self.set_scale(snapshot)
+            self._number_axis()
             self._draw()
+        if changed & {Result.CIRCLES, Result.TRACES}:
+            traces = snapshot.traces
+            spans = {} if traces is None else picked_spans(snapshot.circles, traces.band_hz)
+            self.picked.show_spans(spans)
         self._rested = snapshot.rested
         if changed & {Result.RESTED, Result.TRIALS, Result.SHOWN}:
             # Bands of an earlier choice stay, dimmed: while A is brushed nothing is drawn anew.
@@ -88,14 +100,16 @@ class TraceView(View):
             line.setOpacity(0.4 if faded else 1.0)
 
     def _draw(self) -> None:
+        """Draw the lines; one that would leave the axis runs along its edge."""
         traces = self._traces
+        low, high = self.plot.value_range
         for name, line in self.lines.items():
             trace = traces.of.get(name) if traces is not None else None
             if traces is None or trace is None:
                 line.clear_points()
             else:
                 values = np.where(traces.valid, self.values(trace), np.nan)
-                line.set_points(traces.times_s, values)
+                line.set_points(traces.times_s, np.clip(values, low, high))
 
     def _draw_bands(self) -> None:
         traces = self._traces
@@ -121,9 +135,21 @@ class TraceView(View):
         return edges
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        """Bands at the new pixels."""
+        """Bands at the new pixels; two numbers on an axis that is too low for more."""
         super().resizeEvent(event)
         self._draw_bands()
+        self._number_axis()
+
+    def _number_axis(self) -> None:
+        low, high = self.plot.value_range
+        axis = self.plot.getPlotItem().getAxis("left")
+        if self.plot.plot_area().height() >= LOW_PLOT:
+            axis.setTicks(None)
+            return
+        ends = {0.0, math.floor(high)} if high >= 1 else {0.0, math.floor(high * 10) / 10}
+        if low < -0.5 * high:
+            ends = {-value for value in ends if value} | {value for value in ends if value}
+        axis.setTicks([[(value, f"{value:g}".replace("-", "−")) for value in sorted(ends)]])
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
@@ -132,13 +158,20 @@ class TraceView(View):
         for line in self.lines.values():
             line.set_look(look)
         self.bands.set_look(look)
+        self.picked.set_look(look)
         self._draw_bands()
 
     def _moved(self, pointer: Pointer) -> None:
         self.ways.do(move_cursor(pointer.x))
 
     def _hovered(self, pointer: Pointer | None) -> None:
-        self.ways.hint("" if pointer is None else f"{pointer.x:.3f} s · {self.words(pointer.y)}")
+        if pointer is None:
+            self.ways.hint("")
+            return
+        time_s = f"{pointer.x:.3f}".replace("-", "−")
+        letters = self.picked.letters_at(pointer.x)
+        said = f" · picked here ({' and '.join(letters)})" if letters else ""
+        self.ways.hint(f"{time_s} s · {self.words(pointer.y)}{said}")
 
     def words(self, value: float) -> str:
         """A value in words for the foot line."""
@@ -146,94 +179,3 @@ class TraceView(View):
 
     def _zoomed(self, span_s: tuple[float, float] | None) -> None:
         self.ways.do(zoom_time(span_s))
-
-
-BAND_WORDS = (
-    " Bands: 95 % bootstrap over trials (1,000 draws), of A and B, or of all where neither is "
-    "picked."
-)
-
-
-class LockingTrace(TraceView):
-    """ITC or PPC over time in the spot's band, with the chance level of each n."""
-
-    def __init__(self, parent: QWidget | None = None) -> None:
-        super().__init__("itc_trace", "ITC", parent)
-        self.chances = ChanceLevels()
-        self.plot.add(self.chances)
-        self._name("ITC")
-
-    def _name(self, measure: str) -> None:
-        self._measure = measure
-        self.plot.name_axes(measure, "time from event (s)")
-        self.setAccessibleName(f"{measure} over time in the spot's band")
-        self.setToolTip(
-            f"{measure} averaged over the frequencies of the spot's band. The horizontal lines "
-            "are what chance exceeds once in 20 at one frequency, for each n." + BAND_WORDS
-        )
-
-    def values(self, trace: Trace) -> Floats:
-        """ITC or PPC."""
-        return trace.locking
-
-    def band(self, band: TraceBand, traces: Traces) -> tuple[Floats, Floats]:
-        """Ends of the band of ITC or PPC."""
-        if traces.measure == "ITC":
-            return band.itc_low, band.itc_high
-        return band.ppc_low, band.ppc_high
-
-    def set_scale(self, snapshot: Snapshot) -> None:
-        """From 0 (PPC: from a little below) to the largest value; move the chance levels."""
-        traces = snapshot.traces
-        if traces is not None:
-            if traces.measure != self._measure:
-                self._name(traces.measure)
-            low = 0.0 if traces.measure == "ITC" else -0.25 * traces.locking_limit
-            self.plot.set_value_range(low, traces.locking_limit * 1.04)
-        of = traces.of if traces is not None else {}
-        drawn = next((of[name] for name in ("A", "B", "all") if name in of), None)
-        self.chances.setVisible(drawn is not None)
-        if drawn is not None:
-            levels = {name: trace.chance for name, trace in of.items()}
-            self.chances.show_levels(levels, f"chance 5 %, n {drawn.n}", drawn.chance)
-
-    def set_look(self, look: Look) -> None:
-        """Take the colours of a theme."""
-        super().set_look(look)
-        self.chances.set_look(look)
-
-    def words(self, value: float) -> str:
-        """ITC or PPC in words."""
-        return f"{self._measure} {fixed(value, 3)}"
-
-
-class PowerTrace(TraceView):
-    """Power over time in the spot's band, dB against the baseline."""
-
-    def __init__(self, parent: QWidget | None = None) -> None:
-        super().__init__("power_trace", "dB", parent)
-        self.setAccessibleName("power over time in the spot's band")
-        self.setToolTip(
-            "Power in dB against the baseline, averaged over the frequencies of the spot's band."
-            + BAND_WORDS
-            + " Evoked and induced power have none: draws repeat trials, which lifts the evoked "
-            "part."
-        )
-
-    def values(self, trace: Trace) -> Floats:
-        """DB."""
-        return trace.power_db
-
-    def band(self, band: TraceBand, traces: Traces) -> tuple[Floats, Floats] | None:
-        """Ends of the band of total power."""
-        return (band.power_db_low, band.power_db_high) if traces.part == "total" else None
-
-    def set_scale(self, snapshot: Snapshot) -> None:
-        """Symmetric around 0, as wide as the maps of the sets."""
-        if snapshot.traces is not None:
-            limit = snapshot.traces.db_limit * 1.04
-            self.plot.set_value_range(-limit, limit)
-
-    def words(self, value: float) -> str:
-        """Power in words."""
-        return f"{fixed(value, 1, sign=True)} dB"
