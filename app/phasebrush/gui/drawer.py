@@ -8,6 +8,9 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import QSize, Qt
 from PySide6.QtWidgets import QSizePolicy, QStackedWidget, QTabBar, QVBoxLayout, QWidget
 
+from phasebrush.gui.views.carriers_plot import CarriersPlot
+from phasebrush.gui.views.compare_panel import ComparePanel
+from phasebrush.gui.views.methods_panel import MethodsPanel
 from phasebrush.gui.views.notes_panel import NotesPanel
 from phasebrush.gui.views.scatter import ScatterView
 from phasebrush.gui.views.steps_plot import StepsPlot
@@ -24,7 +27,10 @@ class DrawerViews:
     trials: TrialTable
     steps: StepsPlot
     scatter: ScatterView
+    compare: ComparePanel
+    carriers: CarriersPlot
     notes: NotesPanel
+    methods: MethodsPanel
 
     def all(self) -> tuple[View, ...]:
         """Every view."""
@@ -47,7 +53,9 @@ class Drawer(QWidget):
         self.tabs.setExpanding(False)
         self.tabs.setUsesScrollButtons(False)
         self.tabs.setFocusPolicy(Qt.FocusPolicy.TabFocus)
-        self.tabs.setAccessibleName("drawer: trials, steps, scatter, notes")
+        self.tabs.setAccessibleName(
+            "drawer: trials, steps, scatter, A against B, carried by, notes, methods"
+        )
         self._pages = QStackedWidget(self)
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
@@ -55,11 +63,17 @@ class Drawer(QWidget):
         layout.addWidget(self.tabs)
         layout.addWidget(self._pages, 1)
         self.tabs.currentChanged.connect(self._pages.setCurrentIndex)
-        self.views = DrawerViews(TrialTable(), StepsPlot(), ScatterView(), NotesPanel())
+        self.views = DrawerViews(
+            TrialTable(), StepsPlot(), ScatterView(), ComparePanel(), CarriersPlot(),
+            NotesPanel(), MethodsPanel(),
+        )  # fmt: skip
         self.add_tab("trials", self.views.trials, "Every trial in a table")
         self.add_tab("steps", self.views.steps, "Trials in equal-count steps of the sort key")
         self.add_tab("scatter", self.views.scatter, "Two numbers a trial against each other")
+        self.add_tab("A against B", self.views.compare, "Test of subset A against subset B")
+        self.add_tab("carried by", self.views.carriers, "Which trials carry the alignment")
         self.add_tab("notes", self.views.notes, "Named subsets and notes")
+        self.add_tab("methods", self.views.methods, "What was done, in words to be copied")
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
 
     def sizeHint(self) -> QSize:

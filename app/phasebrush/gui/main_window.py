@@ -175,7 +175,7 @@ class MainWindow(QMainWindow):
         workbench = self.workbench
         listeners = workbench.listeners
         listeners.dirty = self.clock.request
-        listeners.jobs = self.foot.show_jobs
+        listeners.jobs = self._show_jobs
         listeners.message = self.message_bar.say
         listeners.fresh = self.message_bar.clear
         listeners.failed = self._tell_fault
@@ -193,11 +193,19 @@ class MainWindow(QMainWindow):
                 seen=self._seen,
             )
         self.docks.drawer_content.views.notes.apply_rule = self._apply_rule
+        compare = self.docks.drawer_content.views.compare
+        compare.start, compare.stop = workbench.compare, partial(workbench.jobs.drop, "compare")
         self.docks.views.recordings.open_listed = workbench.open_listed
         docks = self.docks
         docks.maps_show.chosen = self._maps_show
         docks.measure.chosen = lambda value: workbench.do(intents.show_consistency(value))
         docks.part.chosen = lambda value: workbench.do(intents.show_power_part(value))
+
+    def _show_jobs(self) -> None:
+        """Progress at the foot; the button of the test stops it while it runs."""
+        self.foot.show_jobs()
+        running = self.workbench.jobs.runs("compare")
+        self.docks.drawer_content.views.compare.show_running(running=running)
 
     # -- frames -------------------------------------------------------------------------------
 

@@ -8,10 +8,10 @@ from phasebrush import __version__
 from phasebrush.model.methods.recording_part import recording_words, subset_words, trial_words
 from phasebrush.model.methods.references import Source, reference_list, used_sources
 from phasebrush.model.methods.statistics_part import (
+    comparing_words,
     rested_words,
     spot_words,
     steps_words,
-    comparing_words,
 )
 from phasebrush.model.methods.transform_part import (
     average_words,
@@ -56,8 +56,10 @@ def methods_text(snapshot: Snapshot) -> str:
         transform_words(state.transform, trials),
         f"{phase_words(snapshot)} {power_words(snapshot)} {average_words()}",
         " ".join(words for words in (*statistics, rested_words(snapshot)) if words),
-        f"Computed with Phasebrush {__version__}; random draws by NumPy's default generator "
-        f"(PCG64). Terms as guidelines ask for ({GUIDELINES}).",
+        (
+            f"Computed with Phasebrush {__version__}; random draws by NumPy's default generator "
+            f"(PCG64). Terms as guidelines ask for ({GUIDELINES})."
+        ),
     ]
     text = "\n\n".join(words for words in paragraphs if words)
     return f"{text}\n\nReferences\n{reference_list(used_sources(text))}"

@@ -58,33 +58,36 @@ def _matched(rested: Rested) -> list[str]:
     matched = rested.matched
     if matched is None:
         return []
-    return [
+    words = (
         f"To compare ITC at equal counts, subset {rested.matched_set} was thinned at random from "
         f"{matched.n_large:,} to {counted(matched.n, 'trial')} ({matched.draws:,} draws without "
         f"replacement, seed {matched.seed}; mean and 95 % range)."
-    ]
+    )
+    return [words]
 
 
 def _between(rested: Rested, drawn: str) -> list[str]:
     between = rested.between
     if between is None or not between.locked:
         return []
-    return [
+    words = (
         "The phase difference A − B is that of the mean unit phasors at the spot, where both "
         f"subsets were phase-locked (Rayleigh p < {number(LOCKED_P)}), with a 95 % bootstrap "
         f"interval ({drawn}; {Source.FISHER.short})."
-    ]
+    )
+    return [words]
 
 
 def _carriers(rested: Rested, drawn: str) -> list[str]:
     if rested.carriers is None:
         return []
     whom = "all trials" if rested.carriers_set == "all" else f"subset {rested.carriers_set}"
-    return [
+    words = (
         f"What carries the alignment of {whom} was looked at by leaving out trials from the most "
         "aligned on, beside the same done to uniform phases and to von Mises phases of equal "
         f"alignment ({drawn}; {Source.MARDIA.short}). This is a description, not a test."
-    ]
+    )
+    return [words]
 
 
 def steps_words(snapshot: Snapshot) -> str:
@@ -135,8 +138,8 @@ def comparing_words(snapshot: Snapshot) -> str:
     return (
         f"A was tested against B by relabelling within their union, counts kept: {listed(named)}. "
         "Each point's difference became a z by the draws' mean and standard deviation; "
-        f"neighbouring valid points with |z| > {number(THRESHOLD_Z)} and one sign formed a cluster of "
-        f"mass sum |z|, two-sided; {p}, which corrects for all points of a map or waveform, "
+        f"neighbouring valid points with |z| > {number(THRESHOLD_Z)} and one sign formed a cluster "
+        f"of mass sum |z|, two-sided; {p}, which corrects for all points of a map or waveform, "
         f"(1 + heavier draws) / (1 + draws) {cited(Source.MARIS, Source.PHIPSON)}. A cluster's p "
         "speaks for a difference somewhere, not for the cluster's edges in time or frequency "
         f"{cited(Source.SASSENHAGEN)}.{many}"

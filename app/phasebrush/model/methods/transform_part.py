@@ -19,8 +19,10 @@ def transform_words(settings: TransformSettings, trials: Trials) -> str:
     """Family, frequencies, cycles, widths, time step, ends."""
     freqs = counted(int(settings.count), "frequency", "frequencies")
     said = [
-        "Each trial was transformed with complex Morlet wavelets, Gaussian-windowed complex "
-        f"exponentials made zero-mean {cited(Source.TALLON_BAUDRY)}, at {freqs}"
+        (
+            "Each trial was transformed with complex Morlet wavelets, Gaussian-windowed complex "
+            f"exponentials made zero-mean {cited(Source.TALLON_BAUDRY)}, at {freqs}"
+        )
     ]
     if settings.count == 1:
         said[0] += f" ({number(settings.low_hz)} Hz, {_cycles(settings.low_cycles)})."
@@ -83,16 +85,15 @@ def phase_words(snapshot: Snapshot) -> str:
 def power_words(snapshot: Snapshot) -> str:
     """Parts of the power, baseline, dB."""
     start, end = snapshot.state.baseline_s
-    said = [
+    said = (
         "Total power is the mean squared amplitude over trials (µV², amplitudes as of a cosine), "
         "evoked power the squared amplitude of the mean coefficient, induced power total less "
         f"evoked. Maps show {snapshot.state.power_part} power in decibels, 10 log10 of the mean "
         "over trials against the mean of the same set and part over the valid points from "
         f"{span(start, end, 's')} at that frequency."
-    ]
-    if snapshot.maps is not None:
-        said += [f"Note: {typeset(note)}." for note in snapshot.maps.notes]
-    return " ".join(said)
+    )
+    notes = () if snapshot.maps is None else snapshot.maps.notes
+    return " ".join((said, *(f"Note: {typeset(note)}." for note in notes)))
 
 
 def average_words() -> str:
