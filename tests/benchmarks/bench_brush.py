@@ -2,13 +2,16 @@
 
 A real window of 1600 x 1000 drawn into memory, real mouse events on the trial stack, 50
 frequencies x 300 times. A step moves the brush's edge by 20 trials; it is timed from the event
-to the repainted window. Beside it, in turn: the same subset's average, ITC and power computed
-from its trials with the library that serves as the numerical reference (two jobs), and the memory
-that the process took for the coefficients.
+to the repainted window, on the clock on the wall and in time of the processor, which other work
+on the machine hardly changes. Without the drawer and with each of its tabs, in turn in one run,
+so that a slow minute falls on all alike. Beside it: the same subset's average, ITC and power
+computed from its trials with the library that serves as the numerical reference (two jobs), and
+the memory that the process took for the coefficients.
 """
 
 from __future__ import annotations
 
+import argparse
 import os
 import resource
 import sys
@@ -33,7 +36,9 @@ from phasebrush.model.workbench import Workbench
 
 SFREQ_HZ = 300.0
 STEP_ROWS = 20
-STEPS = 150
+STEPS, FIRST = 60, 10
+ROUNDS = 3
+TABS = ("", "trials", "scatter", "steps", "notes")
 SETTINGS = TransformSettings(low_hz=3.0, high_hz=40.0, count=50)
 REST_S = 0.02
 
@@ -91,8 +96,16 @@ class Bench:
                 self.app.processEvents()
                 return
 
+    def open_tab(self, tab: str) -> None:
+        """Open the drawer at a tab; an empty name closes it."""
+        if bool(tab) != self.window.docks.drawer_content.isVisible():
+            self.window.toggle_drawer()
+        if tab:
+            self.window.docks.drawer_content.open_tab(tab)
+        self.settle()
+
     def steps(self) -> np.ndarray:
-        """Seconds from each mouse event to the repainted window."""
+        """Seconds from each mouse event to the repainted window: wall and processor, (steps, 2)."""
         stack = self.window.bench.stack
         viewport = stack.plot.viewport()
         n_trials = len(self.trials)
@@ -101,20 +114,23 @@ class Bench:
         def place(row: float) -> QPoint:
             return stack.plot.to_pixel(0.2, row + 0.5).toPoint()
 
+        # Every drag starts from nothing: the press would take hold of an edge that is there.
+        self.window.workbench.do(intents.clear())
+        self.settle()
         QTest.mousePress(viewport, Qt.MouseButton.LeftButton, pos=place(middle - n_trials // 6))
         self.settle()
         seconds = []
         rows = middle + n_trials // 6
-        for step in range(STEPS):
+        for step in range(FIRST + STEPS):
             rows += STEP_ROWS if step // 10 % 2 == 0 else -STEP_ROWS
             time.sleep(REST_S)
-            start = time.perf_counter()
+            start, start_busy = time.perf_counter(), time.process_time()
             self.move(viewport, place(rows))
             self.settle()
-            seconds.append(time.perf_counter() - start)
+            seconds.append((time.perf_counter() - start, time.process_time() - start_busy))
         QTest.mouseRelease(viewport, Qt.MouseButton.LeftButton, pos=place(rows))
         self.settle()
-        return np.array(seconds[10:])
+        return np.array(seconds[FIRST:])
 
     @staticmethod
     def move(viewport: object, place: QPoint) -> None:
@@ -155,48 +171,65 @@ def reference_step(trials: Trials, n_used: int) -> float:
     return time.perf_counter() - start
 
 
+def measure(bench: Bench, tabs: tuple[str, ...], rounds: int) -> dict[str, np.ndarray]:
+    """Steps by tab, the tabs in turn."""
+    found: dict[str, list[np.ndarray]] = {tab: [] for tab in tabs}
+    for _round in range(rounds):
+        for tab in tabs:
+            bench.open_tab(tab)
+            found[tab].append(bench.steps())
+    return {tab: 1000 * np.concatenate(steps) for tab, steps in found.items()}
+
+
+def tell(n_trials: int, steps: dict[str, np.ndarray]) -> None:
+    """Print a line a tab."""
+    for tab, times in steps.items():
+        middle, late = np.percentile(times, (50, 95), axis=0)
+        print(
+            f"{n_trials} trials, drawer {tab or 'shut':8s} wall median {middle[0]:5.1f} ms, "
+            f"95th percentile {late[0]:5.1f}; processor median {middle[1]:5.1f}, "
+            f"95th percentile {late[1]:5.1f}",
+            flush=True,
+        )
+
+
+def tell_memory(bench: Bench) -> None:
+    """Print what the coefficients took."""
+    values = bench.window.workbench.snapshot.coefficients.values
+    held = values.nbytes + bench.trials.data_uv.nbytes
+    print(
+        f"  memory: peak grew by {bench.grown_bytes / 1e6:.0f} MB for {values.nbytes / 1e6:.0f} MB "
+        f"of coefficients and {bench.trials.data_uv.nbytes / 1e6:.0f} MB of trials: "
+        f"{bench.grown_bytes / held:.2f} x both"
+    )
+
+
 def main() -> None:
     """Print the table."""
+    asked = argparse.ArgumentParser(description="Speed of a brush step.")
+    asked.add_argument("--tabs", nargs="*", choices=[tab or "shut" for tab in TABS])
+    asked.add_argument("--trials", nargs="*", type=int, default=(1000, 5000))
+    asked.add_argument("--rounds", type=int, default=ROUNDS)
+    asked.add_argument("--no-reference", action="store_true")
+    given = asked.parse_args()
+    tabs = tuple("" if tab == "shut" else tab for tab in given.tabs or ()) or TABS
     medians = {}
-    bench = Bench(1000)
-    bench.window.toggle_drawer()
-    for tab in ("trials", "scatter", "notes", "steps"):
-        bench.window.docks.drawer_content.open_tab(tab)
-        bench.settle()
-        seconds = bench.steps()
-        print(
-            f"1000 trials, drawer open at {tab}: step median {1000 * np.median(seconds):.1f} ms, "
-            f"95th percentile {1000 * np.percentile(seconds, 95):.1f} ms"
-        )
-    bench.close()
-    for n_trials in (1000, 5000):
+    for n_trials in given.trials:
         bench = Bench(n_trials)
-        coefficients = bench.window.workbench.snapshot.coefficients
-        shape = coefficients.values.shape
-        held = coefficients.values.nbytes + bench.trials.data_uv.nbytes
-        seconds = bench.steps()
-        n_used = bench.window.workbench.state.a.n
-        medians[n_trials] = float(np.median(seconds))
-        print(
-            f"{n_trials} trials x {shape[1]} x {shape[2]}: step median "
-            f"{1000 * np.median(seconds):.1f} ms, 95th percentile "
-            f"{1000 * np.percentile(seconds, 95):.1f} ms, subset of {n_used}"
-        )
-        if n_trials == 1000:
-            print(
-                f"  memory: peak grew by {bench.grown_bytes / 1e6:.0f} MB for "
-                f"{coefficients.values.nbytes / 1e6:.0f} MB of coefficients and "
-                f"{bench.trials.data_uv.nbytes / 1e6:.0f} MB of trials: "
-                f"{bench.grown_bytes / held:.2f} x both"
-            )
-        else:
-            reference = reference_step(bench.trials, n_used)
+        steps = measure(bench, tabs, given.rounds)
+        tell(n_trials, steps)
+        medians[n_trials] = float(np.median(steps[tabs[0]][:, 0]))
+        tell_memory(bench)
+        if not given.no_reference and n_trials == max(given.trials):
+            reference = reference_step(bench.trials, bench.window.workbench.state.a.n)
             print(
                 f"  reference library for the same subset: {reference:.1f} s, "
-                f"{reference / medians[n_trials]:.0f} x one step; held {held / 1e6:.0f} MB"
+                f"{1000 * reference / medians[n_trials]:.0f} x one step"
             )
         bench.close()
-    print(f"5,000 against 1,000 trials: {medians[5000] / medians[1000]:.2f} x")
+    if len(medians) > 1:
+        few, many = min(medians), max(medians)
+        print(f"{many} against {few} trials: {medians[many] / medians[few]:.2f} x")
 
 
 if __name__ == "__main__":

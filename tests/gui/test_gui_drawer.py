@@ -24,7 +24,7 @@ from window_tools import (
 
 from phasebrush.gui.views.trial_rows import SET_COLUMN
 
-TABS = ("trials", "steps", "scatter", "notes")
+TABS = ("trials", "steps", "scatter", "A against B", "carried by", "notes", "methods")
 
 
 @pytest.fixture

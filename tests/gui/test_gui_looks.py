@@ -96,6 +96,7 @@ def test_a_colour_is_the_value_it_stands_for(window):
     """A pixel in the middle of a cell of the ITC map has the ink of that cell's value."""
     view = window.docks.views.itc_map
     maps = window.workbench.snapshot.maps
+    view.overlay.hide()  # lines drawn over a cell have colours of their own
     picture = seen(view.plot)
     area, ratio = view.plot.plot_area(), window.devicePixelRatioF()
     table = colour_maps.ink(LIGHT)

@@ -45,6 +45,7 @@ class MethodsPanel(View):
         self.text = ReadingArea(self)
         self.text.setObjectName("methodsText")
         self.text.setAccessibleName("methods text, read only")
+        self.text.setToolTip("Text to read, select and copy; it follows the settings")
         self.copy_button = quiet_button(
             "copy", "Copy the whole methods text", self, name="copy methods text"
         )

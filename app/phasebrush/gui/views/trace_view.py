@@ -59,6 +59,7 @@ class TraceView(View):
         self.plot.hovered = self._hovered
         self._traces: Traces | None = None
         self._rested: Rested | None = None
+        self._ends: tuple[float, ...] = ()
 
     def values(self, trace: Trace) -> Floats:
         """What is drawn of a set."""
@@ -141,15 +142,16 @@ class TraceView(View):
         self._number_axis()
 
     def _number_axis(self) -> None:
+        """Two numbers on an axis that is too low for more; drawn anew only where they change."""
         low, high = self.plot.value_range
-        axis = self.plot.getPlotItem().getAxis("left")
-        if self.plot.plot_area().height() >= LOW_PLOT:
-            axis.setTicks(None)
-            return
-        ends = {0.0, math.floor(high)} if high >= 1 else {0.0, math.floor(high * 10) / 10}
-        if low < -0.5 * high:
-            ends = {-value for value in ends if value} | {value for value in ends if value}
-        axis.setTicks([[(value, f"{value:g}".replace("-", "−")) for value in sorted(ends)]])
+        ends: tuple[float, ...] = ()
+        if self.plot.plot_area().height() < LOW_PLOT:
+            top = math.floor(high) if high >= 1 else math.floor(high * 10) / 10
+            ends = (-top, top) if low < -0.5 * high else (0.0, top)
+        if ends != self._ends:
+            self._ends = ends
+            words = [(value, f"{value:g}".replace("-", "−")) for value in ends]
+            self.plot.getPlotItem().getAxis("left").setTicks([words] if ends else None)
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
