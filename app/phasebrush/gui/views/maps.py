@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
 
 from phasebrush.gui.number_words import fixed
 from phasebrush.gui.views.map_overlay import NOTHING
-from phasebrush.gui.views.map_view import MapView
+from phasebrush.gui.views.map_view import SHARED_NEEDS, MapView
 from phasebrush.look import colour_maps
 from phasebrush.model.stale import Result
 
@@ -50,6 +50,7 @@ def tested_outline(snapshot: Snapshot, tested: Tested) -> Outlined:
 class LockingMap(MapView):
     """Inter-trial coherence or pairwise phase consistency; A − B as a signed difference."""
 
+    needs: ClassVar[frozenset[Result]] = SHARED_NEEDS | {Result.CONSISTENCY}
     measure = "ITC"
 
     def __init__(self, parent: QWidget | None = None) -> None:
