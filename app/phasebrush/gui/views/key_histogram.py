@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 from PySide6.QtCore import QLineF, QRectF, Qt
-from PySide6.QtGui import QColor, QMouseEvent, QPainter, QPaintEvent
+from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPaintEvent
 from PySide6.QtWidgets import QSizePolicy, QWidget
 
 from phasebrush.gui import theme
@@ -36,7 +36,9 @@ class Histogram(QWidget):
         self._range = (0.0, 1.0)
         self._handles: tuple[float, float] | None = None
         self.picked: Callable[[float, float, QMouseEvent | None], None] | None = None
+        self.called_off: Callable[[], None] | None = None
         self._anchor: float | None = None
+        self._key = ""
         self._ends = ("", "")
         self._unit = ""
         self.setMinimumHeight(48)
@@ -44,6 +46,7 @@ class Histogram(QWidget):
         self.setFont(theme.font(7.5))
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
         self.setMouseTracking(True)
+        self.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
         self.setAccessibleName("histogram of the sort key: drag to pick a range of values")
 
     def show_counts(
@@ -57,6 +60,11 @@ class Histogram(QWidget):
         """Take the values of the key, who is in A and B, and the range that A was picked by."""
         self._counts = {}
         self._handles = handles
+        title = "" if key is None else key.title
+        if title != self._key:
+            # Values of the earlier key mean nothing on the later one's scale.
+            self._key = title
+            self._end()
         finite = np.zeros(0, dtype=bool) if key is None else np.isfinite(key.values) & used
         if key is not None and finite.any():
             values = key.values[finite]
@@ -126,6 +134,23 @@ class Histogram(QWidget):
             self.picked(math.nan, math.nan, None)
         self._anchor = None
         event.accept()
+
+    def _end(self) -> None:
+        """A drag that is under way ends where it is."""
+        if self._anchor is not None:
+            self._anchor = None
+            if self.picked is not None:
+                self.picked(math.nan, math.nan, None)
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Escape calls a drag off."""
+        if event.key() == Qt.Key.Key_Escape and self._anchor is not None:
+            self._anchor = None
+            if self.called_off is not None:
+                self.called_off()
+            event.accept()
+        else:
+            super().keyPressEvent(event)
 
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Draw the bars and the two ends of the scale."""

@@ -47,6 +47,7 @@ class PickCorner(View):
         self._gesture = 0
         self.histogram = Histogram(self)
         self.histogram.picked = self._range_picked
+        self.histogram.called_off = self._called_off
         layout = QVBoxLayout(self)
         layout.setContentsMargins(0, 0, 0, 0)
         layout.setSpacing(2)
@@ -139,6 +140,11 @@ class PickCorner(View):
             alt=bool(held & Qt.KeyboardModifier.AltModifier),
         )
         self.ways.do(intents.pick_range(letter, start, end, how=how, gesture=self._gesture))
+
+    def _called_off(self) -> None:
+        """Back to what was picked before the drag."""
+        self._gesture = 0
+        self.ways.abandon_gesture()
 
     def menu(self) -> QMenu:
         """Every way of choosing that needs no gesture, for A and for B."""
