@@ -110,7 +110,7 @@ def test_the_size_is_remembered(open_window, trials, ini):
     window.close()
     turn()
     again = open_window(trials, settings=ini(), size=(1600, 1000))
-    again.restore_place()
+    again.arrangement.restore_place()
     settle(again)
     assert (again.width(), again.height()) == pytest.approx((1333, 876), abs=2)
 

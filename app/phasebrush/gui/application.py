@@ -113,7 +113,7 @@ def run(wish: Wish) -> int:
     app.aboutToQuit.connect(window.shut_down)
     window.resize(*wish.size)
     if not wish.picture:
-        window.restore_place()
+        window.arrangement.restore_place()
     window.show()
     try:
         if wish.picture:

@@ -8,14 +8,10 @@ from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QByteArray, QSettings, Qt, QTimer
+from PySide6.QtCore import QSettings, QTimer
 from PySide6.QtWidgets import (
-    QAbstractSpinBox,
     QApplication,
-    QComboBox,
-    QLineEdit,
     QMainWindow,
-    QMenu,
     QStackedWidget,
     QVBoxLayout,
     QWidget,
@@ -24,6 +20,7 @@ from PySide6.QtWidgets import (
 from phasebrush.errors import PersonError
 from phasebrush.gui import theme
 from phasebrush.gui.actions import Actions
+from phasebrush.gui.arrangement import Arrangement
 from phasebrush.gui.asking import Asking
 from phasebrush.gui.bench import Bench
 from phasebrush.gui.docks import Docks
@@ -33,6 +30,7 @@ from phasebrush.gui.message_bar import MessageBar
 from phasebrush.gui.view import Ways
 from phasebrush.gui.view_board import ViewBoard
 from phasebrush.gui.welcome import SAMPLES, Welcome
+from phasebrush.gui.window_tools import WindowTools
 from phasebrush.look.tokens import DARK, LIGHT, Look
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
@@ -42,19 +40,16 @@ from phasebrush.model.workspace_file import WORKSPACE_ENDING
 from phasebrush.sample_files import default_sample, sample_recordings
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
-
     from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
 
     from phasebrush.core.rule import Rule
     from phasebrush.gui.view import View
     from phasebrush.model.recovery import Offer, Recovery
     from phasebrush.model.results import Snapshot
-    from phasebrush.model.state import Letter, MapsShow, PowerPart
+    from phasebrush.model.state import Letter
     from phasebrush.model.workbench import Workbench
 
 
-NARROW = 1180
 ASIDE_MS = 2000
 TITLES = frozenset(
     {Result.TRIALS, Result.CHANNEL, Result.KEY, Result.STACK, Result.SUBSETS, Result.MAPS,
@@ -95,15 +90,14 @@ class MainWindow(QMainWindow):
         self.keeper = WorkKeeper(workbench, recovery)
         self.look = look
         self._settings = settings
-        self._folded: list[QWidget] = []
-        self._arranged = False
         self._closed = False
-        self._flipped_from: MapsShow | None = None
         self.clock = FrameClock(self._flush, self)
         self.asking = Asking(self)
-        self.actions_ = Actions(self, self._slots())
-        self.docks = Docks(self)
         self.bench = Bench()
+        self.tools = WindowTools(self)
+        self.actions_ = Actions(self, self.tools.slots())
+        self.docks = Docks(self)
+        self.arrangement = Arrangement(self, self.docks, settings)
         self.message_bar = MessageBar()
         self.foot = Foot(
             lambda: workbench.jobs.running, workbench.stop, workbench.compute_again, self
@@ -133,44 +127,6 @@ class MainWindow(QMainWindow):
         workbench.want_rested(wanted=True)
         self.clock.request()
 
-    def _slots(self) -> dict[str, Callable[[], object]]:
-        show: dict[str, MapsShow] = {
-            "show_all": "all",
-            "show_a": "A",
-            "show_b": "B",
-            "show_difference": "A-B",
-        }
-        slots: dict[str, Callable[[], object]] = {
-            name: partial(self._maps_show, which) for name, which in show.items()
-        }
-        return slots | {
-            "open": self.asking.choose_file,
-            "save": self.asking.save_work,
-            "save_as": self.asking.save_work_as,
-            "open_folder": self.asking.choose_folder,
-            "samples": self._open_samples,
-            "cut": self.asking.cut_dialog,
-            "transform": self.asking.transform_dialog,
-            "undo": self.workbench.undo,
-            "redo": self.workbench.redo,
-            "panels": self._panels_menu,
-            "drawer": self.toggle_drawer,
-            "picture": self.asking.choose_picture,
-            "theme": self.toggle_look,
-            "keys": self.asking.keys,
-            "about": self.asking.about,
-            "thirds": self._thirds,
-            "quarters": self._quarters,
-            "suspects": self.asking.suspects_dialog,
-            "halves": self._halves,
-            "swap": self._swap,
-            "measure": self._other_measure,
-            "part": self._next_part,
-            "whole": self._whole,
-            "earlier_channel": partial(self._step_channel, -1),
-            "later_channel": partial(self._step_channel, 1),
-        }
-
     def _wire(self) -> None:
         workbench = self.workbench
         listeners = workbench.listeners
@@ -196,10 +152,7 @@ class MainWindow(QMainWindow):
         compare = self.docks.drawer_content.views.compare
         compare.start, compare.stop = workbench.compare, partial(workbench.jobs.drop, "compare")
         self.docks.views.recordings.open_listed = workbench.open_listed
-        docks = self.docks
-        docks.maps_show.chosen = self._maps_show
-        docks.measure.chosen = lambda value: workbench.do(intents.show_consistency(value))
-        docks.part.chosen = lambda value: workbench.do(intents.show_power_part(value))
+        self.tools.wire_switches()
 
     def _show_jobs(self) -> None:
         """Progress at the foot; the button of the test stops it while it runs."""
@@ -284,14 +237,10 @@ class MainWindow(QMainWindow):
 
     def _show_page(self, *, open_now: bool) -> None:
         page = 1 if open_now else 0
-        if open_now and not self._arranged:
-            self._arranged = True
-            if not self._restore_arrangement():
-                self.docks.arrange()
+        if not open_now:
+            self.arrangement.hide_docks()
+        elif self.arrangement.show_docks():
             self.bench.stack.setFocus()
-        elif not open_now:
-            for dock in self.docks.docks:
-                dock.hide()
         self._pages.setCurrentIndex(page)
 
     # -- recordings come in -------------------------------------------------------------------
@@ -310,7 +259,8 @@ class MainWindow(QMainWindow):
             self.workbench.do(intents.shelve(tuple(Shelved(*line) for line in names)))
         self.workbench.open(path, ask=ask)
 
-    def _open_samples(self) -> None:
+    def open_samples(self) -> None:
+        """Open the first sample session, with the others on the list."""
         self.open_path(str(default_sample()))
 
     def _tell_fault(self, error: Exception) -> None:
@@ -336,86 +286,23 @@ class MainWindow(QMainWindow):
     # -- keys and tools -----------------------------------------------------------------------
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
-        """Escape empties A and B where no drag took it."""
-        if event.key() == Qt.Key.Key_Escape:
-            if isinstance(QApplication.focusWidget(), QLineEdit | QAbstractSpinBox | QComboBox):
-                self.bench.stack.setFocus()  # leaving a field must not cost the pick
-            else:
-                self.workbench.do(intents.clear())
-            event.accept()
-        elif event.key() == Qt.Key.Key_F and not event.isAutoRepeat():
-            self._flip()
+        """Escape empties A and B where no drag took it; a held key flips them."""
+        if self.tools.key_pressed(event.key(), repeated=event.isAutoRepeat()):
             event.accept()
         else:
             super().keyPressEvent(event)
 
     def keyReleaseEvent(self, event: QKeyEvent) -> None:
         """The key that flips A and B was let go."""
-        if event.key() == Qt.Key.Key_F and not event.isAutoRepeat():
-            self._flip_back()
+        if self.tools.key_released(event.key(), repeated=event.isAutoRepeat()):
             event.accept()
         else:
             super().keyReleaseEvent(event)
-
-    def _flip(self) -> None:
-        """Show the other subset in the maps while a key is held: a blink comparison."""
-        shown = self.workbench.state.maps_show
-        self._flipped_from = shown
-        other: MapsShow = "B" if shown == "A" else "A"
-        self.workbench.do(intents.show_in_maps(other, fleeting=True))
-
-    def _flip_back(self) -> None:
-        if self._flipped_from is not None:
-            self.workbench.do(intents.show_in_maps(self._flipped_from, fleeting=True))
-            self._flipped_from = None
-
-    def _other_measure(self) -> None:
-        now = self.workbench.state.consistency
-        self.workbench.do(intents.show_consistency("PPC" if now == "ITC" else "ITC"))
-        self.docks.measure.show_value(self.workbench.state.consistency)
-
-    def _next_part(self) -> None:
-        parts: tuple[PowerPart, ...] = ("total", "evoked", "induced")
-        at = parts.index(self.workbench.state.power_part)
-        self.workbench.do(intents.show_power_part(parts[(at + 1) % len(parts)]))
-
-    def _maps_show(self, which: MapsShow, _checked: object = None) -> None:
-        self.workbench.do(intents.show_in_maps(which))
-        for name, button in self.docks.maps_show.buttons.items():
-            button.setChecked(name == which)
-
-    def _thirds(self) -> None:
-        self.bench.corner.pick_thirds()
-
-    def _halves(self) -> None:
-        self.bench.corner.pick_halves()
-
-    def _quarters(self) -> None:
-        self.bench.corner.pick_quarters()
-
-    def _swap(self) -> None:
-        self.workbench.do(intents.swap_subsets())
-
-    def _whole(self) -> None:
-        self.workbench.do(intents.zoom_time(None))
-
-    def _step_channel(self, step: int, _checked: object = None) -> None:
-        trials = self.workbench.snapshot.trials
-        channel = self.workbench.state.channel
-        if trials is not None and channel in trials.ch_names:
-            at = (trials.ch_names.index(channel) + step) % len(trials.ch_names)
-            self.workbench.do(intents.show_channel(trials.ch_names[at]))
 
     def toggle_drawer(self) -> None:
         """Open or close the drawer."""
         if self.workbench.snapshot.trials is not None:
             self.docks.toggle_drawer()
-
-    def _panels_menu(self) -> None:
-        menu: QMenu = self.docks.menu(self)
-        menu.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        button = self.actions_.button("panels")
-        menu.popup(button.mapToGlobal(button.rect().bottomLeft()))
 
     def save_picture(self, path: str) -> bool:
         """Save what the window shows as PNG; False if it could not be written."""
@@ -446,35 +333,7 @@ class MainWindow(QMainWindow):
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Below the smallest useful width the left column folds away."""
         super().resizeEvent(event)
-        if event.size().height() != event.oldSize().height():
-            self.docks.fit_drawer()
-        narrow = self.width() < NARROW
-        if narrow and not self._folded:
-            self._folded = [dock for dock in self.docks.docks[:4] if dock.isVisible()]
-            for dock in self._folded:
-                dock.hide()
-        elif not narrow and self._folded:
-            for dock in self._folded:
-                dock.show()
-            self._folded = []
-            # Docks that were pressed together do not grow back by themselves.
-            QTimer.singleShot(0, self, self.docks.share_room)
-
-    def _restore_arrangement(self) -> bool:
-        if self._settings is None:
-            return False
-        state = self._settings.value("arrangement")
-        if not isinstance(state, QByteArray):
-            return False
-        for dock in self.docks.docks:
-            dock.show()
-        return self.restoreState(state)
-
-    def restore_place(self) -> None:
-        """Put the window where it was."""
-        place = self._settings.value("place") if self._settings is not None else None
-        if isinstance(place, QByteArray):
-            self.restoreGeometry(place)
+        self.arrangement.follow_size(event)
 
     @property
     def settled(self) -> bool:
@@ -496,12 +355,8 @@ class MainWindow(QMainWindow):
         if self._closed:
             return
         self._closed = True
+        self.arrangement.remember()
         if self._settings is not None:
-            self._settings.setValue("place", self.saveGeometry())
-            for dock in self._folded:  # folded for want of room, not closed by the person
-                dock.show()
-            if self._arranged:
-                self._settings.setValue("arrangement", self.saveState())
             self._settings.setValue("look", self.look.name)
             self._settings.sync()
         self.finish_notes()
