@@ -160,7 +160,7 @@ def test_nothing_is_followed_while_a_button_is_down(window, view):
 # -- a brush ----------------------------------------------------------------------------------
 
 
-def test_a_brush_repaints_the_set_column_alone(window, view):
+def test_a_brush_repaints_the_set_of_the_rows_that_changed_alone(window, view):
     changes = QSignalSpy(view.rows.dataChanged)
     resets = QSignalSpy(view.rows.modelReset)
     layouts = QSignalSpy(view.rows.layoutChanged)
@@ -172,7 +172,8 @@ def test_a_brush_repaints_the_set_column_alone(window, view):
     for number in range(10):
         first, last, _roles = changes.at(number)
         assert (first.column(), last.column()) == (SET, SET)
-        assert (first.row(), last.row()) == (0, 59)
+        # The first step brings six trials, every other one a single one.
+        assert (last.row() - first.row() + 1 >= 6) if number == 0 else (first.row() == last.row())
     window.workbench.do(intents.brush_rows("A", 5, 19, gesture=gesture))
     settle(window)
     assert changes.count() == 10  # an equal brush changes nothing

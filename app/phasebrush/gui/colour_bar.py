@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 from PySide6.QtCore import QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent
+from PySide6.QtGui import QColor, QImage, QPainter, QPaintEvent, QPixmap
 from PySide6.QtWidgets import QWidget
 
 from phasebrush.gui import theme
@@ -42,6 +42,9 @@ class ColourBar(QWidget):
         self._mark: int | None = None
         self._said = self._scale_words = ""
         self._look = LIGHT
+        self._picture = QPixmap()
+        self._drawn_for: tuple[object, ...] = ()
+        self._drawn_table = self._table
         self.setFixedWidth(WIDTH)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self.setFont(theme.font(8.0))
@@ -82,12 +85,39 @@ class ColourBar(QWidget):
         self.setToolTip("\n".join(filter(None, (self._scale_words, self._said))))
 
     def paintEvent(self, _event: QPaintEvent) -> None:
-        """Draw the bar, its ticks and the unit."""
+        """Lay down the bar with its ticks, and the chance mark, which moves with n, over it."""
         painter = QPainter(self)
-        painter.fillRect(self.rect(), QColor(self._look.panel))
-        painter.setFont(self.font())
+        painter.drawPixmap(0, 0, self._ground())
         low, high = self._range
-        bar = QRectF(BAR_LEFT, self._top, BAR_WIDTH, self.height() - self._top - self._bottom)
+        bar = self._bar()
+        if low <= self._chance <= high:
+            y = round(bar.bottom() - (self._chance - low) / (high - low) * bar.height())
+            painter.setPen(pen(self._look.text, width=2))
+            painter.drawLine(round(bar.left()) - 4, y, round(bar.right()) + 2, y)
+        painter.end()
+
+    def _bar(self) -> QRectF:
+        return QRectF(BAR_LEFT, self._top, BAR_WIDTH, self.height() - self._top - self._bottom)
+
+    def _ground(self) -> QPixmap:
+        """Everything but the chance mark, painted when it changes: words take the time."""
+        ratio = self.devicePixelRatioF()
+        wanted = (self._range, self._look, self._unit, self.size(), ratio, self.font().key())
+        if wanted != self._drawn_for or self._table is not self._drawn_table:
+            self._drawn_for, self._drawn_table = wanted, self._table
+            self._picture = QPixmap(self.size() * ratio)
+            self._picture.setDevicePixelRatio(ratio)
+            self._picture.fill(QColor(self._look.panel))
+            painter = QPainter(self._picture)
+            painter.setFont(self.font())
+            self._draw_ground(painter)
+            painter.end()
+        return self._picture
+
+    def _draw_ground(self, painter: QPainter) -> None:
+        """Draw the bar, its ticks and the unit."""
+        low, high = self._range
+        bar = self._bar()
         strip = np.ascontiguousarray(self._table[::-1])
         picture = QImage(strip.data, 1, 256, 3, QImage.Format.Format_RGB888)
         painter.drawImage(bar, picture)
@@ -105,13 +135,7 @@ class ColourBar(QWidget):
             painter.drawLine(round(bar.right()), round(y), round(bar.right()) + 3, round(y))
             box = QRectF(bar.right() + 6, y - half, WIDTH - bar.right() - 6, 2 * half)
             painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, number(float(value), places))
-        if low <= self._chance <= high:
-            y = round(bar.bottom() - (self._chance - low) / span * bar.height())
-            painter.setPen(pen(self._look.text, width=2))
-            painter.drawLine(round(bar.left()) - 4, y, round(bar.right()) + 2, y)
-        painter.setPen(QColor(self._look.muted))
         painter.translate(WIDTH - half - 1, bar.center().y())
         painter.rotate(-90)
         unit = QRectF(-bar.height() / 2, -half, bar.height(), 2 * half)
         painter.drawText(unit, Qt.AlignmentFlag.AlignCenter, self._unit)
-        painter.end()

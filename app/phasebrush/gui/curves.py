@@ -174,7 +174,6 @@ class Bands(PixelImage):
             return
         (left, right), (low, high) = area.x_range, area.y_range
         columns = left + (np.arange(area.width) + 0.5) / area.width * (right - left)
-        rows = np.arange(area.height, dtype=np.int16)[:, None]
         picture = np.zeros((area.height, area.width), dtype=np.uint8)
         scale = area.height / (high - low)
         for number, (lower, upper) in edges.items():
@@ -185,7 +184,11 @@ class Bands(PixelImage):
                 for end in ends
             )
             first[missing] = 0  # and the last is -2: nothing lies between
-            picture |= ((rows >= first) & (rows <= last)).view(np.uint8) * np.uint8(number)
+            # Only as high as the band reaches: a plot is several times as high as its bands.
+            foot, top = max(0, int(first.min())), min(area.height, int(last.max()) + 1)
+            rows = np.arange(foot, top, dtype=np.int16)[:, None]
+            inside = ((rows >= first) & (rows <= last)).view(np.uint8)
+            picture[foot : max(foot, top)] |= inside * np.uint8(number)
         self.show_cells(picture, self._colours, QRectF(left, low, right - left, high - low))
 
 

@@ -14,6 +14,9 @@ if TYPE_CHECKING:
     from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
 
+SPARE_ROWS = 2
+"""Rows painted beside those that changed: the picture lies on whole pixels, the rows need not."""
+
 _PACKED: dict[bytes, NDArray[np.uint32]] = {}
 """Colours by table: there are a handful in each look."""
 
@@ -40,7 +43,8 @@ class PixelImage(pg.GraphicsObject):  # type: ignore[misc]
     """An image over a rectangle of the plot.
 
     The library's own image item converts and scales at every repaint (about 1 ms a picture);
-    here that is done once, when the picture changes.
+    here that is done once, when the picture changes, and of a picture that changed in some of
+    its rows only these are converted and painted.
     """
 
     def __init__(self, layer: float = -10.0) -> None:
@@ -48,7 +52,9 @@ class PixelImage(pg.GraphicsObject):  # type: ignore[misc]
         self._image = QImage()
         self._held: NDArray[np.uint32] = np.zeros((0, 0), dtype=np.uint32)
         self._cells: NDArray[np.uint8] = np.zeros((0, 0), dtype=np.uint8)
+        self._colours: NDArray[np.uint32] = np.zeros(0, dtype=np.uint32)
         self._rect = QRectF()
+        self._copied = False
         self.setZValue(layer)
 
     @property
@@ -70,10 +76,14 @@ class PixelImage(pg.GraphicsObject):  # type: ignore[misc]
         rect : QRectF
             Where, in the plot's units.
         """
+        before, same_colours = self._cells, colours is self._colours
+        self._cells, self._colours = cells, colours
+        if rect == self._rect and same_colours and cells.shape == before.shape:
+            self._show_rows(before)
+            return
         if rect != self._rect:
             self.prepareGeometryChange()
             self._rect = QRectF(rect)
-        self._cells = cells
         self._held = colours[cells[::-1]]
         height, width = cells.shape
         self._image = QImage(
@@ -81,6 +91,34 @@ class PixelImage(pg.GraphicsObject):  # type: ignore[misc]
         )
         self.show()
         self.update()
+
+    def _show_rows(self, before: NDArray[np.uint8]) -> None:
+        """Convert and paint the rows that differ from the picture before."""
+        self.show()
+        differs = np.flatnonzero((self._cells != before).any(axis=1))
+        if not differs.size:
+            return
+        first, last = int(differs[0]), int(differs[-1])
+        height = len(self._cells)
+        # Written into the memory that the picture is painted from; its row 0 is at the top.
+        part = self._cells[first : last + 1][::-1]
+        self._held[height - 1 - last : height - first] = self._colours[part]
+        if self._copied:
+            self.update(self.rows_rect(first - SPARE_ROWS, last + SPARE_ROWS))
+        else:
+            # A scaled picture painted in part may take other rows at the edge of the part.
+            self.update()
+
+    def rows_rect(self, first: int, last: int) -> QRectF:
+        """Where rows of the picture lie, in the plot's units; the last is included."""
+        tall = self._rect.height() / max(1, len(self._cells))
+        low, high = max(first, 0), min(last + 1, len(self._cells))
+        return QRectF(
+            self._rect.left(),
+            self._rect.top() + low * tall,
+            self._rect.width(),
+            (high - low) * tall,
+        )
 
     def boundingRect(self) -> QRectF:
         """Where it is, in the plot's units."""
@@ -102,5 +140,6 @@ class PixelImage(pg.GraphicsObject):  # type: ignore[misc]
         # Whole pixels: a picture of the plot area's own size is then copied, not scaled.
         left, top = round(place.left()), round(place.top())
         whole = QRectF(left, top, round(place.right()) - left, round(place.bottom()) - top)
+        self._copied = whole.size().toSize() == self._image.size()
         painter.drawImage(whole, self._image)
         painter.restore()

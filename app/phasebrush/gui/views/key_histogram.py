@@ -38,9 +38,13 @@ class Histogram(QWidget):
         self.picked: Callable[[float, float, QMouseEvent | None], None] | None = None
         self.called_off: Callable[[], None] | None = None
         self._anchor: float | None = None
-        self._key = ""
+        self._title = ""
         self._ends = ("", "")
         self._unit = ""
+        self._key: KeyValues | None = None
+        self._used: NDArray[np.bool_] = np.zeros(0, dtype=bool)
+        self._bins = 0
+        self._bin_of_trial: NDArray[np.intp] = np.zeros(0, dtype=np.intp)
         self.setMinimumHeight(48)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self.setFont(theme.font(7.5))
@@ -58,32 +62,53 @@ class Histogram(QWidget):
         handles: tuple[float, float] | None,
     ) -> None:
         """Take the values of the key, who is in A and B, and the range that A was picked by."""
-        self._counts = {}
-        self._handles = handles
         title = "" if key is None else key.title
-        if title != self._key:
+        if title != self._title:
             # Values of the earlier key mean nothing on the later one's scale.
-            self._key = title
+            self._title = title
             self._end()
-        finite = np.zeros(0, dtype=bool) if key is None else np.isfinite(key.values) & used
-        if key is not None and finite.any():
-            values = key.values[finite]
-            bins = max(4, min(MOST_BINS, round(np.sqrt(len(values)))))
-            low, high = float(values.min()), float(values.max())
-            if high - low <= 1e-6 * max(abs(low), abs(high), 1e-6):
-                low, high = low - 0.5, high + 0.5  # all but one value: no bins between them
-            edges = np.linspace(low, high, bins + 1)
-            for name, chosen in (("all", finite), ("A", finite & in_a), ("B", finite & in_b)):
-                self._counts[name] = np.histogram(key.values[chosen], bins=edges)[0]
-            self._range = (float(edges[0]), float(edges[-1]))
-            self._ends = tuple(f"{edge:.3g}".replace("-", "−") for edge in (edges[0], edges[-1]))  # type: ignore[assignment]
-            self._unit = key.unit
-            self.setToolTip(
-                f"How many trials have which {key.title} ({key.unit or 'number'}); "
-                "the coloured parts are in A and B. Drag picks a range of values for A, with "
-                "Shift for B; drag a handle to move an end."
-            )
+        if key is not self._key or not np.array_equal(used, self._used):
+            self._take_key(key, used)
+            self._counts = {}
+        known = self._bin_of_trial >= 0
+        counts: dict[str, NDArray[np.intp]] = {}
+        if known.any():
+            for name, chosen in (("all", known), ("A", known & in_a), ("B", known & in_b)):
+                counts[name] = np.bincount(self._bin_of_trial[chosen], minlength=self._bins)
+        same = counts.keys() == self._counts.keys() and all(
+            np.array_equal(counts[name], self._counts[name]) for name in counts
+        )
+        if same and counts and handles == self._handles:
+            return
+        self._counts, self._handles = counts, handles
         self.update()
+
+    def _take_key(self, key: KeyValues | None, used: NDArray[np.bool_]) -> None:
+        """Lay out bins for a key: a brush only counts anew who is in them."""
+        self._key, self._used = key, used.copy()
+        self._bin_of_trial = np.full(len(used), -1, dtype=np.intp)
+        if key is None:
+            return
+        finite = np.isfinite(key.values) & used
+        if not finite.any():
+            return
+        values = key.values[finite]
+        self._bins = max(4, min(MOST_BINS, round(np.sqrt(len(values)))))
+        low, high = float(values.min()), float(values.max())
+        if high - low <= 1e-6 * max(abs(low), abs(high), 1e-6):
+            low, high = low - 0.5, high + 0.5  # all but one value: no bins between them
+        edges = np.linspace(low, high, self._bins + 1)
+        # Half-open bins, the last one closed, as everywhere: numpy.histogram.
+        places = np.searchsorted(edges, values, side="right") - 1
+        self._bin_of_trial[finite] = np.clip(places, 0, self._bins - 1)
+        self._range = (float(edges[0]), float(edges[-1]))
+        self._ends = tuple(f"{edge:.3g}".replace("-", "−") for edge in (edges[0], edges[-1]))  # type: ignore[assignment]
+        self._unit = key.unit
+        self.setToolTip(
+            f"How many trials have which {key.title} ({key.unit or 'number'}); "
+            "the coloured parts are in A and B. Drag picks a range of values for A, with "
+            "Shift for B; drag a handle to move an end."
+        )
 
     def _area(self) -> QRectF:
         high = self.fontMetrics().height()
@@ -166,18 +191,20 @@ class Histogram(QWidget):
         if counts and area.height() > 4:
             top = max(1, int(counts["all"].max()))
             step = area.width() / len(counts["all"])
+            in_a, in_b = QColor(look.subset_a), QColor(look.subset_b)
+            in_neither = QColor(mixed(look.muted, look.panel, 0.4))
             for number, total in enumerate(counts["all"].tolist()):
                 foot = area.bottom()
                 shares = [
-                    (look.subset_a, int(counts["A"][number])),
-                    (look.subset_b, int(counts["B"][number])),
+                    (in_a, int(counts["A"][number])),
+                    (in_b, int(counts["B"][number])),
                 ]
                 rest = total - sum(count for _colour, count in shares)
-                shares.append((mixed(look.muted, look.panel, 0.4), max(0, rest)))
+                shares.append((in_neither, max(0, rest)))
                 for colour, count in shares:
                     tall = count / top * area.height()
                     bar = QRectF(area.left() + number * step + 0.5, foot - tall, step - 1, tall)
-                    painter.fillRect(bar, QColor(colour))
+                    painter.fillRect(bar, colour)
                     foot -= tall
             self._draw_handles(painter, area)
             painter.setPen(QColor(look.muted))

@@ -6,8 +6,9 @@ import math
 from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
+from pyqtgraph.Qt.internals import PrimitiveArray
 from PySide6.QtCore import QLineF, QPointF, QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPen
+from PySide6.QtGui import QColor, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPen, QPixmap
 
 from phasebrush.gui import theme
 from phasebrush.gui.time_plot import how_of, pen
@@ -31,7 +32,9 @@ CORNERS = ((0.0, "0°"), (math.pi / 2, "90°"), (math.pi, "180°"), (-math.pi / 
 def directions(angles_rad: np.ndarray) -> np.ndarray:
     """Angles rounded to half a degree, each once: what a dial can show, however many trials."""
     turns = np.rint(np.mod(angles_rad, 2 * np.pi) / (2 * np.pi) * BINS).astype(int) % BINS
-    return np.unique(turns) * (2 * np.pi / BINS)
+    seen = np.zeros(BINS, dtype=bool)
+    seen[turns] = True
+    return np.flatnonzero(seen) * (2 * np.pi / BINS)
 
 
 class PhaseDial(View):
@@ -53,6 +56,9 @@ class PhaseDial(View):
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self._dial: Dial | None = None
         self._rims: dict[str, np.ndarray] = {}
+        self._points = PrimitiveArray(QPointF, 2)
+        self._ground = QPixmap()
+        self._ground_for: tuple[object, ...] = ()
         self._faded = False
         self._drag: tuple[Letter, How, float, int] | None = None
         self._turn = 0.0
@@ -84,10 +90,9 @@ class PhaseDial(View):
     def paintEvent(self, _event: QPaintEvent) -> None:
         """Draw circle, rim, resultants and the sector being dragged."""
         painter = QPainter(self)
-        painter.fillRect(self.rect(), QColor(self.look.panel))
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         centre, radius = self._circle()
-        self._draw_frame(painter, centre, radius)
+        painter.drawPixmap(0, 0, self._frame(centre, radius))
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         if self._dial is not None:
             painter.setOpacity(0.4 if self._faded or not self._dial.valid else 1.0)
             for name, phasors in self._dial.of.items():
@@ -95,6 +100,21 @@ class PhaseDial(View):
         if self._drag is not None:
             self._draw_sector(painter, centre, radius)
         painter.end()
+
+    def _frame(self, centre: QPointF, radius: float) -> QPixmap:
+        """Circle, cross and degrees: painted where they change, laid down at each step."""
+        ratio = self.devicePixelRatioF()
+        wanted = (self.look, self.size(), ratio, self.font().key())
+        if wanted != self._ground_for:
+            self._ground_for = wanted
+            self._ground = QPixmap(self.size() * ratio)
+            self._ground.setDevicePixelRatio(ratio)
+            self._ground.fill(QColor(self.look.panel))
+            painter = QPainter(self._ground)
+            painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+            self._draw_frame(painter, centre, radius)
+            painter.end()
+        return self._ground
 
     def _draw_frame(self, painter: QPainter, centre: QPointF, radius: float) -> None:
         look = self.look
@@ -115,17 +135,18 @@ class PhaseDial(View):
         colour = QColor(self.look.subset(name))
         rim = self._rims[name]
         place = radius * RING[name]
-        points = [
-            QPointF(centre.x() + place * c, centre.y() - place * s)
-            for c, s in zip(np.cos(rim).tolist(), np.sin(rim).tolist(), strict=True)
-        ]
+        self._points.resize(len(rim))
+        dots_at = self._points.ndarray()
+        dots_at[:, 0], dots_at[:, 1] = np.cos(rim), np.sin(rim)
+        dots_at *= (place, -place)
+        dots_at += (centre.x(), centre.y())
         faint = QColor(colour)
         faint.setAlphaF(0.55)
         dots = QPen(faint, DOT)
         square = name == "A"
         dots.setCapStyle(Qt.PenCapStyle.SquareCap if square else Qt.PenCapStyle.RoundCap)
         painter.setPen(dots)
-        painter.drawPoints(points)
+        painter.drawPoints(*self._points.drawargs())
         if 0 < phasors.chance_itc < 1:
             painter.setPen(pen(self.look.subset(name), dotted=True))
             painter.setBrush(Qt.BrushStyle.NoBrush)

@@ -22,10 +22,17 @@ if TYPE_CHECKING:
     Mask = NDArray[np.bool_]
 
 REST_SIZE, A_SIZE, B_SIZE, BOTH_SIZE = 4.0, 6.0, 6.0, 3.0
+DOT_ROOM = 6.0
+"""Pixels that a dot may reach beyond its place: half the largest, smoothing, and whole pixels."""
 
 
 class _OverPlot(pg.GraphicsObject):  # type: ignore[misc]
     """An item as large as the plot, painted at the screen's pixels."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        # Tell `paint` which part is wanted: by default Qt names the whole item.
+        self.setFlag(self.GraphicsItemFlag.ItemUsesExtendedStyleOption)
 
     def boundingRect(self) -> QRectF:
         """The whole plot."""
@@ -46,6 +53,7 @@ class Dots(_OverPlot):
         self._x: Floats = np.zeros(0)
         self._y: Floats = np.zeros(0)
         self._in: dict[str, Mask] = {}
+        self._codes: NDArray[np.uint8] = np.zeros(0, dtype=np.uint8)
         self._points = PrimitiveArray(QPointF, 2)
 
     def set_look(self, look: Look) -> None:
@@ -54,7 +62,14 @@ class Dots(_OverPlot):
         self.update()
 
     def set_points(self, x: Floats, y: Floats, in_a: Mask, in_b: Mask, drawn: Mask) -> None:
-        """Draw these trials; of those that are not ``drawn`` there is no dot."""
+        """Draw these trials; of those that are not ``drawn`` there is no dot.
+
+        Where only the sets differ, no more is painted than the box around the trials that
+        changed: a step of a brush, not thousands of dots.
+        """
+        same_places = x is self._x and y is self._y
+        codes = np.where(drawn, 1 + in_a.view(np.uint8) + 2 * in_b.view(np.uint8), 0)
+        before, self._codes = self._codes, codes.astype(np.uint8)
         self._x, self._y = x, y
         self._in = {
             "rest": drawn & ~in_a & ~in_b,
@@ -62,7 +77,29 @@ class Dots(_OverPlot):
             "B": drawn & in_b & ~in_a,
             "both": drawn & in_a & in_b,
         }
-        self.update()
+        if not same_places or before.shape != self._codes.shape:
+            self.update()
+            return
+        changed = self._codes != before
+        # A trial without a value has no dot, before and after.
+        changed &= np.isfinite(x) & np.isfinite(y)
+        if changed.any():
+            self.update(self._box_of(changed))
+
+    def _box_of(self, trials: Mask) -> QRectF:
+        """Box around the dots of some trials, in the plot's units."""
+        x, y = self._x[trials], self._y[trials]
+        low_x, low_y = float(x.min()), float(y.min())
+        box = QRectF(low_x, low_y, float(x.max()) - low_x, float(y.max()) - low_y)
+        return self._with_room(box)
+
+    def _with_room(self, box: QRectF) -> QRectF:
+        """A box with room for a dot on each side."""
+        across, up = self.pixelVectors()
+        if across is None or up is None:
+            return self.boundingRect()
+        wide, high = DOT_ROOM * abs(across.x()), DOT_ROOM * abs(up.y())
+        return box.adjusted(-wide, -high, wide, high)
 
     def trials_drawn(self, name: str) -> list[int]:
         """Trials drawn as ``"rest"``, ``"A"`` (both included), ``"B"`` alone or ``"both"``."""
@@ -71,13 +108,14 @@ class Dots(_OverPlot):
     def paint(
         self,
         painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
+        option: QStyleOptionGraphicsItem,
         _widget: QWidget | None = None,
     ) -> None:
-        """Draw the rest first, A and B over it."""
+        """Draw the rest first, A and B over it, as far as the part that is wanted."""
         if not self._in:
             return
         way = painter.worldTransform()
+        wanted = self._inside(self._with_room(option.exposedRect))
         x = self._x * way.m11() + way.dx()
         y = self._y * way.m22() + way.dy()
         look = self._look
@@ -89,8 +127,15 @@ class Dots(_OverPlot):
             ("B", look.subset_b, B_SIZE, False),
             ("both", look.subset_b, BOTH_SIZE, False),
         ):
-            self._draw(painter, x[self._in[name]], y[self._in[name]], colour, size, square=square)
+            chosen = np.flatnonzero(self._in[name] & wanted)
+            self._draw(painter, x[chosen], y[chosen], colour, size, square=square)
         painter.restore()
+
+    def _inside(self, box: QRectF) -> Mask:
+        """Which trials lie in a box."""
+        x, y = self._x, self._y
+        # A comparison with NaN is False: there is no dot to draw.
+        return (x >= box.left()) & (x <= box.right()) & (y >= box.top()) & (y <= box.bottom())
 
     def _draw(
         self, painter: QPainter, x: Floats, y: Floats, colour: str, size: float, *, square: bool

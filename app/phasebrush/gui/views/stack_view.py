@@ -12,6 +12,7 @@ from phasebrush.core.stack_image import reduce_columns, reduce_rows
 from phasebrush.gui import theme
 from phasebrush.gui.brush import runs
 from phasebrush.gui.pixel_image import PixelImage, packed
+from phasebrush.gui.row_edges import RowEdges
 from phasebrush.gui.time_plot import Margins, Pointer, pen
 from phasebrush.gui.views.row_view import RowView
 from phasebrush.look import colour_maps
@@ -54,8 +55,8 @@ class StackView(RowView):
         self._image = PixelImage()
         self._colours = packed(self._table())
         self.plot.add(self._image)
-        self._edges = {letter: pg.PlotCurveItem(connect="pairs") for letter in LETTERS}
-        self.plot.add(self._separators, *self._edges.values())
+        self._edges = {letter: RowEdges(self.plot) for letter in LETTERS}
+        self.plot.add(self._separators)
         self.plot.zoomed = self._zoomed
         self.plot.name_axes("trial, in order", "time from event (s)")
         self.setAccessibleName("trial stack: drag to pick trials for A, with Shift for B")
@@ -181,14 +182,10 @@ class StackView(RowView):
 
     def draw_marks(self) -> None:
         """Two edges for each block of A and B; scattered picks are left to the strip."""
-        left, right = self._span
-        for letter, curve in self._edges.items():
+        for letter, edges in self._edges.items():
             blocks = runs(self.brush.picked.rows[letter])
-            if not blocks or len(blocks) > MOST_RUNS_WITH_EDGES:
-                curve.setData([], [])
-                continue
-            ys = np.array([[low, low, high + 1, high + 1] for low, high in blocks], dtype=float)
-            curve.setData(np.tile([left, right, left, right], len(blocks)), ys.ravel())
+            few = blocks if len(blocks) <= MOST_RUNS_WITH_EDGES else []
+            edges.show_at(self._span, [row for low, high in few for row in (low, high + 1)])
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
@@ -199,8 +196,8 @@ class StackView(RowView):
         for name in self._names:
             name.setColor(look.text)
             name.fill = pg.mkBrush(look.panel)
-        self._edges["A"].setPen(pen(look.subset_a, width=2))
-        self._edges["B"].setPen(pen(look.subset_b, width=2, dashed=True))
+        self._edges["A"].set_pen(pen(look.subset_a, width=2))
+        self._edges["B"].set_pen(pen(look.subset_b, width=2, dashed=True))
         self.draw_again()
 
     def hover_at(self, pointer: Pointer | None) -> None:

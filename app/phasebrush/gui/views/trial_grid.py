@@ -73,6 +73,10 @@ class TrialGrid(QTableView):
         header.setDefaultSectionSize(96)
         header.setSortIndicator(0, Qt.SortOrder.AscendingOrder)
         self.setSortingEnabled(True)
+        self._selected_trials: Mask | None = None
+        self.selectionModel().selectionChanged.connect(self._forget_selected)
+        rows.modelReset.connect(self._forget_selected)
+        rows.layoutChanged.connect(self._forget_selected)
 
     def dataChanged(  # noqa: N802 - the library's own name
         self,
@@ -80,13 +84,23 @@ class TrialGrid(QTableView):
         last: QModelIndex | QPersistentModelIndex,
         roles: Sequence[int] = (),
     ) -> None:
-        """Repaint the column that changed, not the whole table: it changes at every brush step."""
-        if first.isValid() and first.column() == last.column() and first.row() != last.row():
-            column = first.column()
-            left, width = self.columnViewportPosition(column), self.columnWidth(column)
-            self.viewport().update(QRect(left, 0, width, self.viewport().height()))
-        else:
+        """Repaint the cells that changed and can be seen: they change at every brush step."""
+        if not first.isValid() or not last.isValid():
             super().dataChanged(first, last, roles)
+            return
+        left = self.columnViewportPosition(first.column())
+        right = self.columnViewportPosition(last.column()) + self.columnWidth(last.column())
+        for row in self._rows_seen(first.row(), last.row()):
+            if self.rows.rows_changed[row]:
+                top, tall = self.rowViewportPosition(row), self.rowHeight(row)
+                self.viewport().update(QRect(left, top, right - left, tall))
+
+    def _rows_seen(self, first: int, last: int) -> range:
+        """Rows between two that can be seen."""
+        top, foot = self.rowAt(0), self.rowAt(self.viewport().height() - 1)
+        if top < 0:
+            return range(0)
+        return range(max(first, top), min(last, foot if foot >= 0 else last) + 1)
 
     def fit_columns(self) -> None:
         """Make the columns as wide as what can be seen of them."""
@@ -115,8 +129,18 @@ class TrialGrid(QTableView):
             self.scrollTo(self.rows.index(blocks[0][0], 0))
 
     def selected_trials(self) -> Mask:
-        """Which trials are selected, bool of shape (trials,)."""
-        mask = np.zeros(self.rows.rowCount(), dtype=bool)
-        for block in self.selectionModel().selection().toList():
-            mask[self.rows.trials_of_rows(slice(block.top(), block.bottom() + 1))] = True
-        return mask
+        """Which trials are selected, bool of shape (trials,), read-only.
+
+        Kept until the selection changes: asked for at each step of a brush, and a selection of
+        thousands of scattered rows takes milliseconds to go through.
+        """
+        if self._selected_trials is None:
+            mask = np.zeros(self.rows.rowCount(), dtype=bool)
+            for block in self.selectionModel().selection().toList():
+                mask[self.rows.trials_of_rows(slice(block.top(), block.bottom() + 1))] = True
+            mask.flags.writeable = False
+            self._selected_trials = mask
+        return self._selected_trials
+
+    def _forget_selected(self, *_what: object) -> None:
+        self._selected_trials = None

@@ -42,6 +42,7 @@ class TrialRows(QAbstractTableModel):
         self._columns: tuple[columns.Column, ...] = ()
         self._sets: NDArray[np.uint8] = np.zeros(0, dtype=np.uint8)
         self._trial_of_row: NDArray[np.intp] = np.zeros(0, dtype=np.intp)
+        self._rows_changed: NDArray[np.bool_] = np.zeros(0, dtype=bool)
         self._key_faded = False
         self._sorted_by = 0
         self._descending = False
@@ -119,8 +120,17 @@ class TrialRows(QAbstractTableModel):
         """Tell who is in A, in B and excluded: one signal, and only where it changed."""
         if np.array_equal(sets, self._sets):
             return
-        self._sets = sets
-        self._replace(SET_COLUMN, columns.Column(SET_NAME, SET_TIP, self._set_ranks()))
+        before, self._sets = self._sets, sets
+        column = columns.Column(SET_NAME, SET_TIP, self._set_ranks())
+        if len(before) != len(sets) or len(self._trial_of_row) != len(sets):
+            self._replace(SET_COLUMN, column)
+            return
+        changed = sets != before
+        # All words of an excluded trial are muted, not only its set.
+        faded = changed & ((sets == columns.EXCLUDED) | (before == columns.EXCLUDED))
+        self._replace(
+            SET_COLUMN, column, rows=changed[self._trial_of_row], whole_rows=bool(faded.any())
+        )
 
     def set_look(self, look: Look) -> None:
         """Take the colours of a theme."""
@@ -157,6 +167,14 @@ class TrialRows(QAbstractTableModel):
     def sets(self) -> NDArray[np.uint8]:
         """Set of each trial, as `trial_columns.sets_of` gives it."""
         return self._sets
+
+    @property
+    def rows_changed(self) -> NDArray[np.bool_]:
+        """Rows that the last signal of changed data is about, shape (rows,).
+
+        Between the first and the last of them may lie many that are as they were.
+        """
+        return self._rows_changed
 
     def trials_of_rows(self, rows: slice | Iterable[int]) -> NDArray[np.intp]:
         """Trials that lie in these rows."""
@@ -196,15 +214,29 @@ class TrialRows(QAbstractTableModel):
     def _set_ranks(self) -> NDArray[np.float64]:
         return columns.SET_RANK[self._sets].astype(np.float64)
 
-    def _replace(self, number: int, column: columns.Column) -> None:
+    def _replace(
+        self,
+        number: int,
+        column: columns.Column,
+        *,
+        rows: NDArray[np.bool_] | None = None,
+        whole_rows: bool = False,
+    ) -> None:
+        """Put a column in place of another; ``rows`` are those whose words or colour differ."""
         listed = list(self._columns)
         if not listed:
             return
         listed[number] = column
         self._columns = tuple(listed)
-        last = max(0, len(self._trial_of_row) - 1)
+        self._rows_changed = np.ones(len(self._trial_of_row), bool) if rows is None else rows
+        at = np.flatnonzero(self._rows_changed)
+        if not at.size:
+            return
+        left, right = (0, len(listed) - 1) if whole_rows else (number, number)
         self.dataChanged.emit(
-            self.index(0, number), self.index(last, number), [Role.DisplayRole, Role.ForegroundRole]
+            self.index(int(at[0]), left),
+            self.index(int(at[-1]), right),
+            [Role.DisplayRole, Role.ForegroundRole],
         )
 
     def _order(self) -> NDArray[np.intp]:
