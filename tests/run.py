@@ -1,7 +1,8 @@
 """Run every check of Phasebrush: ``python3 tests/run.py [arguments of pytest]``.
 
 Sets up the environment of ``app/start.py`` with the test tools, then runs the linter,
-the type checker, the import contracts and the tests. The exit status is not 0 if any failed.
+the type checker, the import contracts and the tests, a process for each core; with arguments
+of your own, pytest runs as they say. The exit status is not 0 if any failed.
 """
 
 from __future__ import annotations
@@ -20,6 +21,10 @@ CHECKS = {
     "Types": ("mypy",),
     "Import contracts": ("lint-imports",),
 }
+
+
+ALL_CORES = ("-n", "auto", "--dist", "loadfile")
+"""Whole files to a process: their fixtures are made once."""
 
 
 def main(arguments: list[str]) -> int:
@@ -44,7 +49,7 @@ def main(arguments: list[str]) -> int:
     if failed:
         environment.say(f"== Failed before the tests: {', '.join(failed)}")
     environment.say("== Tests")
-    status = run([str(environment.python_path()), "-m", "pytest", *arguments])
+    status = run([str(environment.python_path()), "-m", "pytest", *(arguments or ALL_CORES)])
     return status or int(bool(failed))
 
 

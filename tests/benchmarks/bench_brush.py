@@ -38,7 +38,7 @@ SFREQ_HZ = 300.0
 STEP_ROWS = 20
 STEPS, FIRST = 60, 10
 ROUNDS = 3
-TABS = ("", "trials", "scatter", "steps", "notes")
+TABS = ("", "trials", "scatter", "steps", "A against B", "carried by", "notes", "methods")
 SETTINGS = TransformSettings(low_hz=3.0, high_hz=40.0, count=50)
 REST_S = 0.02
 
@@ -186,7 +186,7 @@ def tell(n_trials: int, steps: dict[str, np.ndarray]) -> None:
     for tab, times in steps.items():
         middle, late = np.percentile(times, (50, 95), axis=0)
         print(
-            f"{n_trials} trials, drawer {tab or 'shut':8s} wall median {middle[0]:5.1f} ms, "
+            f"{n_trials} trials, drawer {tab or 'shut':11s} wall median {middle[0]:5.1f} ms, "
             f"95th percentile {late[0]:5.1f}; processor median {middle[1]:5.1f}, "
             f"95th percentile {late[1]:5.1f}",
             flush=True,
