@@ -17,6 +17,10 @@ if TYPE_CHECKING:
 Quantity = Literal["ITC", "PPC", "power", "average"]
 FEW_TRIALS = 20
 
+UNEQUAL_PERCENT = 10
+"""By how much the larger of two counts may exceed the smaller before their ITC is not to be
+compared without saying so (common practice, no source)."""
+
 WHAT_P_SAYS = (
     "A cluster's p says how often relabelled trials give any cluster as heavy as this one: it "
     "speaks for a difference somewhere in the map, not for the exact edges of the cluster in "
@@ -106,6 +110,22 @@ class Comparison:
         """Points of the clusters with p up to alpha, of the shape of the difference."""
         numbers = [at for at, item in enumerate(self.clusters, start=1) if item.p <= alpha]
         return np.isin(self.labels, numbers)
+
+
+def unequal_counts(n_a: int, n_b: int) -> bool:
+    """Whether two sets differ so much in number that their ITC cannot be compared as it is.
+
+    ITC of few trials is larger by chance: about sqrt(pi / (4n)) without any alignment. The rule
+    is the same wherever it is said: the larger set has over 10 % more trials than the smaller.
+    A set without trials has no ITC to compare.
+
+    Parameters
+    ----------
+    n_a, n_b : int
+        Trials of the two sets.
+    """
+    fewer, more = sorted((n_a, n_b))
+    return fewer > 0 and 100 * more > (100 + UNEQUAL_PERCENT) * fewer
 
 
 def cautions_for(n_a: int, n_b: int) -> tuple[str, ...]:

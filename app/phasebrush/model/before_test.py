@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from phasebrush.core.comparison import FEW_TRIALS
+from phasebrush.core.comparison import FEW_TRIALS, unequal_counts
 from phasebrush.model.methods.wording import counted, listed, picked_by, span
 from phasebrush.model.state import LETTERS
 
@@ -17,8 +17,6 @@ if TYPE_CHECKING:
     from phasebrush.model.results import Snapshot
 
 FEWEST_TRIALS = 2
-UNEQUAL = 1.1
-"""How much larger the one subset may be until ITC of the two cannot be compared."""
 NO_RECORDING = "Open a recording, then pick trials for A and B"
 NOT_YET = "The channel is being transformed: the test can begin after that"
 
@@ -79,7 +77,7 @@ def _cautions(snapshot: Snapshot, n_a: int, n_b: int) -> Iterator[str]:
     few = [f"{name} has {n}" for name, n in both if FEWEST_TRIALS <= n < FEW_TRIALS]
     if few:
         yield f"{listed(few)} trials, fewer than {FEW_TRIALS}: differences are unsure"
-    if snapshot.state.tested == "ITC" and min(n_a, n_b) and max(n_a, n_b) > UNEQUAL * min(n_a, n_b):
+    if snapshot.state.tested == "ITC" and unequal_counts(n_a, n_b):
         yield (
             f"A has {n_a:,} and B {n_b:,} trials. ITC of few trials is larger by chance: "
             "relabelling keeps the counts, so the p takes that into account, but the difference "

@@ -6,6 +6,7 @@ import math
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
+from phasebrush.core.comparison import unequal_counts
 from phasebrush.gui.number_words import fixed, p_words
 from phasebrush.model.results import SET_NAMES
 from phasebrush.model.stale import Result
@@ -15,9 +16,6 @@ if TYPE_CHECKING:
 
     from phasebrush.core.phase_between import PhaseBetween
     from phasebrush.model.results import SetReadout, Snapshot
-
-UNEQUAL = 0.1
-"""Share by which counts may differ before ITC is not to be compared: common practice, no source."""
 
 
 @dataclass(frozen=True)
@@ -179,6 +177,6 @@ def counts_differ(snapshot: Snapshot) -> str:
     if readout is None or "A" not in readout.of or "B" not in readout.of:
         return ""
     n_a, n_b = readout.of["A"].n, readout.of["B"].n
-    if state.consistency == "PPC" or abs(n_a - n_b) <= UNEQUAL * max(n_a, n_b):
+    if state.consistency == "PPC" or not unequal_counts(n_a, n_b):
         return ""
     return f"n differs: {n_a} / {n_b}"

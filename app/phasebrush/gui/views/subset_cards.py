@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, ClassVar
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
 
+from phasebrush.core.comparison import FEW_TRIALS, unequal_counts
 from phasebrush.core.rule import rule_words
 from phasebrush.gui import theme
 from phasebrush.gui.view import View
@@ -21,7 +22,6 @@ if TYPE_CHECKING:
     from phasebrush.model.subset import Subset
 
 MARKS = {"A": "■", "B": "●"}
-CAUTION_BELOW = 20
 
 
 def subset_words(subset: Subset) -> str:
@@ -105,11 +105,10 @@ class SubsetCards(View):
             shared = int((masks[0] & masks[1]).sum())
             if shared:
                 words.append(f"{shared} trials are in both A and B")
-        few = [letter for letter, n in sizes.items() if 0 < n < CAUTION_BELOW]
+        few = [letter for letter, n in sizes.items() if 0 < n < FEW_TRIALS]
         if few:
-            words.append(f"{' and '.join(few)}: fewer than {CAUTION_BELOW} trials")
-        low, high = min(sizes.values()), max(sizes.values())
-        if low and high > 1.1 * low:
+            words.append(f"{' and '.join(few)}: fewer than {FEW_TRIALS} trials")
+        if unequal_counts(*sizes.values()):
             words.append("n differs by more than 10 %: compare PPC, not ITC")
         return "; ".join(words)
 
