@@ -7,6 +7,10 @@ on the machine hardly changes. Without the drawer and with each of its tabs, in 
 so that a slow minute falls on all alike. Beside it: the same subset's average, ITC and power
 computed from its trials with the library that serves as the numerical reference (two jobs), and
 the memory that the process took for the coefficients.
+
+Machines are noisy: a yardstick, the same arithmetic each time, is timed before and after every
+step. A step is called quiet where both took at most a tenth longer than the yardstick does in a
+good moment of the same run; its percentiles are printed beside those of all steps.
 """
 
 from __future__ import annotations
@@ -39,8 +43,12 @@ STEP_ROWS = 20
 STEPS, FIRST = 60, 10
 ROUNDS = 3
 TABS = ("", "trials", "scatter", "steps", "A against B", "carried by", "notes", "methods")
+YARD = np.linspace(1.0, 2.0, 200_000)
+YARD_SCRATCH = np.empty_like(YARD)
 SETTINGS = TransformSettings(low_hz=3.0, high_hz=40.0, count=50)
 REST_S = 0.02
+QUIET = 1.1
+"""A yardstick that took this many times its good time is still called quiet."""
 
 
 def invented_trials(n_trials: int, n_channels: int = 1) -> Trials:
@@ -105,7 +113,10 @@ class Bench:
         self.settle()
 
     def steps(self) -> np.ndarray:
-        """Seconds from each mouse event to the repainted window: wall and processor, (steps, 2)."""
+        """Seconds from each mouse event to the repainted window, shape (steps, 3).
+
+        On the wall, of the processor, and of the slower yardstick beside the step.
+        """
         stack = self.window.bench.stack
         viewport = stack.plot.viewport()
         n_trials = len(self.trials)
@@ -120,14 +131,17 @@ class Bench:
         QTest.mousePress(viewport, Qt.MouseButton.LeftButton, pos=place(middle - n_trials // 6))
         self.settle()
         seconds = []
+        yardstick()
         rows = middle + n_trials // 6
         for step in range(FIRST + STEPS):
             rows += STEP_ROWS if step // 10 % 2 == 0 else -STEP_ROWS
             time.sleep(REST_S)
+            before = yardstick()
             start, start_busy = time.perf_counter(), time.process_time()
             self.move(viewport, place(rows))
             self.settle()
-            seconds.append((time.perf_counter() - start, time.process_time() - start_busy))
+            took = time.perf_counter() - start, time.process_time() - start_busy
+            seconds.append((*took, max(before, yardstick())))
         QTest.mouseRelease(viewport, Qt.MouseButton.LeftButton, pos=place(rows))
         self.settle()
         return np.array(seconds[FIRST:])
@@ -153,6 +167,15 @@ class Bench:
         """Close the window."""
         self.window.close()
         self.app.processEvents()
+
+
+def yardstick() -> float:
+    """Seconds that the same arithmetic takes at this moment, about 2 ms of it."""
+    start = time.perf_counter()
+    for _time in range(4):
+        np.sqrt(YARD, out=YARD_SCRATCH)
+        YARD_SCRATCH.sum()
+    return time.perf_counter() - start
 
 
 def reference_step(trials: Trials, n_used: int) -> float:
@@ -183,12 +206,16 @@ def measure(bench: Bench, tabs: tuple[str, ...], rounds: int) -> dict[str, np.nd
 
 def tell(n_trials: int, steps: dict[str, np.ndarray]) -> None:
     """Print a line a tab."""
+    good = np.percentile(np.concatenate([times[:, 2] for times in steps.values()]), 10)
     for tab, times in steps.items():
         middle, late = np.percentile(times, (50, 95), axis=0)
+        quiet = times[times[:, 2] <= QUIET * good]
+        calm = np.percentile(quiet[:, 0], (50, 95)) if len(quiet) else np.full(2, np.nan)
         print(
             f"{n_trials} trials, drawer {tab or 'shut':11s} wall median {middle[0]:5.1f} ms, "
-            f"95th percentile {late[0]:5.1f}; processor median {middle[1]:5.1f}, "
-            f"95th percentile {late[1]:5.1f}",
+            f"95th percentile {late[0]:5.1f}; processor {middle[1]:5.1f}, {late[1]:5.1f}; "
+            f"quiet steps {calm[0]:5.1f}, {calm[1]:5.1f} ({len(quiet)} of {len(times)}); "
+            f"yardstick 95th percentile {late[2] / good:.2f} x its good time",
             flush=True,
         )
 
