@@ -11,7 +11,7 @@ from window_eye import trials_of
 from window_tools import drag_rows, key, settle, strike, turn, wait_for
 
 from phasebrush.errors import JobStopped
-from phasebrush.model import intents, workbench
+from phasebrush.model import intents, slow_work
 
 
 class SlowTransform:
@@ -38,8 +38,8 @@ class SlowTransform:
 @pytest.fixture
 def slow(monkeypatch) -> SlowTransform:
     """Transforms wait until they are let go."""
-    made = SlowTransform(workbench.transform_channel)
-    monkeypatch.setattr(workbench, "transform_channel", made)
+    made = SlowTransform(slow_work.transform_channel)
+    monkeypatch.setattr(slow_work, "transform_channel", made)
     yield made
     made.held = False
 
@@ -133,7 +133,7 @@ def test_a_job_that_fails_is_told_and_leaves_the_screen(open_window, trials, mon
     def broken(*_arguments: object) -> None:
         raise MemoryError("no room")
 
-    monkeypatch.setattr(workbench, "transform_channel", broken)
+    monkeypatch.setattr(slow_work, "transform_channel", broken)
     window.workbench.do(intents.show_channel("Pz"))
     wait_for(lambda: window.message_bar.text, "a message")
     settle(window)

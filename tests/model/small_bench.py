@@ -22,6 +22,7 @@ if TYPE_CHECKING:
     from phasebrush.model.jobs import Outcome, Runner
     from phasebrush.model.results import Snapshot
     from phasebrush.model.state import State
+    from phasebrush.model.trials_shelf import TrialsShelf
 
 RATE_HZ = 100.0
 FEW_WAVELETS = TransformSettings(low_hz=5, high_hz=30, count=6, low_cycles=3, high_cycles=5)
@@ -68,9 +69,11 @@ def small_trials(
     return Trials(**{**fields, **changes})
 
 
-def bench_without_trials(runner: Runner | None = None) -> Workbench:
+def bench_without_trials(
+    runner: Runner | None = None, shelf: TrialsShelf | None = None
+) -> Workbench:
     """A workbench with quick settings and nothing to undo."""
-    bench = Workbench(runner)
+    bench = Workbench(runner, shelf)
     bench.do(quick_settings())
     return bench
 

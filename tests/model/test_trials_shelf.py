@@ -52,11 +52,10 @@ class TestShelf:
         assert shelf.find(trials.source.path, trials.cut) is None
 
     @pytest.fixture
-    def crowded(self, folder, monkeypatch):
+    def crowded(self, folder):
         """Two recordings were open one after the other, with room for one."""
         runner = ManualRunner()
-        bench = bench_without_trials(runner)
-        monkeypatch.setattr(bench, "_shelf", TrialsShelf(most_bytes=1))
+        bench = bench_without_trials(runner, TrialsShelf(most_bytes=1))
         for name in ("one.npz", "two.npz"):
             bench.open(str(folder / name))
             runner.settle(bench)

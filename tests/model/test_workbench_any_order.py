@@ -30,8 +30,8 @@ class Person:
     def __init__(self, folder, seed: int, *, may_stop: bool) -> None:
         self.rng = np.random.default_rng(seed)
         self.runner = ManualRunner()
-        self.bench = bench_without_trials(self.runner)
-        self.bench._shelf = TrialsShelf(most_bytes=1)  # everything else has to be read again
+        # A small shelf: everything else has to be read again.
+        self.bench = bench_without_trials(self.runner, TrialsShelf(most_bytes=1))
         self.told = Told(self.bench)
         self.folder = folder
         self.late: list = []

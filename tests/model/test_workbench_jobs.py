@@ -172,7 +172,7 @@ def test_a_stopped_transform_ends_without_an_answer(bench, runner, monkeypatch):
     bench.do(intents.transform_with(MORE_WAVELETS))
     bench.flush()
     answers = []
-    monkeypatch.setattr(bench, "_transformed", answers.append)
+    monkeypatch.setattr(bench._slow, "_transformed", answers.append)
     bench.jobs.running[0].stop()
     for outcome in runner.work_out():
         outcome()
@@ -237,4 +237,4 @@ def test_the_margin_of_default_wavelets_is_asked_in_tenths():
     bench.do(intents.transform_with(long))
     # 2 sigma_t = 7 / (2 pi) = 1.114 s, in whole tenths 1.2 s
     assert long.margin_s == pytest.approx(7 / (2 * np.pi))
-    assert bench._margin_s() == pytest.approx(1.2)
+    assert bench._incoming.margin_s == pytest.approx(1.2)

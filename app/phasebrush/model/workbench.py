@@ -3,21 +3,17 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from functools import partial
 from typing import TYPE_CHECKING
 
 from phasebrush.core.suspects import suspects
-from phasebrush.model import intents, opening
-from phasebrush.model.channel_work import ChannelQuestion, ChannelWork, transform_channel
-from phasebrush.model.compare_work import CompareQuestion, compare_subsets
 from phasebrush.model.deriver import Deriver
 from phasebrush.model.history import History
-from phasebrush.model.jobs import InlineRunner, Job, JobBoard, Progress, Runner
-from phasebrush.model.rest_work import RestQuestion, work_out_rested
+from phasebrush.model.incoming import Incoming
+from phasebrush.model.jobs import InlineRunner, JobBoard, Runner
 from phasebrush.model.results import Snapshot
+from phasebrush.model.slow_work import SlowWork
 from phasebrush.model.stale import Result, stale_after, with_followers
 from phasebrush.model.state import State, changed_fields
-from phasebrush.model.step_work import StepsQuestion, work_out_steps
 from phasebrush.model.trials_shelf import TrialsShelf
 
 if TYPE_CHECKING:
@@ -26,13 +22,9 @@ if TYPE_CHECKING:
     from phasebrush.core.suspects import Suspect
     from phasebrush.core.trials import Cut, Trials
     from phasebrush.model.intents import Intent
-    from phasebrush.model.rest_work import RestAnswer
-    from phasebrush.model.results import Compared, Steps
     from phasebrush.recordings import Recording
 
 EVERYTHING = frozenset(Result)
-REST_S = 0.15
-"""How long the mouse has to rest before slower work begins."""
 SAVING = frozenset({"save", "aside"})
 """Jobs that go on when work is stopped: what a person asked to keep is kept."""
 
@@ -80,16 +72,20 @@ class Workbench:
     ----------
     runner : Runner, optional
         Where slow work runs; in place where none is given.
+    shelf : TrialsShelf, optional
+        Where trials of recordings that were open lie ready; one of the usual size by default.
     """
 
-    def __init__(self, runner: Runner | None = None) -> None:
+    def __init__(self, runner: Runner | None = None, shelf: TrialsShelf | None = None) -> None:
         self.listeners = Listeners()
         self.jobs = JobBoard(runner or InlineRunner(), self._jobs_changed)
         self._state = State()
         self._history = History()
-        self._shelf = TrialsShelf()
-        self._deriver = Deriver(
-            self._find_trials, self._ask_transform, self._ask_steps, self._ask_rested
+        self._shelf = shelf or TrialsShelf()
+        self._incoming = Incoming(self, self._shelf, lambda: self._mark({Result.TRIALS}, ""))
+        self._slow = SlowWork(self, lambda new: self._mark(frozenset(new), ""))
+        self._deriver = self._slow.deriver = Deriver(
+            self._find_trials, self._slow.transform, self._slow.steps, self._slow.rested
         )
         self._stale: frozenset[Result] = EVERYTHING
         self._sources: frozenset[str] | None = None
@@ -197,7 +193,7 @@ class Workbench:
         old, self._state = self._state, state
         self._mark(stale_after(old, state), source)
         if changed_fields(old, state) & {"transform", "cut", "recording"}:
-            self._widen_margin()
+            self._incoming.widen_margin()
 
     def _mark(self, stale: set[Result] | frozenset[Result], source: str) -> None:
         self._stale |= with_followers(stale, self._state)
@@ -218,7 +214,7 @@ class Workbench:
         self._deriver.run(self._state, stale, keep_scales=self._gesture != 0)
         if Result.TRIALS in stale and self._state.cut and self.snapshot.trials is None:
             # Undo reached a recording whose trials had to make room: read them again.
-            self._cut_again(self._state.cut, self._lay_again)
+            self._incoming.cut_again(self._state.cut)
         if self._stale:  # a job that ran in place has answered already
             again = self.flush()
             return Frame(again.snapshot, again.changed | stale, sources & again.sources)
@@ -243,45 +239,20 @@ class Workbench:
         ask : bool
             Whether the person is asked how to cut before it is done.
         """
-        self._read(partial(opening.read, path), ask=ask)
+        self._incoming.open(path, ask=ask)
 
     def open_listed(self, path: str) -> None:
         """Open a line of the recordings list, as it lay on its desk where it was open before."""
         if path != self._state.recording:
-            self._read(partial(opening.read, path), ask=False)
+            self._incoming.open(path, ask=False)
 
     def ask_cut(self) -> None:
         """Read the open recording again and ask how to cut it anew."""
-        path, how = self._state.recording, self._state.cut
-        ask = self.listeners.recording_read
-        if not path or how is None or ask is None:
-            return
-        self.jobs.start(
-            Job(
-                "read",
-                "opening",
-                partial(opening.open_recording, path),
-                lambda recording: ask(recording, how),
-                self._failed,
-            )
-        )
+        self._incoming.ask_cut()
 
     def cut(self, recording: Recording, how: Cut) -> None:
         """Cut trials from a recording and lay them on the table."""
-        trials = self._shelf.find(recording.source.path, how)
-        if trials is not None:
-            self.jobs.drop("cut")
-            self._take(trials)
-            return
-        self.jobs.start(
-            Job(
-                "cut",
-                f"cutting trials from {recording.source.title}",
-                partial(opening.cut, recording, how),
-                self._take,
-                self._failed,
-            )
-        )
+        self._incoming.cut(recording, how)
 
     def adopt(self, intent: Intent, trials: Trials | None) -> None:
         """Take over a whole record, with the trials that it names."""
@@ -296,71 +267,7 @@ class Workbench:
 
     def take_trials(self, trials: Trials) -> None:
         """Lay ready trials on the table."""
-        self._take(trials)
-
-    def _read(self, work: Callable[[Progress], opening.Opened], *, ask: bool) -> None:
-        self.jobs.start(Job("read", "opening", work, partial(self._opened, ask=ask), self._failed))
-
-    def _opened(self, opened: opening.Opened, *, ask: bool) -> None:
-        if len(opened.lines) > 1:
-            self.do(intents.shelve(opened.lines))
-        desk = self._state.desk(opened.recording.source.path)
-        how = (
-            desk.cut
-            if desk is not None
-            else opening.cut_for(opened.recording, self._state.cut, self._margin_s())
-        )
-        if ask and self.listeners.recording_read is not None:
-            self.listeners.recording_read(opened.recording, how)
-        else:
-            self.cut(opened.recording, how)
-
-    def _take(self, trials: Trials, *, fleeting: bool = False) -> None:
-        before = self._find_trials(self._state)
-        self._shelf.put(trials)
-        self.do(intents.take_trials(trials, before, fleeting=fleeting))
-        self._mark({Result.TRIALS}, "")
-        if before is not trials and not fleeting:
-            self.listeners.fresh()
-            for warning in trials.warnings:
-                self.listeners.message(f"{trials.source.title}: {warning}")
-
-    def _margin_s(self) -> float:
-        """Margin for the lowest wavelet, in whole tenths so that small changes re-use the cut."""
-        return max(0.5, -(-self._state.transform.margin_s // 0.1) * 0.1)
-
-    def _widen_margin(self) -> None:
-        """Cut anew where longer wavelets would run off the margins of a continuous recording."""
-        trials = self._find_trials(self._state)
-        need_s = self._margin_s()
-        if trials is None or not trials.source.continuous or trials.cut.margin_s >= need_s - 1e-9:
-            return
-        how = replace(trials.cut, margin_s=need_s)
-        ready = self._shelf.find(self._state.recording, how)
-        if ready is not None:
-            self._take_wider(ready)
-        else:
-            self._cut_again(how, self._take_wider)
-
-    def _take_wider(self, trials: Trials) -> None:
-        """Lay the same trials with longer margins: no step of its own in the undo list.
-
-        They only lie ready where another recording or cut is on the table by now.
-        """
-        self._shelf.put(trials)
-        path, how = self._state.recording, self._state.cut
-        if how is None or path != trials.source.path:
-            return
-        if replace(how, margin_s=trials.cut.margin_s) == trials.cut:
-            self._take(trials, fleeting=True)
-
-    def _lay_again(self, trials: Trials) -> None:
-        self._shelf.put(trials)
-        self._mark({Result.TRIALS}, "")
-
-    def _cut_again(self, how: Cut, done: Callable[[Trials], None]) -> None:
-        work = partial(opening.read_and_cut, self._state.recording, how)
-        self.jobs.start(Job("cut", "cutting trials", work, done, self._failed))
+        self._incoming.take(trials)
 
     def _find_trials(self, state: State) -> Trials | None:
         if state.cut is None:
@@ -369,80 +276,9 @@ class Workbench:
 
     # -- jobs ---------------------------------------------------------------------------------
 
-    def _ask_transform(self, question: ChannelQuestion) -> None:
-        masks = self._deriver.masks(self._state, len(question.trials))
-        self.jobs.start(
-            Job(
-                "transform",
-                f"transforming {question.channel}",
-                partial(transform_channel, question, masks),
-                self._transformed,
-                self._transform_failed,
-            )
-        )
-
-    def _transformed(self, work: ChannelWork) -> None:
-        if self._deriver.take_work(work):
-            self._mark({Result.CHANNEL, Result.SUBSETS}, "")
-
-    def _ask_steps(self, question: StepsQuestion) -> None:
-        self.jobs.start(
-            Job(
-                "steps",
-                "steps of the sort key",
-                partial(work_out_steps, question),
-                partial(self._steps_done, question),
-                partial(self._steps_failed, question),
-            )
-        )
-
-    def _steps_failed(self, question: StepsQuestion, error: Exception) -> None:
-        self._deriver.no_steps(question)
-        self._failed(error)
-
-    def _steps_done(self, question: StepsQuestion, steps: Steps) -> None:
-        if self._deriver.take_steps(question, steps):
-            self._mark({Result.STEPS}, "")
-
-    def _ask_rested(self, question: RestQuestion) -> None:
-        self.jobs.start(
-            Job(
-                "rest",
-                "bands and checks",
-                partial(work_out_rested, question, before=self._deriver.before_rest()),
-                partial(self._rest_done, question),
-                partial(self._rest_failed, question),
-                rest_s=REST_S,
-            )
-        )
-
-    def _rest_done(self, question: RestQuestion, answer: RestAnswer) -> None:
-        new = self._deriver.take_rested(question, answer)
-        if new:
-            self._mark(new, "")
-
-    def _rest_failed(self, question: RestQuestion, error: Exception) -> None:
-        self._deriver.no_rested(question)
-        self._failed(error)
-
     def compare(self) -> None:
         """Test A against B as the record says, in a job of its own."""
-        question = self._deriver.compare_question(self._state)
-        if question is None:
-            return
-        self.jobs.start(
-            Job(
-                "compare",
-                f"testing A against B: {question.tested}",
-                partial(compare_subsets, question),
-                partial(self._compare_done, question),
-                self._failed,
-            )
-        )
-
-    def _compare_done(self, question: CompareQuestion, compared: Compared) -> None:
-        if self._deriver.take_compared(question, compared):
-            self._mark({Result.COMPARED}, "")
+        self._slow.compare()
 
     def want_steps(self, *, wanted: bool) -> None:
         """Work out the steps of the sort key only while somebody looks at them."""
@@ -482,11 +318,8 @@ class Workbench:
         self._deriver.forget_slow()
         self._mark({Result.TRIALS}, "")
 
-    def _transform_failed(self, error: Exception) -> None:
-        self._deriver.forget_question()
-        self._failed(error)
-
-    def _failed(self, error: Exception) -> None:
+    def tell_failure(self, error: Exception) -> None:
+        """Say that work failed; what is on screen stays."""
         self.listeners.failed(error)
 
     def close(self) -> None:
