@@ -73,7 +73,7 @@ def test_every_draw_as_a_loop_would_compute_it(quantity):
         found.difference, by_hand(coefficients, a, b, quantity), rtol=1e-6, atol=1e-6
     )
     union = np.flatnonzero(a | b)
-    draws = []
+    draws = [found.difference]  # the labels as picked are one of the ways of dealing
     for row in subset_weights(21, 13, 60, np.random.default_rng(5)):
         drawn_a, drawn_b = np.zeros(25, bool), np.zeros(25, bool)
         drawn_a[union[row > 0]] = drawn_b[union[row == 0]] = True
@@ -95,7 +95,7 @@ def test_averages_as_a_loop_would_compute_them():
         found.difference, exact[a].mean(axis=0) - exact[b].mean(axis=0), atol=1e-4
     )
     union = np.flatnonzero(a | b)
-    draws = [
+    draws = [found.difference] + [
         exact[union[row > 0]].mean(axis=0) - exact[union[row == 0]].mean(axis=0)
         for row in subset_weights(24, 10, 80, np.random.default_rng(3))
     ]

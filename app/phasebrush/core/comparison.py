@@ -77,8 +77,8 @@ class Comparison:
     difference : ndarray of float64, shape (F, T) or (S,)
         A - B as picked.
     z : ndarray of float64
-        Of the same shape: the difference against the draws' mean and standard deviation; NaN
-        for points that take no part.
+        Of the same shape: the difference against mean and standard deviation of the draws and
+        itself; NaN for points that take no part.
     labels : ndarray of int32
         Of the same shape: 0 outside of clusters, else a cluster's place in ``clusters`` plus 1.
     clusters : tuple of Cluster

@@ -103,8 +103,11 @@ def compare_maps(
     The labels A and B are dealt out anew within the union of both, sizes kept. All draws' sums
     come from one matrix product of 0/1 weights with the trials' phasors or powers, in blocks
     that keep to a memory limit; those of B are the total less those of A. Each point's
-    difference becomes a z by the mean and the standard deviation of the draws; neighbouring
-    valid points with |z| > 1.96 and one sign form a cluster of mass sum |z|;
+    difference becomes a z by the mean and the standard deviation of the draws and of the
+    labels as picked, which are one way of dealing among the others: left out, their z would be
+    larger than those of draws that count in their own standard deviation, and 7.5 instead of 5
+    in 100 random splits would be called different by 99 draws. Neighbouring valid points with
+    |z| > 1.96 and one sign form a cluster of mass sum |z|;
     p = (1 + draws whose heaviest cluster is at least as heavy) / (1 + draws) (Maris &
     Oostenveld 2007, J Neurosci Methods 164:177-190; Phipson & Smyth 2010, Stat Appl Genet Mol
     Biol 9:39, for the 1). Sizes are kept, so that the bias of ITC by count is in every draw.
@@ -259,10 +262,11 @@ def _compare(task: _Task, mask_a: Mask, mask_b: Mask, how: Relabelling) -> Compa
 
         z, found = _draw(task, weights, mask_a[trials], trials, (n_a, n_b), tell, how)
         if first == 0:
-            observed, mean = found, z.mean(axis=0, dtype=np.float64)
+            observed = found
+            mean = (z.sum(axis=0, dtype=np.float64) + observed) / (count + 1)
         z -= mean.astype(np.float32)
         if first == 0:
-            sd = _spread(z, mean, task.valid.ravel())
+            sd = _spread(z, observed - mean, mean, task.valid.ravel())
         z /= sd.astype(np.float32)
         heaviest[first : first + count] = _heaviest(task, z, tell, how.stopped)
         del z  # before the next turn's
@@ -321,10 +325,10 @@ def _blocks(task: _Task, draws: int, n_weights: int, memory_mb: float) -> Iterat
         yield slice(first, min(first + step, task.n_freqs))
 
 
-def _spread(around_mean: Singles, mean: Floats, valid: Mask) -> Floats:
-    """Standard deviation of the draws at each point; NaN for points that take no part."""
+def _spread(around_mean: Singles, of_picked: Floats, mean: Floats, valid: Mask) -> Floats:
+    """Standard deviation of draws and labels as picked; NaN for points that take no part."""
     squares = np.einsum("dp,dp->p", around_mean, around_mean).astype(np.float64)
-    sd = np.sqrt(squares / (len(around_mean) - 1))
+    sd = np.sqrt((squares + np.square(of_picked)) / len(around_mean))
     # Equal trials leave nothing but rounding to differ by.
     with np.errstate(invalid="ignore"):
         real = sd > 1e-6 * np.maximum(np.abs(mean), 1e-3)

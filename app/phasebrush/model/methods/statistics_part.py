@@ -137,11 +137,12 @@ def comparing_words(snapshot: Snapshot) -> str:
     many = " p was not corrected for the number of quantities tested." if len(done) > 1 else ""
     return (
         f"A was tested against B by relabelling within their union, counts kept: {listed(named)}. "
-        "Each point's difference became a z by the draws' mean and standard deviation; "
-        f"neighbouring valid points with |z| > {number(THRESHOLD_Z)} and one sign formed a cluster "
-        f"of mass sum |z|, two-sided; {p}, which corrects for all points of a map or waveform, "
-        f"(1 + heavier draws) / (1 + draws) {cited(Source.MARIS, Source.PHIPSON)}. A cluster's p "
-        "speaks for a difference somewhere, not for the cluster's edges in time or frequency "
+        "Each point's difference became a z by the mean and standard deviation of the draws and "
+        f"the labels as picked; neighbouring valid points with |z| > {number(THRESHOLD_Z)} and "
+        f"one sign formed a cluster of mass sum |z|, two-sided; {p}, which corrects for all points "
+        "of a map or waveform, (1 + heavier draws) / (1 + draws) "
+        f"{cited(Source.MARIS, Source.PHIPSON)}. A cluster's p speaks for a difference somewhere, "
+        "not for the cluster's edges in time or frequency "
         f"{cited(Source.SASSENHAGEN)}.{many}"
     )
 
