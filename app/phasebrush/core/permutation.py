@@ -151,11 +151,10 @@ def compare_maps(
     ) -> Floats:
         if quantity == "power":
             shape = (-1, rows.stop - rows.start, n_times)
-            db = [
-                _decibel(sums[0].reshape(shape) / n, in_baseline[rows])
-                for sums, n in zip((a, b), counts, strict=True)
-            ]
-            return (db[0] - db[1]).reshape(len(a[0]), -1)
+            of_a, of_b = (
+                _against_baseline(sums[0].reshape(shape), in_baseline[rows]) for sums in (a, b)
+            )
+            return _decibels(of_a, of_b).reshape(len(a[0]), -1)
         measure = _itc if quantity == "ITC" else _ppc
         return measure(a, counts[0]) - measure(b, counts[1])
 
@@ -388,13 +387,23 @@ def _ppc(sums: list[Floats], n: int) -> Floats:
         return np.where(count > 1.5, (square - count) / (count * (count - 1)), np.nan)
 
 
-def _decibel(power_uv2: Floats, in_baseline: Mask) -> Floats:
-    """Power of shape (draws, F, T) against each draw's own baseline; NaN where there is none."""
+def _against_baseline(power_uv2: Floats, in_baseline: Mask) -> Floats:
+    """Power of shape (draws, F, T) over each draw's own baseline; NaN where there is none.
+
+    A sum over trials will do as well as their mean: the count is in the baseline too.
+    """
     counts = np.count_nonzero(in_baseline, axis=1)
     weights = (in_baseline / np.maximum(counts, 1)[:, None]).astype(power_uv2.dtype)
     baseline = np.einsum("dft,ft->df", power_uv2, weights)
     known = (counts > 0) & (baseline > 0.0)
-    ratio = power_uv2 / np.where(known, baseline, np.nan)[:, :, None].astype(power_uv2.dtype)
+    return power_uv2 / np.where(known, baseline, np.nan)[:, :, None].astype(power_uv2.dtype)
+
+
+def _decibels(of_a: Floats, of_b: Floats) -> Floats:
+    """A against B in dB: one logarithm of the quotient; NaN where either has no power."""
     with np.errstate(divide="ignore", invalid="ignore"):
-        db = 10.0 * np.log10(ratio)
-    return np.where(np.isfinite(db), db, np.nan)
+        of_a /= of_b
+        np.log10(of_a, out=of_a)
+    of_a *= 10.0
+    of_a[~np.isfinite(of_a)] = np.nan
+    return of_a
