@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Literal
+from typing import Literal, get_args
 
 PanelName = Literal[
     "average", "stack", "locking-map", "power-map", "locking-difference", "power-difference",
@@ -11,6 +11,8 @@ PanelName = Literal[
 ]  # fmt: skip
 PaperName = Literal["slide", "a4", "single-column", "double-column"]
 LookName = Literal["light", "dark"]
+LEAST_PT, MOST_PT = 5.0, 32.0
+LEAST_DPI, MOST_DPI = 50, 1200
 
 
 @dataclass(frozen=True)
@@ -35,6 +37,11 @@ class Page:
         Of pictures made of pixels.
     caption : str or None
         Below the panels; None for the one that is built from the record.
+
+    Raises
+    ------
+    ValueError
+        If a panel, the columns, a size or a name is not one of those that there are.
     """
 
     name: str = "page"
@@ -45,3 +52,19 @@ class Page:
     font_pt: float = 10.0
     dpi: int = 200
     caption: str | None = None
+
+    def __post_init__(self) -> None:
+        unknown = [name for name in self.panels if name not in get_args(PanelName)]
+        if unknown or not self.panels or len(set(self.panels)) != len(self.panels):
+            raise ValueError(
+                f"panels {', '.join(self.panels) or '(none)'}; give each at most once, of "
+                f"{', '.join(get_args(PanelName))}"
+            )
+        if self.columns not in (1, 2):
+            raise ValueError(f"{self.columns} columns; give 1 or 2")
+        if self.paper not in get_args(PaperName) or self.look not in get_args(LookName):
+            raise ValueError(f"paper {self.paper!r} or look {self.look!r} is not known")
+        if not LEAST_PT <= self.font_pt <= MOST_PT:
+            raise ValueError(f"words of {self.font_pt} pt; give {LEAST_PT:g} to {MOST_PT:g}")
+        if not LEAST_DPI <= self.dpi <= MOST_DPI:
+            raise ValueError(f"{self.dpi} dpi; give {LEAST_DPI} to {MOST_DPI}")

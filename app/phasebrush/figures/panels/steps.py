@@ -1,0 +1,183 @@
+"""The steps of the sort key: waveforms, alignment, power, and the fixed-response check."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+import numpy as np
+from matplotlib.ticker import FixedLocator
+
+from phasebrush.core.sort_key import KeyName
+from phasebrush.figures.panels.panel import Panel, Place
+from phasebrush.figures.time_axis import draw_time_axis, draw_value_ticks, plain
+from phasebrush.look.colour_maps import mixed
+from phasebrush.model.methods.wording import typeset
+from phasebrush.model.stale import Result
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+
+    from phasebrush.figures.style import Style
+    from phasebrush.model.results import Snapshot, Steps
+    from phasebrush.model.state import Consistency
+
+SHARES = (0.40, 0.20, 0.20, 0.20)
+"""Of the panel's width: waveforms, alignment, power, projected response."""
+
+
+def titles(snapshot: Snapshot) -> tuple[str, ...]:
+    """The key, and where the numbers are read."""
+    steps = snapshot.steps
+    if steps is None:
+        return ("Steps of the sort key",)
+    where = f"{plain(round(steps.freq_hz, 1))} Hz, {plain(round(steps.time_s, 2))} s"
+    words = f"{steps.count} steps of {key_words(snapshot, steps.key_title)}"
+    return f"{words}; read at {where}", words, f"{steps.count} steps"
+
+
+def key_words(snapshot: Snapshot, title: str) -> str:
+    """Give a key's title with true minus signs; a column keeps the name that its file gives it."""
+    return title if snapshot.state.key.kind == KeyName.COLUMN else typeset(title)
+
+
+def missing(snapshot: Snapshot) -> str:
+    """Steps need a key with enough values."""
+    if snapshot.steps is None or Result.STEPS in snapshot.outdated:
+        return "no steps: the sort key has too few values, or they were not worked out"
+    return ""
+
+
+def draw(place: Place, snapshot: Snapshot) -> None:
+    """Draw four plots side by side."""
+    steps = snapshot.steps
+    place.beside.set_axis_off()
+    place.axes.set_axis_off()
+    if steps is None:
+        return
+    areas = _split(place)
+    _draw_waves(areas[0], snapshot, steps, place.style)
+    for axes, drawn in zip(areas[1:], _measured(steps, snapshot.state.consistency), strict=True):
+        _draw_measure(axes, place.style, drawn, read=steps.valid)
+
+
+@dataclass(frozen=True)
+class Measured:
+    """One measure of the steps.
+
+    Parameters
+    ----------
+    name : str
+        With its unit.
+    values, bands : list
+        A value and the ends of its 95 % band for each step.
+    chance, predicted : list
+        Level of chance, and what a response of fixed shape would give, where there are any.
+    line : float
+        Level of the fixed-response line; NaN for none.
+    """
+
+    name: str
+    values: list[float]
+    bands: list[tuple[float, float]]
+    chance: list[float] = field(default_factory=list)
+    predicted: list[float] = field(default_factory=list)
+    line: float = float("nan")
+
+
+def _measured(steps: Steps, measure: Consistency) -> tuple[Measured, Measured, Measured]:
+    """Alignment, power and projected response."""
+    of, fixed = steps.of, steps.fixed
+    checks = () if fixed is None else fixed.of
+    if measure == "ITC":
+        aligned = Measured(
+            "ITC", [x.itc for x in of], [x.itc_band for x in of], [x.chance_itc for x in of],
+            [x.expected_itc for x in checks],
+        )  # fmt: skip
+    else:
+        aligned = Measured(
+            "PPC", [x.ppc for x in of], [x.ppc_band for x in of], [x.chance_ppc for x in of],
+            [x.expected_ppc for x in checks],
+        )  # fmt: skip
+    power = Measured("power (dB re 1 µV²)", [x.power_db for x in of], [x.power_band_db for x in of])
+    projected = Measured(
+        "projected (µV)",
+        [x.projected_uv for x in checks],
+        [(x.projected_uv - x.band_uv, x.projected_uv + x.band_uv) for x in checks],
+        line=float("nan") if fixed is None else fixed.line_uv,
+    )
+    return aligned, power, projected
+
+
+def _split(place: Place) -> list[Axes]:
+    box, beside = place.axes.get_position(), place.beside.get_position()
+    em = place.style.font_pt * box.width / place.size_pt[0]
+    gap = 5.2 * em
+    whole = beside.x1 - box.x0
+    areas, left = [], box.x0
+    for share in SHARES:
+        wide = share * (whole + gap) - gap
+        axes = place.figure.add_axes((left, box.y0, wide, box.height))
+        place.style.dress(axes)
+        areas.append(axes)
+        left += wide + gap
+    return areas
+
+
+def _colour(style: Style, number: int, count: int) -> str:
+    """From muted to text along the key."""
+    return mixed(style.look.hairline, style.look.text, 0.25 + 0.75 * number / max(1, count - 1))
+
+
+def _draw_waves(axes: Axes, snapshot: Snapshot, steps: Steps, style: Style) -> None:
+    """Small multiples in one plot, the lowest step at the foot."""
+    spread = max(float(np.ptp(step.mean_uv)) for step in steps.of) or 1.0
+    for number, step in enumerate(steps.of):
+        base = number * spread
+        colour = _colour(style, number, steps.count)
+        axes.axhline(base, color=style.look.hairline, linewidth=style.thin, zorder=1)
+        band = step.mean_band_uv
+        axes.fill_between(
+            steps.times_s, base + step.mean_uv - band, base + step.mean_uv + band, color=colour,
+            alpha=0.18, linewidth=0.0, zorder=2,
+        )  # fmt: skip
+        axes.plot(steps.times_s, base + step.mean_uv, color=colour, linewidth=0.7 * style.thick,
+                  zorder=3)  # fmt: skip
+    axes.set_ylim(-0.75 * spread, (steps.count - 0.25) * spread)
+    axes.yaxis.set_major_locator(FixedLocator([number * spread for number in range(steps.count)]))
+    axes.set_yticklabels([str(number + 1) for number in range(steps.count)])
+    axes.set_ylabel(f"step, {plain(float(f'{spread:.2g}'))} µV apart")
+    draw_time_axis(axes, snapshot, style, named=True)
+
+
+def _draw_measure(axes: Axes, style: Style, drawn: Measured, *, read: bool) -> None:
+    """Draw a dot with its band a step; dotted chance, open diamonds of a fixed response."""
+    axes.set_ylabel(drawn.name)
+    axes.set_xlabel("step")
+    at = np.arange(1, len(drawn.values) + 1)
+    axes.xaxis.set_major_locator(FixedLocator(at.tolist()))
+    axes.set_xlim(0.4, max(1, at.size) + 0.6)
+    draw_value_ticks(axes)
+    if not read or not drawn.values:
+        axes.text(0.5, 0.5, "not read", transform=axes.transAxes, ha="center", va="center",
+                  size=style.small_pt, color=style.look.muted)  # fmt: skip
+        return
+    colour, muted = style.look.text, style.look.muted
+    for x, (low, high) in zip(at, drawn.bands, strict=True):
+        axes.plot([x, x], [low, high], color=colour, linewidth=0.6 * style.thick)
+    axes.plot(at, drawn.values, linestyle="none", marker="o", color=colour, zorder=4,
+              markersize=0.4 * style.font_pt, markeredgewidth=0.0)  # fmt: skip
+    for x, level in zip(at, drawn.chance, strict=False):
+        axes.plot([x - 0.35, x + 0.35], [level, level], color=muted,
+                  linewidth=2 * style.thin, linestyle=(0, (1, 1.2)))  # fmt: skip
+    if drawn.predicted:
+        axes.plot(at, drawn.predicted, linestyle="none", marker="D", markerfacecolor="none",
+                  markeredgecolor=muted, markersize=0.5 * style.font_pt, zorder=3,
+                  markeredgewidth=1.6 * style.thin)  # fmt: skip
+    if np.isfinite(drawn.line):
+        axes.axhline(drawn.line, color=muted, linestyle=(0, (4, 2)), linewidth=2 * style.thin)
+
+
+STEPS = Panel(
+    "steps of the sort key", 1.35, on_time=False, titles=titles, missing=missing, draw=draw
+)
