@@ -17,6 +17,7 @@ from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
 from phasebrush.core.transform_settings import TransformSettings
 from phasebrush.errors import InputError, PersonError
+from phasebrush.model.fault_report import report_of
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
@@ -28,6 +29,9 @@ CAUTION = (
     "data-protection rules."
 )
 USAGE = 2
+INTERRUPTED = 130
+"""What shells give for a program that Ctrl+C ended: 128 and the signal's number."""
+TELL = "tell this line to whoever looks after the program"
 SMALLEST, LARGEST = (900, 600), 8192
 
 
@@ -375,6 +379,12 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return USAGE
     except PersonError as error:
         print(f"phasebrush: {error.line}", file=sys.stderr)  # noqa: T201
+        return USAGE
+    except KeyboardInterrupt:
+        print("phasebrush: interrupted", file=sys.stderr)  # noqa: T201
+        return INTERRUPTED
+    except Exception as error:  # noqa: BLE001 - a person gets one line, never a traceback
+        print(f"phasebrush: {report_of(error).line}; {TELL}", file=sys.stderr)  # noqa: T201
         return USAGE
 
 

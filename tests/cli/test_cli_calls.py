@@ -10,7 +10,7 @@ import pytest
 from calls import BRAINVISION, EDF, FIF, QUICK, assert_refused, here
 
 from phasebrush import __version__
-from phasebrush.cli import COMMANDS, main
+from phasebrush.cli import COMMANDS
 
 MEASURE = ("measure", EDF, "--channel", "Oz", *QUICK)
 
@@ -187,10 +187,27 @@ def test_a_missing_recording_to_open_is_one_line(capsys, tmp_path):
     assert list(tmp_path.iterdir()) == []
 
 
-def test_a_fault_of_the_program_is_not_dressed_up_as_the_persons(monkeypatch, tmp_path):
+def test_a_fault_of_the_program_is_one_line_and_not_dressed_up_as_the_persons(
+    capsys, monkeypatch, tmp_path
+):
     def broken(*_args):
-        raise ZeroDivisionError
+        raise ZeroDivisionError("Thornquist.edf")
 
     monkeypatch.setattr("phasebrush.model.measure.measure", broken)
-    with pytest.raises(ZeroDivisionError):
-        main(["measure", BRAINVISION, "--channel", "Oz", "--out", str(tmp_path / "o.npz")])
+    words = ("measure", BRAINVISION, "--channel", "Oz", "--out", str(tmp_path / "o.npz"))
+    ended = here(capsys, *words)
+    assert ended.status == 2
+    (line,) = ended.lines
+    assert line.startswith("phasebrush: a fault of the program (ZeroDivisionError, cli.py:")
+    assert "_run_measure" in line
+    assert "Thornquist" not in line
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_an_interrupted_call_is_one_line(capsys, monkeypatch, tmp_path):
+    def interrupted(*_args):
+        raise KeyboardInterrupt
+
+    monkeypatch.setattr("phasebrush.model.measure.measure", interrupted)
+    ended = here(capsys, *MEASURE, "--out", str(tmp_path / "o.npz"))
+    assert (ended.status, ended.lines) == (130, ["phasebrush: interrupted"])

@@ -7,6 +7,7 @@ import os
 import sys
 import time
 from dataclasses import dataclass
+from functools import partial
 from pathlib import Path
 
 import pyqtgraph as pg
@@ -18,9 +19,11 @@ from shiboken6 import isValid
 from phasebrush.errors import InputError
 from phasebrush.gui import theme
 from phasebrush.gui.background import ThreadRunner
+from phasebrush.gui.last_resort import LastResort
 from phasebrush.gui.main_window import MainWindow
 from phasebrush.model import intents
 from phasebrush.model.recovery import Recovery, offers
+from phasebrush.model.swap_in import make_private_file, make_private_folder
 from phasebrush.model.workbench import Workbench
 
 LONGEST_PICTURE_S = 300.0
@@ -77,10 +80,19 @@ def has_display() -> bool:
     return bool(os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
 
 
-def settings() -> QSettings:
-    """The settings file: arrangement of the window and look, nothing about recordings."""
-    folder = user_config_path("phasebrush", appauthor=False, ensure_exists=True)
-    return QSettings(str(folder / "window.ini"), QSettings.Format.IniFormat)
+def settings() -> QSettings | None:
+    """The settings file: arrangement of the window and look, nothing about recordings.
+
+    Its owner alone can read it. None where it cannot be made: then nothing is remembered.
+    """
+    folder = user_config_path("phasebrush", appauthor=False)
+    file = folder / "window.ini"
+    try:
+        make_private_folder(folder)
+        make_private_file(file)
+    except OSError:
+        return None
+    return QSettings(str(file), QSettings.Format.IniFormat)
 
 
 def recovery_folder() -> Path:
@@ -111,13 +123,17 @@ def run(wish: Wish) -> int:
     recovery = Recovery(folder) if folder is not None else None
     window = MainWindow(Workbench(runner), look, kept, recovery)
     app.aboutToQuit.connect(window.shut_down)
+    faults: list[BaseException] = []
+    take = faults.append if wish.picture else window.trouble.take
+    window.board.failed = take
+    resort = LastResort(take, window.close, window.trouble.rescue)
     window.resize(*wish.size)
     if not wish.picture:
         window.arrangement.restore_place()
     window.show()
     try:
         if wish.picture:
-            _draw_picture(app, window, wish)
+            _draw_picture(app, window, wish, faults)
             return 0
         if wish.path:
             window.open_path(wish.path)
@@ -128,18 +144,19 @@ def run(wish: Wish) -> int:
         if isValid(window):  # closed by the person, it is gone by now
             window.close()
         app.processEvents()
+        resort.let_go()
         theme.forget_pixmaps()
 
 
-def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
+def _draw_picture(
+    app: QApplication, window: MainWindow, wish: Wish, faults: list[BaseException]
+) -> None:
     bench = window.workbench
+    bench.listeners.failed = faults.append
+    wait = partial(_wait, app, window, wish.path, faults)
     if wish.path:
-        failures: list[Exception] = []
-        bench.listeners.failed = failures.append
         window.open_path(wish.path)
-        _wait(app, window)
-        if failures:
-            raise _named(failures[0], wish.path)
+        wait()
     trials = bench.snapshot.trials
     if wish.channel and trials is not None:
         if wish.channel not in trials.ch_names:
@@ -149,14 +166,14 @@ def _draw_picture(app: QApplication, window: MainWindow, wish: Wish) -> None:
                 wish.path,
             )
         bench.do(intents.show_channel(wish.channel))
-        _wait(app, window)
+        wait()
     if wish.parts:
         bench.do(intents.pick_parts(dict(wish.parts)))  # type: ignore[arg-type]
-        _wait(app, window)
+        wait()
     _swap_in_picture(window, Path(wish.picture))
 
 
-def _named(fault: Exception, path: str) -> Exception:
+def _named(fault: BaseException, path: str) -> BaseException:
     """The fault with the name of its file, where it lacks one."""
     if isinstance(fault, InputError) and not fault.file:
         return InputError(fault.wrong, fault.remedy, path)
@@ -178,11 +195,13 @@ def _swap_in_picture(window: MainWindow, target: Path) -> None:
         beside.unlink(missing_ok=True)
 
 
-def _wait(app: QApplication, window: MainWindow) -> None:
-    """Let the window work until everything asked for is drawn."""
+def _wait(app: QApplication, window: MainWindow, path: str, faults: list[BaseException]) -> None:
+    """Let the window work until everything asked for is drawn, or the first fault."""
     end = time.monotonic() + LONGEST_PICTURE_S
     while time.monotonic() < end:
         app.processEvents(QEventLoop.ProcessEventsFlag.AllEvents, 20)
+        if faults:
+            raise _named(faults[0], path)
         if window.settled:
             app.processEvents()
             if window.settled:

@@ -17,7 +17,6 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from phasebrush.errors import PersonError
 from phasebrush.gui import theme
 from phasebrush.gui.actions import Actions
 from phasebrush.gui.arrangement import Arrangement
@@ -27,6 +26,7 @@ from phasebrush.gui.docks import Docks
 from phasebrush.gui.foot import Foot
 from phasebrush.gui.frame_clock import FrameClock
 from phasebrush.gui.message_bar import MessageBar
+from phasebrush.gui.trouble import Trouble
 from phasebrush.gui.view import Ways
 from phasebrush.gui.view_board import ViewBoard
 from phasebrush.gui.welcome import SAMPLES, Welcome
@@ -99,6 +99,7 @@ class MainWindow(QMainWindow):
         self.docks = Docks(self)
         self.arrangement = Arrangement(self, self.docks, settings)
         self.message_bar = MessageBar()
+        self.trouble = Trouble(self, self.message_bar.say, self.keeper.keep_now)
         self.foot = Foot(
             lambda: workbench.jobs.running, workbench.stop, workbench.compute_again, self
         )
@@ -134,7 +135,7 @@ class MainWindow(QMainWindow):
         listeners.jobs = self._show_jobs
         listeners.message = self.message_bar.say
         listeners.fresh = self.message_bar.clear
-        listeners.failed = self._tell_fault
+        listeners.failed = self.trouble.take
         self.keeper.told = self._show_name
         self.keeper.ask_missing = self.asking.where_is
         listeners.recording_read = self.asking.ask_cut
@@ -263,14 +264,6 @@ class MainWindow(QMainWindow):
         """Open the first sample session, with the others on the list."""
         self.open_path(str(default_sample()))
 
-    def _tell_fault(self, error: Exception) -> None:
-        if isinstance(error, PersonError):
-            self.message_bar.say(error.line)
-            return
-        self.message_bar.say(
-            f"this did not work ({type(error).__name__}); what was open stays as it was"
-        )
-
     def dragEnterEvent(self, event: QDragEnterEvent) -> None:
         """Files are welcome."""
         if event.mimeData().hasUrls():
@@ -365,6 +358,7 @@ class MainWindow(QMainWindow):
         self.keeper.close()
         self.foot.close_foot()
         self.asking.close()
+        self.trouble.close()
         self.workbench.close()
         self.board.close()
         QTimer.singleShot(0, self, self.deleteLater)

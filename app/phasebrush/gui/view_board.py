@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 from phasebrush.model.results import Snapshot
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Callable, Iterable
 
     from phasebrush.gui.view import View
     from phasebrush.model.stale import Result
@@ -27,6 +27,7 @@ class ViewBoard:
     def __init__(self, views: Iterable[View]) -> None:
         self.views = tuple(views)
         self._snapshot = Snapshot()
+        self.failed: Callable[[Exception], None] = _raise
         for view in self.views:
             view.ways.missed = self.catch_up
 
@@ -51,9 +52,17 @@ class ViewBoard:
     def _show(self, view: View, changed: frozenset[Result]) -> None:
         view.missed = frozenset()
         view.shows += 1
-        view.show_snapshot(self._snapshot, changed)
+        try:
+            view.show_snapshot(self._snapshot, changed)
+        except Exception as error:  # noqa: BLE001 - it is told; the other views live on
+            view.missed = changed
+            self.failed(error)
 
     def close(self) -> None:
         """Let the views go."""
         for view in self.views:
             view.close_view()
+
+
+def _raise(error: Exception) -> None:
+    raise error

@@ -9,6 +9,7 @@ import numpy as np
 
 from phasebrush.core.morlet import Coefficients, transform
 from phasebrush.core.running_sums import RunningSums
+from phasebrush.model.transform_room import check_room
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
@@ -69,9 +70,12 @@ def transform_channel(
 
     Raises
     ------
+    InputError
+        If it needs more memory than is free; said before any of it is asked for.
     JobStopped
         If the progress was told to stop.
     """
+    check_room(question)
     trials = question.trials
     shown = trials.shown
     channel_uv = trials.channel_uv(question.channel)

@@ -133,8 +133,10 @@ class JobBoard:
                 if self._running.get(job.kind) is not progress:
                     return
                 del self._running[job.kind]
-                deliver()
-                self._changed()
+                try:
+                    deliver()
+                finally:
+                    self._changed()
 
             return arrive
 

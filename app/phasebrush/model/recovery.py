@@ -14,7 +14,7 @@ from typing import TYPE_CHECKING
 
 from phasebrush.errors import InputError
 from phasebrush.model.process_lock import HeldFile, is_held
-from phasebrush.model.swap_in import swap_in
+from phasebrush.model.swap_in import make_private_folder, swap_in
 from phasebrush.model.workspace_file import WORKSPACE_ENDING, read_workspace, workspace_bytes
 
 if TYPE_CHECKING:
@@ -124,17 +124,24 @@ class Recovery:
     def _write(self, workspace: Workspace) -> None:
         data = workspace_bytes(workspace, self._folder, private=True)
         try:
-            self._folder.mkdir(mode=0o700, parents=True, exist_ok=True)
+            make_private_folder(self._folder)
             if self._held is None:
                 # Held before there is anything to offer: nobody takes it for left behind.
                 self._held = HeldFile(_lock_of(self.path))
         except OSError as fault:
-            raise InputError(
-                f"work cannot be kept aside ({fault.strerror or 'no reason given'})",
-                "save the workspace by hand now and then",
-                self._folder,
-            ) from fault
-        swap_in(self.path, lambda stream: stream.write(data), private=True)
+            raise self._cannot(fault) from fault
+        try:
+            swap_in(self.path, lambda stream: stream.write(data), private=True)
+        except InputError as fault:
+            cause = fault.__cause__
+            raise self._cannot(cause if isinstance(cause, OSError) else OSError()) from fault
+
+    def _cannot(self, fault: OSError) -> InputError:
+        return InputError(
+            f"work cannot be kept aside ({fault.strerror or 'no reason given'})",
+            "save the workspace by hand now and then",
+            self._folder,
+        )
 
     def saved_by_hand(self) -> None:
         """The person saved everything: nothing is left to recover until the next change."""

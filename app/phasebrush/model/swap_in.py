@@ -17,6 +17,7 @@ if TYPE_CHECKING:
     from collections.abc import Callable
 
 PRIVATE = 0o600
+PRIVATE_FOLDER = 0o700
 PART_ENDING = ".part"
 LEFT_BEHIND_S = 3600.0
 """Age from which a half-written file counts as left behind by a program that was killed."""
@@ -64,6 +65,34 @@ def swap_in(
             "choose a folder that can be written and has room",
             Path(target),
         ) from error
+
+
+def make_private_folder(folder: Path) -> None:
+    """Make a folder that only its owner can look into; one that is there becomes such a one.
+
+    Raises
+    ------
+    OSError
+        If it cannot be made.
+    """
+    folder.mkdir(mode=PRIVATE_FOLDER, parents=True, exist_ok=True)
+    if os.name == "posix" and stat.S_IMODE(folder.stat().st_mode) & 0o077:
+        # Not ours to change: what is written into it is for its owner's eyes all the same.
+        with contextlib.suppress(PermissionError):
+            folder.chmod(PRIVATE_FOLDER)
+
+
+def make_private_file(file: Path) -> None:
+    """Make an empty file that only its owner reads, or make one that is there such a one.
+
+    Raises
+    ------
+    OSError
+        If it cannot be made.
+    """
+    os.close(os.open(file, os.O_RDWR | os.O_CREAT, PRIVATE))
+    if os.name == "posix" and stat.S_IMODE(file.stat().st_mode) & 0o077:
+        file.chmod(PRIVATE)
 
 
 def _check_writable(place: Path) -> None:

@@ -67,6 +67,7 @@ class WorkKeeper:
         self._contents = ContentShelf()
         self._known: dict[str, Content] = {}
         self._saved: State | None = None
+        self._told_aside = ""
         self.file = ""
         self.ask_missing: AskMissing | None = None
         self.told: Callable[[], None] = lambda: None
@@ -218,8 +219,32 @@ class WorkKeeper:
         if workspace is not None:
             work = partial(_save_aside, self._recovery, workspace)
             self._bench.jobs.start(
-                Job("aside", "keeping work aside", work, _nothing, self._bench.listeners.failed)
+                Job("aside", "keeping work aside", work, self._kept_aside, self._not_kept_aside)
             )
+
+    def _kept_aside(self, _answer: object) -> None:
+        self._told_aside = ""
+
+    def _not_kept_aside(self, fault: Exception) -> None:
+        """Say it once: it is tried again every minute, and fails again on a full disk."""
+        if str(fault) != self._told_aside:
+            self._told_aside = str(fault)
+            self._bench.listeners.failed(fault)
+
+    def keep_now(self) -> bool:
+        """Keep unsaved work aside at once, due or not; whether there was any.
+
+        Raises
+        ------
+        InputError
+            If it cannot be written; what was kept aside before stays.
+        """
+        if self._recovery is None or not self.unsaved:
+            return False
+        workspace = self._workspace_now()
+        if workspace is not None:
+            self._recovery.save(workspace)
+        return True
 
     def _workspace_now(self) -> Workspace | None:
         state = self._bench.state
@@ -256,10 +281,6 @@ def _read(path: str, _progress: Progress) -> Workspace:
 
 def _save_aside(recovery: Recovery, workspace: Workspace, _progress: Progress) -> None:
     recovery.save(workspace)
-
-
-def _nothing(_answer: object) -> None:
-    return None
 
 
 def _trials_of(found: Found, progress: Progress) -> Trials | None:

@@ -211,7 +211,11 @@ class Workbench:
         if self._gesture and Result.RESTED in stale:
             self.jobs.drop("rest")
             self._deriver.forget_rested()
-        self._deriver.run(self._state, stale, keep_scales=self._gesture != 0)
+        try:
+            self._deriver.run(self._state, stale, keep_scales=self._gesture != 0)
+        except BaseException:
+            self._stale |= stale  # the next change tries again what was not derived
+            raise
         if Result.TRIALS in stale and self._state.cut and self.snapshot.trials is None:
             # Undo reached a recording whose trials had to make room: read them again.
             self._incoming.cut_again(self._state.cut)
