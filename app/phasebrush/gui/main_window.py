@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from contextlib import ExitStack
 from dataclasses import replace
 from datetime import datetime
 from functools import partial
@@ -348,17 +349,26 @@ class MainWindow(QMainWindow):
         if self._closed:
             return
         self._closed = True
+        # The stack carries every step out, also where an earlier one failed; last comes first.
+        with ExitStack() as steps:
+            steps.callback(QTimer.singleShot, 0, self, self.deleteLater)
+            for step in (
+                self.board.close,
+                self.workbench.close,
+                self.trouble.close,
+                self.asking.close,
+                self.foot.close_foot,
+                self.keeper.close,
+                self._aside.stop,
+                self.clock.stop,
+                self.finish_notes,
+                self._remember,
+            ):
+                steps.callback(step)
+
+    def _remember(self) -> None:
+        """Write down place, arrangement and look."""
         self.arrangement.remember()
         if self._settings is not None:
             self._settings.setValue("look", self.look.name)
             self._settings.sync()
-        self.finish_notes()
-        self.clock.stop()
-        self._aside.stop()
-        self.keeper.close()
-        self.foot.close_foot()
-        self.asking.close()
-        self.trouble.close()
-        self.workbench.close()
-        self.board.close()
-        QTimer.singleShot(0, self, self.deleteLater)

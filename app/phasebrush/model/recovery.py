@@ -58,8 +58,8 @@ class Offer:
 
     def discard(self) -> None:
         """Take the file away: the work is in safety, or nobody wants it."""
-        self.path.unlink(missing_ok=True)
-        _lock_of(self.path).unlink(missing_ok=True)
+        _take_away(self.path)
+        _take_away(_lock_of(self.path))
 
 
 class Recovery:
@@ -147,7 +147,7 @@ class Recovery:
         """The person saved everything: nothing is left to recover until the next change."""
         with self._writing, self._numbers:
             self._changes, self._tried_s = 0, self._clock()
-            self.path.unlink(missing_ok=True)
+            _take_away(self.path)
 
     def clear(self) -> None:
         """The program ends in order: take the file away."""
@@ -210,6 +210,12 @@ def _lives(folder: Path, whose: str) -> bool:
     except (PermissionError, OverflowError):
         return True
     return True
+
+
+def _take_away(file: Path) -> None:
+    # What cannot be taken away is offered once more at the next start: no harm is done.
+    with contextlib.suppress(OSError):
+        file.unlink()
 
 
 def _lock_of(file: Path) -> Path:
