@@ -100,4 +100,5 @@ def _circular(snapshot: Snapshot) -> Iterator[str]:
         yield f"{letter} was picked by {how}: what is found {where} follows from the pick"
     if state.tested == "power" and snapshot.circles.in_baseline:
         who = listed(snapshot.circles.in_baseline)
-        yield f"{who} was picked by power in the baseline, which shifts dB at all times"
+        were = "was" if len(snapshot.circles.in_baseline) == 1 else "were"
+        yield f"{who} {were} picked by power in the baseline, which shifts dB at all times"
