@@ -90,9 +90,11 @@ def open_window(qapp) -> Iterator[Callable[..., MainWindow]]:
     """Make windows; each is closed afterwards, without a word from Qt."""
     made: list[tuple[MainWindow, ThreadRunner | None]] = []
 
-    def build(trials=None, *, size=(1600, 1000), threaded=False, look=LIGHT, settings=None):
+    def build(
+        trials=None, *, size=(1600, 1000), threaded=False, look=LIGHT, settings=None, recovery=None
+    ):
         runner = ThreadRunner() if threaded else None
-        window = MainWindow(Workbench(runner or InlineRunner()), look, settings)
+        window = MainWindow(Workbench(runner or InlineRunner()), look, settings, recovery)
         made.append((window, runner))
         window.resize(*size)
         window.show()

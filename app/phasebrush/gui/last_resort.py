@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import sys
 import threading
+from collections import deque
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import (
@@ -20,6 +21,7 @@ if TYPE_CHECKING:
     from collections.abc import Callable
     from types import TracebackType
 
+LAST_FAULT = ("last_type", "last_value", "last_traceback", "last_exc")
 DISPLAY_LOST = "connection broke"
 """Part of the last words of Qt's X11 and Wayland plugins, which then end the process."""
 
@@ -40,7 +42,7 @@ class LastResort(QObject):
         Called at once when the display is gone: it is the last that the program can do.
     """
 
-    _came = Signal(object)
+    _came = Signal()
 
     def __init__(
         self,
@@ -52,6 +54,8 @@ class LastResort(QObject):
         self._take = take
         self._interrupted = interrupted
         self._display_lost = display_lost
+        # Not handed over by the signal: Qt would hold on to the exception and all its frames.
+        self._waiting: deque[BaseException] = deque()
         self._came.connect(self._arrived, Qt.ConnectionType.QueuedConnection)
         self._earlier = sys.excepthook, threading.excepthook
         sys.excepthook = self._hook
@@ -67,18 +71,28 @@ class LastResort(QObject):
     def _hook(
         self, _kind: type[BaseException], error: BaseException, trace: TracebackType | None
     ) -> None:
-        self._came.emit(error.with_traceback(trace))
+        self._put(error.with_traceback(trace))
 
     def _thread_hook(self, caught: threading.ExceptHookArgs) -> None:
         if caught.exc_value is not None:
-            self._came.emit(caught.exc_value.with_traceback(caught.exc_traceback))
+            self._put(caught.exc_value.with_traceback(caught.exc_traceback))
 
-    @Slot(object)
-    def _arrived(self, error: BaseException) -> None:
+    def _put(self, error: BaseException) -> None:
+        self._waiting.append(error)
+        self._came.emit()
+
+    @Slot()
+    def _arrived(self) -> None:
+        error = self._waiting.popleft()
         if isinstance(error, KeyboardInterrupt):
             self._interrupted()
         else:
             self._take(error)
+        # Its frames hold trials and windows; Python keeps the last fault for a debugger.
+        error.__traceback__ = None
+        for name in LAST_FAULT:
+            if hasattr(sys, name):
+                delattr(sys, name)
 
     def _qt_said(self, kind: QtMsgType, context: QMessageLogContext, message: str | None) -> None:
         """Pass on what Qt says; rescue the work first where these are its last words."""

@@ -103,8 +103,16 @@ class Recovery:
             waited_s = self._clock() - self._tried_s
             return self._changes >= EVERY_CHANGES or (self._changes > 0 and waited_s >= EVERY_S)
 
-    def save(self, workspace: Workspace) -> None:
+    def save(self, workspace: Workspace, *, stopped: Callable[[], bool] | None = None) -> None:
         """Write the recovery file; what it held before is held until then.
+
+        Parameters
+        ----------
+        workspace : Workspace
+            The work.
+        stopped : callable, optional
+            Asked once nobody else writes any more: a save in another thread that was
+            overtaken by a newer one must not undo it.
 
         Raises
         ------
@@ -115,7 +123,8 @@ class Recovery:
             self._changes, self._tried_s = 0, self._clock()
         try:
             with self._writing:
-                self._write(workspace)
+                if stopped is None or not stopped():
+                    self._write(workspace)
         except BaseException:
             with self._numbers:
                 self._changes = max(self._changes, 1)

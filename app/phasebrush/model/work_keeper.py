@@ -115,6 +115,7 @@ class WorkKeeper:
         self.file, self._saved, self._known = path, state, known
         # What was changed while the recordings were read is not in the file.
         if self._recovery is not None and self._bench.state == state:
+            self._bench.jobs.drop("aside")
             self._recovery.saved_by_hand()
         self._bench.listeners.message(f"{Path(path).name} is saved")
         self.told()
@@ -241,6 +242,7 @@ class WorkKeeper:
         """
         if self._recovery is None or not self.unsaved:
             return False
+        self._bench.jobs.drop("aside")
         workspace = self._workspace_now()
         if workspace is not None:
             self._recovery.save(workspace)
@@ -257,6 +259,7 @@ class WorkKeeper:
         """The program ends in order: unsaved work is kept for the next start, else nothing."""
         if self._recovery is None:
             return
+        self._bench.jobs.drop("aside")
         if self.unsaved:
             workspace = self._workspace_now()
             if workspace is not None:
@@ -279,8 +282,8 @@ def _read(path: str, _progress: Progress) -> Workspace:
     return read_workspace(path)
 
 
-def _save_aside(recovery: Recovery, workspace: Workspace, _progress: Progress) -> None:
-    recovery.save(workspace)
+def _save_aside(recovery: Recovery, workspace: Workspace, progress: Progress) -> None:
+    recovery.save(workspace, stopped=progress.stopped)
 
 
 def _trials_of(found: Found, progress: Progress) -> Trials | None:
