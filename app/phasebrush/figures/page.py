@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from matplotlib.backends.backend_agg import FigureCanvasAgg
@@ -55,6 +56,8 @@ def draw_page(
     """
     if snapshot.trials is None:
         raise InputError("there is nothing to draw", "open a recording first", f"page {page.name}")
+    tests = {name: test for name, test in snapshot.compared.items() if name in page.tested}
+    snapshot = replace(snapshot, compared=tests)
     with settings():
         style = Style.of(page)
         lines = _foot_lines(snapshot, page, style)

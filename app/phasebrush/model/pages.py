@@ -11,6 +11,7 @@ PanelName = Literal[
 ]  # fmt: skip
 PaperName = Literal["slide", "a4", "single-column", "double-column"]
 LookName = Literal["light", "dark"]
+TestedName = Literal["ITC", "PPC", "power", "average"]
 LEAST_PT, MOST_PT = 5.0, 32.0
 LEAST_DPI, MOST_DPI = 50, 1200
 
@@ -37,6 +38,9 @@ class Page:
         Of pictures made of pixels.
     caption : str or None
         Below the panels; None for the one that is built from the record.
+    tested : tuple of str
+        Tests of A against B whose outcome is on the page; they are made again where the page
+        is drawn again.
 
     Raises
     ------
@@ -52,6 +56,7 @@ class Page:
     font_pt: float = 10.0
     dpi: int = 200
     caption: str | None = None
+    tested: tuple[TestedName, ...] = ()
 
     def __post_init__(self) -> None:
         unknown = [name for name in self.panels if name not in get_args(PanelName)]
@@ -60,6 +65,8 @@ class Page:
                 f"panels {', '.join(self.panels) or '(none)'}; give each at most once, of "
                 f"{', '.join(get_args(PanelName))}"
             )
+        if not set(self.tested) <= set(get_args(TestedName)):
+            raise ValueError(f"tests {', '.join(self.tested)} are not all known")
         if self.columns not in (1, 2):
             raise ValueError(f"{self.columns} columns; give 1 or 2")
         if self.paper not in get_args(PaperName) or self.look not in get_args(LookName):
