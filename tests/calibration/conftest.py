@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 import pytest
+from threadpoolctl import threadpool_limits
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -15,6 +16,13 @@ POWER_HEAD = (
     "slope rejected | A against B, ITC | of these more ITC in A |\n" + "|---" * 8 + "|"
 )
 TABLES = {"null": NULL_HEAD, "power": POWER_HEAD}
+
+
+@pytest.fixture(autouse=True)
+def _one_core():
+    """Thousands of small products: threads that wait for each other cost more than they bring."""
+    with threadpool_limits(limits=1):
+        yield
 
 
 @pytest.fixture
