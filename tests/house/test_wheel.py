@@ -73,7 +73,7 @@ def test_icons_and_samples_travel_in_the_wheel(wheel: Path) -> None:
                     inside = f"phasebrush/{path.relative_to(CHECKOUT).as_posix()}"
                     assert inside in names
                     assert content.read(inside) == path.read_bytes()
-    assert "phasebrush/cli.py" in names
+    assert "phasebrush/cli/__init__.py" in names
     assert {name.split("/")[0] for name in names if "dist-info" not in name} == {"phasebrush"}
 
 

@@ -68,7 +68,8 @@ def given_recordings(paths: list[str]) -> list[Given]:
         if path.is_dir():
             found += [Given(Path(item.path), item.title) for item in list_recordings(path)]
         else:
-            found.append(Given(path, title_of(entities_of(path)) or file_stem(path)))
+            entities = entities_of(path)
+            found.append(Given(path, title_of(entities) if entities else file_stem(path)))
     return found
 
 
