@@ -6,6 +6,7 @@ brushes 10,000 steps, shows 500 channels and starts the program 100 times.
 
 from __future__ import annotations
 
+import faulthandler
 import json
 import os
 import subprocess
@@ -65,6 +66,12 @@ def assert_long_session(folder: Path, *counts: int) -> list[str]:
     return [*told, f"after closing: {measured['left']}"]
 
 
+@pytest.fixture
+def patient():
+    """Minutes are no hang here: no stack is printed after the first one."""
+    faulthandler.cancel_dump_traceback_later()
+
+
 def recording_in(folder: Path) -> Path:
     rng = np.random.default_rng(5)
     path = folder / "one.npz"
@@ -96,7 +103,7 @@ def test_two_starts(tmp_path):
 
 @pytest.mark.long_use
 @pytest.mark.timeout(LONGEST_S + 100)
-def test_a_long_session(tmp_path, capsys):
+def test_a_long_session(tmp_path, patient, capsys):
     told = assert_long_session(tmp_path, 20, 200, 10_000, 500)
     with capsys.disabled():
         print("", *told, sep="\n")
@@ -104,5 +111,5 @@ def test_a_long_session(tmp_path, capsys):
 
 @pytest.mark.long_use
 @pytest.mark.timeout(LONGEST_S + 100)
-def test_a_hundred_starts(tmp_path):
+def test_a_hundred_starts(tmp_path, patient):
     assert_starts(tmp_path, 100)

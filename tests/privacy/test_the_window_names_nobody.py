@@ -28,6 +28,7 @@ from phasebrush.model.recovery import Recovery
 from phasebrush.model.workbench import Workbench
 
 posix = pytest.mark.skipif(os.name != "posix", reason="permissions are POSIX")
+one_kind = pytest.mark.parametrize("recording", ["edf"], indirect=True)
 TEXTS = ("text", "toolTip", "statusTip", "whatsThis", "windowTitle", "accessibleName",
          "accessibleDescription", "toPlainText", "placeholderText", "objectName")  # fmt: skip
 
@@ -176,6 +177,7 @@ def test_folders_and_files_that_others_could_read_are_closed(homes):
     assert stat.S_IMODE(ini.parent.stat().st_mode) == 0o700
 
 
+@one_kind
 def test_what_a_person_typed_is_theirs_and_is_kept(recording, homes):
     """The one way for a name into a file: somebody writes it into a note."""
     window = made(recording)
@@ -193,6 +195,7 @@ def test_what_a_person_typed_is_theirs_and_is_kept(recording, homes):
         close(window)
 
 
+@one_kind
 def test_a_workspace_elsewhere_names_the_place_of_the_recording_and_no_more(
     recording, homes, tmp_path
 ):
@@ -210,6 +213,7 @@ def test_a_workspace_elsewhere_names_the_place_of_the_recording_and_no_more(
         close(window)
 
 
+@one_kind
 def test_the_clipboard_gets_no_name(recording, homes):
     window = made(recording)
     try:
@@ -240,6 +244,7 @@ def broken(recording) -> None:
         raise OSError(2, "No such file", str(recording)) from first
 
 
+@one_kind
 def test_a_report_of_a_fault_holds_no_message_and_no_path(recording):
     """Messages of libraries quote headers and paths."""
     with pytest.raises(FileNotFoundError, match=LAST) as caught:
