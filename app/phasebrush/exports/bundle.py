@@ -5,6 +5,7 @@ from __future__ import annotations
 import io
 import os
 import tempfile
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from functools import partial
 from pathlib import Path
@@ -31,15 +32,14 @@ from phasebrush.exports.trial_tables import (
 from phasebrush.recordings.write_fif import write_fif
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterable, Mapping
+    from collections.abc import Iterable
 
     from numpy.typing import NDArray
 
     from phasebrush.core.trials import Trials
     from phasebrush.model.results import Snapshot
 
-    Write = Callable[[Path], object]
-
+Write = Callable[[Path], object]
 Part = Literal["trials", "events", "spot", "average", "traces", "maps", "clusters", "data"]
 WORDS: Mapping[Part, str] = {
     "trials": "table of trials (CSV)",
@@ -160,30 +160,57 @@ def _planned(
     """Files by the end of their name, and what cannot be had."""
     wanted: dict[str, Write] = {}
     left_out: list[str] = []
-    if snapshot.trials is None:
-        return wanted, ["no trials are on the table"]
-    tables: dict[Part, Callable[[Snapshot], Table | None]] = {
-        "trials": trial_table, "spot": spot_table, "average": average_table,
-        "traces": traces_table, "maps": maps_table, "clusters": clusters_table,
-    }  # fmt: skip
-    missing: dict[Part, str] = {
-        "spot": "no numbers at the spot: it is too near the end of the data",
-        "clusters": "no clusters: no test of A against B belongs to what is on screen",
-    }
     for part in parts:
-        table = tables[part](snapshot) if part in tables else None
-        if table is not None:
-            wanted[f"{part}.csv"] = _writer(partial(csv_bytes, table))
-            wanted[f"{part}.json"] = _writer(partial(description_bytes, table, recipe))
-        elif part in tables:
-            left_out.append(missing.get(part, f"no {part}: no channel is transformed"))
-        if part == "maps" and table is not None:
-            wanted["maps.npz"] = _writer(partial(_npz_bytes, snapshot, recipe))
-        if part == "events":
+        why = _missing(snapshot, part)
+        if why:
+            left_out.append(why)
+        elif part == "events":
             wanted |= _events(snapshot, recipe)
-        if part == "data":
+        elif part == "data":
             wanted |= _data(snapshot)
-    return wanted, left_out
+        else:
+            wanted[f"{part}.csv"] = _writer(partial(_table_bytes, snapshot, part))
+            wanted[f"{part}.json"] = _writer(partial(_table_words, snapshot, part, recipe))
+        if part == "maps" and not why:
+            wanted["maps.npz"] = _writer(partial(_npz_bytes, snapshot, recipe))
+    return wanted, list(dict.fromkeys(left_out))
+
+
+TABLES: Mapping[str, Callable[[Snapshot], Table | None]] = {
+    "trials": trial_table, "spot": spot_table, "average": average_table,
+    "traces": traces_table, "maps": maps_table, "clusters": clusters_table,
+}  # fmt: skip
+
+
+def _table(snapshot: Snapshot, part: Part) -> Table:
+    table = TABLES[part](snapshot)
+    if table is None:
+        raise ValueError(f"there are no {part}")
+    return table
+
+
+def _table_bytes(snapshot: Snapshot, part: Part) -> bytes:
+    return csv_bytes(_table(snapshot, part))
+
+
+def _table_words(snapshot: Snapshot, part: Part, recipe: Mapping[str, Any]) -> bytes:
+    return description_bytes(_table(snapshot, part), recipe)
+
+
+def _missing(snapshot: Snapshot, part: Part) -> str:
+    """Why a part cannot be had; empty where it can. Looks, and makes nothing."""
+    if snapshot.trials is None:
+        return "no trials are on the table"
+    if part in ("trials", "events", "data"):
+        return ""
+    if part == "clusters":
+        tested = any(compared.current for compared in snapshot.compared.values())
+        return "" if tested else "no clusters: no test of A against B belongs to what is on screen"
+    if snapshot.maps is None:
+        return f"no {part}: no channel is transformed"
+    if part == "spot" and not (snapshot.readout is not None and snapshot.readout.valid):
+        return "no numbers at the spot: it is too near the end of the data"
+    return ""
 
 
 def _writer(make: Callable[[], bytes]) -> Write:

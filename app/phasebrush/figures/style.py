@@ -31,6 +31,7 @@ SETTINGS: dict[str, Any] = {
     "figure.autolayout": False,
     "figure.constrained_layout.use": False,
     "text.usetex": False,
+    "text.hinting": "none",
     "text.parse_math": False,
 }
 """Nothing hangs on what a person has set for matplotlib: the same page is the same anywhere."""

@@ -22,9 +22,12 @@ if TYPE_CHECKING:
     from collections.abc import Callable
 
     from phasebrush.core.trials import Cut
+    from phasebrush.gui.dialogs.export_dialog import ExportDialog
+    from phasebrush.gui.leaving import Leaving
     from phasebrush.gui.main_window import MainWindow
     from phasebrush.gui.view import RowMenu
     from phasebrush.model.intents import Intent
+    from phasebrush.model.stale import Result
     from phasebrush.model.workspace_search import Found
     from phasebrush.recordings import Recording
 
@@ -121,6 +124,8 @@ class Asking:
             self._menu_line(menu, line, intents.exclude(excluded.mask_of(n_trials), back=True))
         menu.addSeparator()
         menu.addAction("suggest trials to exclude …").triggered.connect(self.suspects_dialog)
+        menu.addSeparator()
+        self._window.view_menu.add_lines(menu, self._window.bench.stack)
         return menu
 
     def _menu_line(self, menu: QMenu, words: str, intent: Intent) -> None:
@@ -149,6 +154,62 @@ class Asking:
         mask = dialog.chosen()
         if mask.any():
             self._window.workbench.do(intents.exclude(mask))
+
+    def figure_dialog(self) -> None:
+        """Open the figure dialog, or bring it to the front."""
+        # The drawing library takes half a second to be imported.
+        from phasebrush.gui.dialogs.figure_dialog import FigureDialog
+
+        window = self._window
+        for dialog in self._open_dialogs:
+            if isinstance(dialog, FigureDialog):
+                dialog.raise_()
+                return
+        if window.workbench.snapshot.trials is None:
+            return
+        dialog = FigureDialog(
+            window.workbench, self.leaving(), partial(window.want_steps, "page"), window
+        )
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        window.followers.append(dialog.show_snapshot)
+        dialog.finished.connect(partial(self._unfollow, dialog.show_snapshot))
+        self._open_dialogs.append(dialog)
+        dialog.finished.connect(partial(self._dialog_done, dialog))
+        dialog.show()  # the window can be brushed meanwhile
+
+    def _unfollow(self, follow: Callable[[frozenset[Result]], None], _result: int) -> None:
+        if follow in self._window.followers:
+            self._window.followers.remove(follow)
+
+    def export_dialog(self) -> None:
+        """Ask what of the work is written as files."""
+        from phasebrush.gui.dialogs.export_dialog import ExportDialog
+
+        window = self._window
+        if window.workbench.snapshot.trials is None:
+            return
+        beside = Path(window.keeper.file or window.workbench.state.recording).parent
+        dialog = ExportDialog(window.workbench.snapshot, str(beside), window)
+        dialog.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
+        dialog.accepted.connect(partial(self._export, dialog))
+        self._show_dialog(dialog)
+
+    def _export(self, dialog: ExportDialog) -> None:
+        from phasebrush.exports.report import REPORT_PAGE
+
+        self._window.finish_notes()
+        pages = self._window.workbench.state.pages
+        report = dialog.report_path() if dialog.with_report else ""
+        self.leaving().save_numbers(
+            dialog.parts(), dialog.folder.text(), dialog.stem.text().strip(), report=report,
+            page=pages[-1] if pages else REPORT_PAGE,
+        )  # fmt: skip
+
+    def leaving(self) -> Leaving:
+        """What writes files and pictures in jobs."""
+        from phasebrush.gui.leaving import Leaving
+
+        return Leaving(self._window.workbench, self._window.message_bar.say)
 
     def save_work(self) -> None:
         """Save where it was saved before, else ask where."""

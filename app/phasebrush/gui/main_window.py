@@ -30,6 +30,7 @@ from phasebrush.gui.message_bar import MessageBar
 from phasebrush.gui.trouble import Trouble
 from phasebrush.gui.view import Ways
 from phasebrush.gui.view_board import ViewBoard
+from phasebrush.gui.view_menu import ViewMenu
 from phasebrush.gui.welcome import SAMPLES, Welcome
 from phasebrush.gui.window_tools import WindowTools
 from phasebrush.look.tokens import DARK, LIGHT, Look
@@ -41,6 +42,8 @@ from phasebrush.model.workspace_file import WORKSPACE_ENDING
 from phasebrush.sample_files import default_sample, sample_recordings
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
 
     from phasebrush.core.rule import Rule
@@ -92,8 +95,11 @@ class MainWindow(QMainWindow):
         self.look = look
         self._settings = settings
         self._closed = False
+        self.followers: list[Callable[[frozenset[Result]], None]] = []
+        self._wish_steps: set[str] = set()
         self.clock = FrameClock(self._flush, self)
         self.asking = Asking(self)
+        self.view_menu = ViewMenu(self)
         self.bench = Bench()
         self.tools = WindowTools(self)
         self.actions_ = Actions(self, self.tools.slots())
@@ -149,6 +155,7 @@ class MainWindow(QMainWindow):
                 row_menu=self.asking.open_row_menu,
                 missed=self.board.catch_up,
                 seen=self._seen,
+                view_menu=self.view_menu.open,
             )
         self.docks.drawer_content.views.notes.apply_rule = self._apply_rule
         compare = self.docks.drawer_content.views.compare
@@ -173,6 +180,8 @@ class MainWindow(QMainWindow):
         if frame.changed & TITLES:
             self._show_words(snapshot)
         self.foot.show_snapshot(snapshot)
+        for follow in tuple(self.followers):
+            follow(frame.changed)
         history = self.workbench.history
         self._name_step("undo", history.undo_name)
         self._name_step("redo", history.redo_name)
@@ -180,7 +189,12 @@ class MainWindow(QMainWindow):
     def _seen(self, view: View, seen: bool) -> None:
         """Steps are worked out only while somebody looks at them."""
         if view is self.docks.drawer_content.views.steps:
-            self.workbench.want_steps(wanted=seen)
+            self.want_steps("drawer", seen)
+
+    def want_steps(self, who: str, wanted: bool) -> None:
+        """Take the wish of the drawer or of a page for the steps; one wish is enough."""
+        (self._wish_steps.add if wanted else self._wish_steps.discard)(who)
+        self.workbench.want_steps(wanted=bool(self._wish_steps))
 
     def _apply_rule(self, letter: Letter, rule: Rule) -> None:
         """Sort as the rule does, then pick whom it gives by now."""
@@ -198,6 +212,8 @@ class MainWindow(QMainWindow):
         for name in (
             "save",
             "save_as",
+            "figure",
+            "numbers",
             "cut",
             "transform",
             "suspects",

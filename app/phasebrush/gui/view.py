@@ -13,7 +13,8 @@ from phasebrush.model.stale import Result
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from PySide6.QtGui import QHideEvent, QShowEvent
+    from PySide6.QtCore import QPoint
+    from PySide6.QtGui import QContextMenuEvent, QHideEvent, QShowEvent
 
     from phasebrush.model.intents import Intent
     from phasebrush.model.results import Snapshot
@@ -46,6 +47,7 @@ class Ways:
     row_menu: Callable[[RowMenu], None] = lambda _wish: None
     missed: Callable[[View], None] = lambda _view: None
     seen: Callable[[View, bool], None] = lambda _view, _seen: None
+    view_menu: Callable[[View, QPoint], None] = lambda _view, _place: None
 
 
 class View(QWidget):
@@ -85,6 +87,11 @@ class View(QWidget):
         """Nobody looks: slower work for this view can rest."""
         super().hideEvent(event)
         self.ways.seen(self, False)
+
+    def contextMenuEvent(self, event: QContextMenuEvent) -> None:
+        """Copy or save this view alone."""
+        self.ways.view_menu(self, event.globalPos())
+        event.accept()
 
     def close_view(self) -> None:
         """Let go of everything that could call back."""

@@ -56,6 +56,8 @@ class WindowTools:
             "redo": window.workbench.redo,
             "panels": self._panels_menu,
             "drawer": window.toggle_drawer,
+            "figure": asking.figure_dialog,
+            "numbers": asking.export_dialog,
             "picture": asking.choose_picture,
             "theme": window.toggle_look,
             "keys": asking.keys,

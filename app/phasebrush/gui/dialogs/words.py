@@ -39,6 +39,8 @@ KEYS: tuple[tuple[str, str], ...] = (
     ("Ctrl + K, Ctrl + T", "cut trials, transform settings"),
     ("Ctrl + Z, Ctrl + Shift + Z", "undo, redo"),
     ("Ctrl + S, Ctrl + Shift + S", "save the workspace, under another name"),
+    ("Ctrl + G", "figure page: preview, keep, save, copy"),
+    ("Ctrl + Shift + E", "save numbers, trial lists, data, the session report"),
     ("Ctrl + P", "save a picture of the window"),
     ("Ctrl + L", "light or dark"),
     ("F1", "this page"),

@@ -48,6 +48,10 @@ from phasebrush.model.intents.opening import (
     shelve,
     take_trials,
 )
+from phasebrush.model.intents.paging import (
+    forget_page,
+    keep_page,
+)
 from phasebrush.model.intents.testing import (
     choose_test,
     draw_times,
@@ -68,7 +72,9 @@ __all__ = [
     "draw_with_seed",
     "exclude",
     "forget_named",
+    "forget_page",
     "keep_as",
+    "keep_page",
     "match_counts",
     "move_cursor",
     "move_spot",
