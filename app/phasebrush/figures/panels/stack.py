@@ -10,6 +10,7 @@ from matplotlib.ticker import FuncFormatter, MaxNLocator
 from phasebrush.core.stack_image import reduce_rows
 from phasebrush.figures.panels.panel import Panel, Place
 from phasebrush.figures.time_axis import draw_time_axis, plain
+from phasebrush.figures.words import first_that_fits
 from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
@@ -19,6 +20,8 @@ MOST_ROWS = 2000
 """Rows of the picture; more trials than that are averaged by neighbours, as on screen."""
 MOST_RUNS_WITH_EDGES = 12
 FAINT = 0.25
+LABEL_EM = 6.2
+"""Room for the name of the strip's axis, in em."""
 
 
 def titles(snapshot: Snapshot) -> tuple[str, ...]:
@@ -143,7 +146,8 @@ def _draw_strip(place: Place, snapshot: Snapshot, key: KeyValues, rows: Rows) ->
     axes.xaxis.set_major_locator(MaxNLocator(nbins=2, steps=[1, 2, 5, 10]))
     axes.xaxis.set_major_formatter(FuncFormatter(plain))
     unit = "degrees" if key.is_angle else key.unit
-    axes.set_xlabel(f"key ({unit})" if unit else "key")
+    words = (f"key ({unit})", "key") if unit else ("key",)
+    axes.set_xlabel(first_that_fits(words, style.label_pt, LABEL_EM * style.font_pt))
     for number, letter in enumerate(LETTERS):
         colour = style.look.subset(letter)
         x = 1.06 + 0.10 * number
