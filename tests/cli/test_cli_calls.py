@@ -198,7 +198,9 @@ def test_a_fault_of_the_program_is_one_line_and_not_dressed_up_as_the_persons(
     ended = here(capsys, *words)
     assert ended.status == 2
     (line,) = ended.lines
-    assert line.startswith("phasebrush: a fault of the program (ZeroDivisionError, cli/measuring.py:")
+    assert line.startswith(
+        "phasebrush: a fault of the program (ZeroDivisionError, cli/measuring.py:"
+    )
     assert "_run_measure" in line
     assert "Thornquist" not in line
     assert list(tmp_path.iterdir()) == []

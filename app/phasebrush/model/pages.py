@@ -59,6 +59,8 @@ class Page:
     tested: tuple[TestedName, ...] = ()
 
     def __post_init__(self) -> None:
+        # 8 and 8.0 are the same size, but not the same text in a recipe.
+        object.__setattr__(self, "font_pt", float(self.font_pt))
         unknown = [name for name in self.panels if name not in get_args(PanelName)]
         if unknown or not self.panels or len(set(self.panels)) != len(self.panels):
             raise ValueError(
