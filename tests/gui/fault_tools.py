@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import errno
+import io
 import os
 import tempfile
 from contextlib import contextmanager
@@ -64,16 +65,13 @@ def fail_disk(monkeypatch: pytest.MonkeyPatch, place: str, number: int) -> None:
         def full(handle, *arguments, **options):
             stream = real(handle, *arguments, **options)
 
-            class Full:
+            class Full(io.BytesIO):
                 """A stream on a full disk."""
 
-                write = flush = staticmethod(fail)
+                write = staticmethod(fail)
                 fileno = stream.fileno
 
-                def __enter__(self):
-                    return self
-
-                def __exit__(self, *_caught):
+                def close(self):
                     stream.close()
 
             return Full()

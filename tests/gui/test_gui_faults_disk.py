@@ -20,12 +20,15 @@ from fault_tools import (
     window_with_work,
 )
 from PySide6.QtCore import QSettings
+from PySide6.QtWidgets import QFileDialog
 from window_tools import settle, turn
 
 import phasebrush
+from phasebrush.cli import main
 from phasebrush.gui import application
 from phasebrush.model import intents, recovery
 from phasebrush.model.workspace_file import read_workspace
+from phasebrush.sample_files import sample_recordings
 
 APP = Path(phasebrush.__file__).parents[1]
 NAME = "work.phasebrush.json"
@@ -162,6 +165,45 @@ def test_settings_that_cannot_be_written_are_not_remembered(tmp_path, monkeypatc
     else:
         place.write_bytes(b"")
     assert application.settings() is None
+
+
+@pytest.mark.parametrize(("place", "number"), FAULTS)
+def test_a_picture_that_fails_leaves_the_earlier_one(window, tmp_path, monkeypatch, place, number):
+    target = tmp_path / "window.png"
+    target.write_bytes(b"earlier")
+    monkeypatch.setattr(QFileDialog, "getSaveFileName", lambda *_words: (str(target), ""))
+    with monkeypatch.context() as broken:
+        fail_disk(broken, place, number)
+        window.asking.choose_picture()
+    (line,) = lines(window)
+    assert line.startswith("window.png: could not be written")
+    assert target.read_bytes() == b"earlier"
+    assert not list(tmp_path.glob(".*"))
+    window.message_bar.dismiss()
+    window.asking.choose_picture()
+    assert lines(window) == []
+    assert target.read_bytes().startswith(b"\x89PNG")
+
+
+@pytest.mark.parametrize(("place", "number"), FAULTS)
+@pytest.mark.parametrize("name", ["out.npz", "out.csv"])
+def test_numbers_that_cannot_be_written_are_one_line(
+    tmp_path, monkeypatch, capsys, place, number, name
+):
+    """`write_numbers`, as the command line calls it."""
+    target = tmp_path / name
+    target.write_bytes(b"earlier")
+    words = ["measure", str(sample_recordings()[1]), "--channel", "Oz", "--freqs", "8", "16", "2"]
+    with monkeypatch.context() as broken:
+        fail_disk(broken, place, number)
+        assert main([*words, "--out", str(target)]) == 2
+    (line,) = capsys.readouterr().err.splitlines()
+    assert line == (
+        f"phasebrush: {name}: could not be written ({WORDS[number]}); choose a folder that can be "
+        "written and has room"
+    )
+    assert target.read_bytes() == b"earlier"
+    assert [path.name for path in tmp_path.iterdir()] == [name]
 
 
 REAL = """

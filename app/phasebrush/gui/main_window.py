@@ -9,7 +9,7 @@ from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QSettings, QTimer
+from PySide6.QtCore import QBuffer, QByteArray, QIODevice, QSettings, QTimer
 from PySide6.QtWidgets import (
     QApplication,
     QMainWindow,
@@ -18,6 +18,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from phasebrush.errors import InputError
 from phasebrush.gui import theme
 from phasebrush.gui.actions import Actions
 from phasebrush.gui.arrangement import Arrangement
@@ -37,6 +38,7 @@ from phasebrush.look.tokens import DARK, LIGHT, Look
 from phasebrush.model import intents
 from phasebrush.model.stale import Result
 from phasebrush.model.state import Shelved
+from phasebrush.model.swap_in import swap_in
 from phasebrush.model.work_keeper import WorkKeeper
 from phasebrush.model.workspace_file import WORKSPACE_ENDING
 from phasebrush.sample_files import default_sample, sample_recordings
@@ -315,8 +317,20 @@ class MainWindow(QMainWindow):
             self.docks.toggle_drawer()
 
     def save_picture(self, path: str) -> bool:
-        """Save what the window shows as PNG; False if it could not be written."""
-        return self.grab().save(path, "PNG")
+        """Save what the window shows as PNG; False if it could not be written.
+
+        Then a picture that was there is there still.
+        """
+        content = QByteArray()
+        buffer = QBuffer(content)
+        buffer.open(QIODevice.OpenModeFlag.WriteOnly)
+        if not self.grab().save(buffer, "PNG"):
+            return False
+        try:
+            swap_in(path, lambda stream: stream.write(content.data()))
+        except InputError:
+            return False
+        return True
 
     # -- look ---------------------------------------------------------------------------------
 
