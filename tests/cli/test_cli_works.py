@@ -102,21 +102,25 @@ def test_a_failed_recording_is_named_and_the_others_go_on(work, capsys, tmp_path
     assert [path.name for path in tmp_path.glob("*.png")] == ["page_keeper-02.png"]
 
 
-def test_a_recording_without_the_channel_is_named(work, capsys, tmp_path):
+def write_npz(file, **cut) -> str:
+    """A recording as arrays: trials x channels x samples in volts."""
     from phasebrush.core.trials import Cut
     from phasebrush.recordings import cut_trials, open_recording
 
-    file, _snapshot = work
-    trials = cut_trials(open_recording(FIF), Cut(window_s=(-0.5, 0.5), channels=("Fz", "Cz")))
+    trials = cut_trials(open_recording(FIF), Cut(window_s=(-0.75, 0.75), **cut))
     np.savez(
-        tmp_path / "two.npz", data_uv=trials.data_uv, times_s=trials.times_s,
-        sfreq_hz=trials.sfreq_hz, ch_names=np.array(trials.ch_names),
-        labels=np.array(trials.labels),
+        file, data=trials.data_uv * 1e-6, times_s=trials.times_s, sfreq_hz=trials.sfreq_hz,
+        ch_names=np.array(trials.ch_names), label=np.array(trials.labels),
     )  # fmt: skip
-    out = str(tmp_path / "summary.csv")
-    ended = here(capsys, "measure", "--workspace", file, str(tmp_path / "two.npz"), "--out", out)
-    assert_refused(ended, file="two.npz")
-    assert not Path(out).exists()
+    return str(file)
+
+
+def test_a_recording_without_the_channel_is_named(work, capsys, tmp_path):
+    two = write_npz(tmp_path / "two.npz", channels=("Fz", "Cz"))
+    out = tmp_path / "summary.csv"
+    ended = here(capsys, "measure", "--workspace", work[0], two, "--out", str(out))
+    assert_refused(ended, file="two.npz", said="Oz")
+    assert not out.exists()
 
 
 def test_folders_are_opened_up(work, capsys, tmp_path):
@@ -128,6 +132,28 @@ def test_folders_are_opened_up(work, capsys, tmp_path):
     out = tmp_path / "summary.csv"
     assert here(capsys, "measure", "--workspace", file, str(inside), "--out", str(out)).status == 0
     assert pd.read_csv(out)["recording"].unique().tolist() == ["one", "two"]
+
+
+def test_recordings_of_one_name_do_not_replace_each_other(work, capsys, tmp_path):
+    file, _snapshot = work
+    given = []
+    for folder in ("first", "second"):
+        (tmp_path / folder).mkdir()
+        given.append(str(shutil.copy(EDF, tmp_path / folder / "night.edf")))
+    out = tmp_path / "page.png"
+    ended = here(capsys, "draw", file, *given, "--page", "slide", "--out", str(out))
+    assert ended.status == 0
+    names = sorted(path.name for path in tmp_path.glob("*.png"))
+    assert names == ["page_night.png", "page_night__2_.png"]
+
+
+def test_a_recording_is_never_written_over(work, capsys, tmp_path):
+    own = write_npz(tmp_path / "own.npz")
+    was = Path(own).read_bytes()
+    ended = here(capsys, "measure", "--workspace", work[0], own, "--out", own)
+    assert ended.status == 2
+    assert Path(own).read_bytes() == was
+    assert "own.npz: belongs to the recording itself" in ended.err
 
 
 def test_a_report_is_written(work, capsys, tmp_path):

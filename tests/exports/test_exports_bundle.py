@@ -3,6 +3,10 @@
 from __future__ import annotations
 
 import json
+import os
+import shutil
+from dataclasses import replace
+from pathlib import Path
 
 import mne
 import numpy as np
@@ -65,16 +69,19 @@ def test_the_recipe_is_beside_every_table(folder, how):
 
 def test_a_recipe_names_versions_hashes_and_settings_and_no_file(snapshot, how):
     import hashlib
-    from pathlib import Path
 
     assert {"phasebrush", "numpy", "scipy", "mne", "matplotlib"} <= set(how["versions"])
     assert how["versions"]["numpy"] == np.__version__
     header = Path(snapshot.state.recording)
-    digest = hashlib.sha256()
-    for part in (header, header.with_suffix(".vmrk"), header.with_suffix(".eeg")):
+    stem = header.name.removesuffix("_eeg.vhdr")
+    digest = hashlib.sha256()  # FIPS 180-4, over header, markers, samples, table of events
+    for part in (
+        header, header.with_suffix(".vmrk"), header.with_suffix(".eeg"),
+        header.with_name(f"{stem}_events.tsv"),
+    ):  # fmt: skip
         digest.update(part.read_bytes())
-    together = digest.hexdigest()
-    assert len(how["recording_sha256"]) == len(together) == 64
+    assert how["recording_sha256"] == digest.hexdigest()
+    assert len(how["workspace_sha256"]) == 64
     assert how["settings"]["state"]["channel"] == "Oz"
     assert len(how["settings"]["a"]["trials"]) == 80
     text = json.dumps(how)
@@ -83,8 +90,6 @@ def test_a_recipe_names_versions_hashes_and_settings_and_no_file(snapshot, how):
 
 
 def test_another_pick_is_another_recipe(snapshot, how):
-    from dataclasses import replace
-
     from phasebrush.model.subset import NOBODY
 
     other = replace(snapshot, state=replace(snapshot.state, b=NOBODY))
@@ -118,6 +123,37 @@ def test_a_failure_leaves_what_was_there(snapshot, how, tmp_path, monkeypatch):
     assert list(tmp_path.iterdir()) == [old]
 
 
+def test_a_file_that_cannot_be_moved_takes_the_others_back(snapshot, how, tmp_path, monkeypatch):
+    """As where a table is open in a program that locks it: the second of four cannot be moved."""
+    old = tmp_path / "x_spot.csv"
+    old.write_text("before")
+    real, last = os.replace, "x_trials.csv"
+
+    def locked(source, target):
+        if Path(target).name == last and Path(target).parent == tmp_path:
+            raise PermissionError(13, "Permission denied")
+        real(source, target)
+
+    monkeypatch.setattr("phasebrush.exports.places.os.replace", locked)
+    with pytest.raises(InputError, match="Permission denied"):
+        export(snapshot, ("spot", "trials"), tmp_path, "x", how)
+    assert old.read_text() == "before"
+    assert list(tmp_path.iterdir()) == [old]
+
+
+def test_files_of_the_recording_are_never_written_over(snapshot, how, tmp_path):
+    recording = Path(snapshot.state.recording)
+    for file in recording.parent.iterdir():
+        shutil.copy(file, tmp_path)
+    state = replace(snapshot.state, recording=str(tmp_path / recording.name))
+    stem = recording.name.removesuffix("_eeg.vhdr")
+    events = tmp_path / f"{stem}_events.tsv"
+    was = events.read_bytes()
+    with pytest.raises(InputError, match="belongs to the recording itself"):
+        export(replace(snapshot, state=state), ("events",), tmp_path, stem, how)
+    assert events.read_bytes() == was
+
+
 def test_progress_is_told(snapshot, how, tmp_path):
     told = []
     export(snapshot, ("trials", "spot"), tmp_path, "x", how, report=told.append)
@@ -126,8 +162,6 @@ def test_progress_is_told(snapshot, how, tmp_path):
 
 
 def test_what_cannot_be_had_is_said(snapshot, how, tmp_path):
-    from dataclasses import replace
-
     bare = replace(snapshot, compared={})
     written = export(bare, ("clusters", "spot"), tmp_path, "x", how)
     assert written.left_out == ("no clusters: no test of A against B belongs to what is on screen",)

@@ -140,7 +140,9 @@ def test_events_follow_bids(snapshot):
     assert "\t\t" not in text
     assert "," not in head
     assert frame["subset"].value_counts().to_dict() == {"A": 80, "B": 80}
-    assert set(described) >= {"trial_type", "subset", "sample"}
+    own = set(head.split("\t")) - {"onset", "duration"}
+    assert set(described) == own
+    assert all(entry["Description"] for entry in described.values())
     assert len(lines) == len(snapshot.trials)
 
 

@@ -6,7 +6,7 @@ import io
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from phasebrush.cli.works import Given, beside, each_recording, given_recordings
+from phasebrush.cli.works import Given, as_name, beside, each_recording, given_recordings
 from phasebrush.errors import InputError
 
 if TYPE_CHECKING:
@@ -81,10 +81,12 @@ def _write_summary(lines: list[Line], out: Path) -> None:
 def _write_arrays(snapshot: Snapshot, out: Path) -> None:
     import numpy as np
 
+    from phasebrush.exports.places import spare_recording
     from phasebrush.exports.recipe import recipe
     from phasebrush.exports.result_tables import maps_arrays
     from phasebrush.model.swap_in import swap_in
 
+    spare_recording((out,), snapshot.state.recording)
     stream = io.BytesIO()
     np.savez_compressed(stream, allow_pickle=False, **maps_arrays(snapshot, recipe(snapshot)))
     swap_in(out, lambda target: target.write(stream.getvalue()))
@@ -94,6 +96,6 @@ def _write_all(snapshot: Snapshot, folder: Path, given: Given) -> None:
     from phasebrush.exports.bundle import export
     from phasebrush.exports.recipe import recipe
 
-    stem = beside(Path("x"), Given(None, _title(snapshot, given)), several=True).name[2:]
+    stem = as_name(_title(snapshot, given))
     parts: tuple[Part, ...] = ("trials", "events", "spot", "average", "traces", "maps")
     export(snapshot, parts, folder, stem or "work", recipe(snapshot))

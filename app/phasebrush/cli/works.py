@@ -70,7 +70,26 @@ def given_recordings(paths: list[str]) -> list[Given]:
         else:
             entities = entities_of(path)
             found.append(Given(path, title_of(entities) if entities else file_stem(path)))
-    return found
+    return _told_apart(found)
+
+
+def _told_apart(found: list[Given]) -> list[Given]:
+    """Number titles that come again, so that no recording's files replace another's."""
+    taken: set[str] = set()
+    apart = []
+    for given in found:
+        title, count = given.title, 1
+        while as_name(title).casefold() in taken:
+            count += 1
+            title = f"{given.title} ({count})"
+        taken.add(as_name(title).casefold())
+        apart.append(Given(given.path, title))
+    return apart
+
+
+def as_name(title: str) -> str:
+    """Give a title as a part of a file's name."""
+    return "".join(x if x.isalnum() or x in "-_." else "_" for x in title)
 
 
 def page_named(workspace: str, name: str) -> Page:
@@ -138,8 +157,7 @@ def beside(out: Path, given: Given, *, several: bool) -> Path:
     """Give the file of one recording: ``page.png`` becomes ``page_TITLE.png`` among several."""
     if not several:
         return out
-    title = "".join(x if x.isalnum() or x in "-_." else "_" for x in given.title)
-    return out.with_name(f"{out.stem}_{title}{out.suffix}")
+    return out.with_name(f"{out.stem}_{as_name(given.title)}{out.suffix}")
 
 
 def _tell_progress(done: int, whole: int, title: str) -> None:

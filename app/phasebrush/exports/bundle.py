@@ -14,6 +14,7 @@ from typing import TYPE_CHECKING, Any, Literal
 import numpy as np
 
 from phasebrush.errors import InputError, JobStopped
+from phasebrush.exports.places import move_in, spare_recording
 from phasebrush.exports.result_tables import (
     average_table,
     clusters_table,
@@ -105,7 +106,8 @@ def export(
     Raises
     ------
     InputError
-        If the folder or a file cannot be written, or there is nothing to write.
+        If the folder or a file cannot be written, a file of the recording is in its place, or
+        there is nothing to write.
     JobStopped
         If ``stopped`` said True.
     """
@@ -115,6 +117,7 @@ def export(
         raise InputError("there is nothing to write", "; ".join(left_out) or "choose a part", place)
     files = {f"{stem}_{name}": write for name, write in wanted.items()}
     _check_places(place, files)
+    spare_recording((place / name for name in files), snapshot.state.recording)
     look_up = stopped or (lambda: False)
     try:
         with tempfile.TemporaryDirectory(dir=place, prefix=".writing-") as drafts:
@@ -124,8 +127,7 @@ def export(
                 if report is not None:
                     report((done + 1) / (len(files) + 1))
             _stop_if(look_up)
-            for name in files:
-                os.replace(Path(drafts) / name, place / name)  # noqa: PTH105 - over an existing file on Windows too
+            move_in(Path(drafts), place, tuple(files))
     except OSError as fault:
         raise InputError(
             f"could not be written ({fault.strerror or 'no reason given'})",

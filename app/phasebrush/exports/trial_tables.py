@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from phasebrush.exports.table import Column, Table
+from phasebrush.exports.table import SAFE_CELLS, Column, Table
 from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
@@ -143,7 +143,8 @@ def events_table(snapshot: Snapshot) -> tuple[Table, dict[str, object]]:
     }  # fmt: skip
     described: dict[str, object] = {
         "sample": {"Description": "Onset in samples of the recording, counted from 0"},
-        "trial_type": {"Description": "Label of the event"},
+        "response_time": {"Description": "From the event to the response", "Units": "s"},
+        "trial_type": {"Description": f"Label of the event; {SAFE_CELLS}"},
         "subset": {"Description": "Subset the trial was picked for", "Levels": levels},
     }
     return table, described
