@@ -93,6 +93,32 @@ def test_everything_is_in_it(reader, snapshot):
     assert f"{snapshot.readout.of['A'].itc:.3g}" in reader.text
 
 
+def test_clusters_that_weigh_are_listed_and_the_others_counted(reader, snapshot):
+    from phasebrush.exports.report_numbers import SHOWN_P
+
+    clusters = snapshot.compared["ITC"].comparison.clusters
+    left = sum(cluster.p > SHOWN_P for cluster in clusters)
+    assert 0 < left < len(clusters)
+    assert f"{len(clusters)} clusters, {left} of them with p above 0.1 not listed" in reader.text
+    listed = [cluster for cluster in clusters if cluster.p <= SHOWN_P]
+    assert f"{listed[0].start_s:.3g} to {listed[0].end_s:.3g}".replace("-", "−") in reader.text
+    # Maris & Oostenveld 2007: the p is of the map, not of a cluster's edges.
+    assert "not for the exact edges of the cluster" in reader.text
+
+
+def test_without_tests_the_report_says_so(snapshot, page):
+    bare = replace(snapshot, compared={})
+    assert "No test was made." in read(report_bytes(bare, page, recipe(snapshot))).text
+
+
+def test_the_recipe_can_be_taken_out_as_json_and_stays_short(reader, snapshot):
+    import json
+
+    (text,) = [words for words in reader.words if "recording_sha256" in words]
+    assert json.loads(text) == recipe(snapshot)
+    assert len(text.splitlines()) < 40
+
+
 def test_notes_and_labels_are_words_and_never_markup(snapshot, page):
     evil = '<script>alert("x")</script> & <img src=http://lost.example onerror=x>'
     state = replace(snapshot.state, notes=(Note(snapshot.state.recording, evil),))

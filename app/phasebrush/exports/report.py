@@ -3,13 +3,12 @@
 from __future__ import annotations
 
 import base64
-import html
-import json
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from phasebrush.exports.result_tables import SPOT_COLUMNS, clusters_table, spot_rows
+from phasebrush.exports.markup import html_table, paragraphs, safe, section
+from phasebrush.exports.report_numbers import comparisons_part, recipe_text, spot_part
 from phasebrush.figures.caption import CAUTION, caption
 from phasebrush.figures.save import page_bytes
 from phasebrush.look.tokens import LIGHT
@@ -19,7 +18,7 @@ from phasebrush.model.pages import Page
 from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Mapping, Sequence
+    from collections.abc import Callable, Mapping
 
     from phasebrush.core.trials import Trials
     from phasebrush.model.results import Snapshot
@@ -43,7 +42,8 @@ figcaption {{ font-size: .85rem; margin-top: .5rem; }}
 pre {{ white-space: pre-wrap; overflow-wrap: anywhere; font-size: .75rem; color: {LIGHT.muted}; }}
 .caution {{ border-left: 3px solid {LIGHT.caution}; padding-left: .75rem; }}
 @media print {{ body {{ max-width: none; padding: 0; font-size: 10pt; }}
-  h2, figure, table {{ break-inside: avoid; }} }}
+  figure, tr {{ break-inside: avoid; }} h2, h2 + p {{ break-after: avoid; }}
+  .scroll {{ overflow: visible; }} img {{ max-height: 21cm; }} }}
 """
 
 
@@ -82,55 +82,27 @@ def report_bytes(
     if trials is None:
         raise ValueError("no trials are on the table")
     title = f"Session report: {trials.source.title}"
-    program = _safe(f"Phasebrush {recipe['versions']['phasebrush']}")
-    channel = _safe(snapshot.state.channel)
-    steps = json.dumps(dict(recipe), indent=1, sort_keys=True)
+    program = safe(f"Phasebrush {recipe['versions']['phasebrush']}")
+    channel = safe(snapshot.state.channel)
     parts = [
-        f"<h1>{_safe(title)}</h1>",
+        f"<h1>{safe(title)}</h1>",
         f'<p class="muted">{program}, channel {channel}</p>',
-        f'<p class="caution">{_safe(CAUTION)}</p>',
-        _section("Trials", _trials(snapshot, trials)),
-        _section("Figure", _figure(snapshot, page, stopped)),
-        _section("At the spot", _spot(snapshot)),
-        _section("Tests of A against B", _clusters(snapshot)),
-        _section("Methods", _paragraphs(methods_text(snapshot))),
-        _section("Notes", _notes(snapshot)),
-        _section("Recipe", f"<pre>{_safe(steps)}</pre>"),
+        f'<p class="caution">{safe(CAUTION)}</p>',
+        section("Trials", _trials(snapshot, trials)),
+        section("Figure", _figure(snapshot, page, stopped)),
+        section("At the spot", spot_part(snapshot)),
+        section("Tests of A against B", comparisons_part(snapshot)),
+        section("Methods", paragraphs(methods_text(snapshot))),
+        section("Notes", _notes(snapshot)),
+        section("Recipe", f"<pre>{safe(recipe_text(recipe))}</pre>"),
     ]
     body = "\n".join(parts)
     return (
         '<!DOCTYPE html>\n<html lang="en">\n<head>\n<meta charset="utf-8">\n'
         '<meta name="viewport" content="width=device-width, initial-scale=1">\n'
-        f"<title>{_safe(title)}</title>\n<style>{STYLE}</style>\n</head>\n<body>\n{body}\n"
+        f"<title>{safe(title)}</title>\n<style>{STYLE}</style>\n</head>\n<body>\n{body}\n"
         "</body>\n</html>\n"
     ).encode()
-
-
-def _safe(text: str) -> str:
-    return html.escape(text, quote=True)
-
-
-def _section(title: str, content: str) -> str:
-    return f"<h2>{_safe(title)}</h2>\n{content}"
-
-
-def _paragraphs(text: str) -> str:
-    blocks = [block.strip() for block in text.split("\n\n") if block.strip()]
-    return "\n".join("<p>" + _safe(block).replace("\n", "<br>\n") + "</p>" for block in blocks)
-
-
-def _table(heads: Sequence[str], rows: Sequence[Sequence[str]], *, words: int = 1) -> str:
-    """A table whose first ``words`` columns are words, all others numbers."""
-
-    def cells(tag: str, line: Sequence[str]) -> str:
-        said = []
-        for place, cell in enumerate(line):
-            kind = "" if place < words else ' class="number"'
-            said.append(f"<{tag}{kind}>{_safe(cell)}</{tag}>")
-        return "<tr>" + "".join(said) + "</tr>"
-
-    lines = [cells("th", heads), *(cells("td", row) for row in rows)]
-    return '<div class="scroll"><table>\n' + "\n".join(lines) + "\n</table></div>"
 
 
 def _trials(snapshot: Snapshot, trials: Trials) -> str:
@@ -155,7 +127,7 @@ def _trials(snapshot: Snapshot, trials: Trials) -> str:
         out = [f"{trials.onsets_s[i]:.3f} s ({trials.labels[i]})" for i in np.flatnonzero(excluded)]
         rows.append(("excluded, by onset", listed(out)))
     rows += [("note of the reader", warning) for warning in trials.warnings]
-    return _table(("what", ""), rows, words=2)
+    return html_table((), rows, words=2)
 
 
 def _labels(trials: Trials, mask: np.ndarray[Any, np.dtype[np.bool_]]) -> str:
@@ -165,52 +137,15 @@ def _labels(trials: Trials, mask: np.ndarray[Any, np.dtype[np.bool_]]) -> str:
 
 def _figure(snapshot: Snapshot, page: Page, stopped: Callable[[], bool] | None) -> str:
     picture = base64.b64encode(page_bytes(snapshot, page, ".png", stopped=stopped)).decode("ascii")
-    words = _safe(caption(snapshot, page))
+    words = safe(caption(snapshot, page))
     return f'<figure><img alt="{words}" src="data:image/png;base64,{picture}"></figure>'
-
-
-def _spot(snapshot: Snapshot) -> str:
-    rows, readout = spot_rows(snapshot), snapshot.readout
-    if readout is None or not rows:
-        return "<p>The spot is too near the end of the data: nothing is read there.</p>"
-    heads = ["set", "n", *(kind.replace("_", " ") + _unit(unit) for kind, unit, _w in SPOT_COLUMNS)]
-    lines = [
-        [name, str(row.n), *(number(getattr(row, kind)) for kind, _unit, _w in SPOT_COLUMNS)]
-        for name, row in rows
-    ]
-    words = f"Read at {number(readout.freq_hz)} Hz, {number(readout.time_s)} s."
-    said = "".join(f"<p>{_safe(line)}.</p>" for line in snapshot.circles.words)
-    return f"<p>{_safe(words)}</p>{_table(heads, lines)}{said}"
-
-
-def _unit(unit: str) -> str:
-    return f" ({unit})" if unit else ""
-
-
-def _clusters(snapshot: Snapshot) -> str:
-    table = clusters_table(snapshot)
-    if table is None:
-        return "<p>No test was made.</p>"
-    cells = [column.cells() for column in table.columns]
-    rows = list(zip(*cells, strict=True))
-    if not rows:
-        return "<p>The test found no cluster.</p>"
-    heads = [column.name.replace("_", " ") for column in table.columns]
-    return _table(heads, [[_short(cell) for cell in row] for row in rows], words=2)
-
-
-def _short(cell: str) -> str:
-    try:
-        return number(float(cell)) if cell else "–"
-    except ValueError:
-        return cell
 
 
 def _notes(snapshot: Snapshot) -> str:
     state = snapshot.state
-    said = [_paragraphs(state.note(state.recording))]
+    said = [paragraphs(state.note(state.recording))]
     said += [
-        _paragraphs(f"{named.name}: {named.note}")
+        paragraphs(f"{named.name}: {named.note}")
         for named in state.named
         if named.recording == state.recording and named.note
     ]
