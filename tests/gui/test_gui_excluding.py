@@ -131,7 +131,7 @@ class TestTheMenuOfARow:
         menu = self.ask(view, 30)
         assert [line.text() for line in menu.actions() if line.text()] == [
             "exclude this trial (E)", "exclude all 18 of A", "exclude all 16 of B",
-            "suggest trials to exclude …",
+            "suggest trials to exclude …", "copy this view", "save this view …",
         ]  # fmt: skip
         self.choose(window, menu, "exclude this trial")
         assert excluded(window) == [trial]

@@ -138,6 +138,30 @@ def test_a_rule_is_applied_to_what_is_sorted_now(window, view):
     assert members(window, "A") == sorted(ranked[-10:].tolist())
 
 
+def test_a_rule_of_another_key_is_applied_in_one_step(open_window, trials):
+    """The real window: its button sorts, waits for the key, picks; undo takes it all back."""
+    window = open_window(trials)
+    window.docks.drawer_content.open_tab("notes")
+    window.toggle_drawer()
+    window.workbench.do(intents.pick_parts({"A": "highest-third"}))
+    window.workbench.do(intents.keep_as("A", "strong"))
+    settle(window)
+    strong = window.workbench.state.a
+    window.workbench.do(intents.clear())
+    window.workbench.do(intents.sort_by(SortKey(kind="column", column="brightness")))
+    settle(window)
+    before = window.workbench.state
+    panel = window.docks.drawer_content.views.notes
+    choose(panel, 0)
+    strike(button(panel, "apply rule to ■ A"))
+    settle(window)
+    assert window.workbench.state.a == strong
+    assert window.workbench.history.undo_name == "apply the rule to A"
+    window.workbench.undo()
+    settle(window)
+    assert window.workbench.state == before
+
+
 def test_the_window_may_take_the_rule_over(window, view):
     pick_parts(window)
     keep(window, view, "A", "strong")

@@ -168,7 +168,7 @@ def test_named_subsets_say_whether_their_rule_still_holds(bench):
     bench.do(intents.recall("B", "strong"))
     np.testing.assert_array_equal(bench.state.b.mask, kept.mask)
     rule_now = bench.state.named[0].members.rule
-    bench.do(intents.prepare_rule(rule_now))
+    bench.do(intents.apply_rule("A", rule_now))
     bench.flush()
     bench.do(intents.apply_rule("A", rule_now))
     np.testing.assert_array_equal(bench.state.a.mask, kept.mask)

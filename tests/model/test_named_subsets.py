@@ -275,7 +275,7 @@ class TestWhetherTheRuleStillHolds:
 
 
 class TestApplyingARule:
-    def test_it_gives_the_same_trials_after_its_key_was_prepared(self, bench):
+    def test_it_gives_the_same_trials_in_one_step(self, bench):
         bench.do(intents.sort_by(SortKey("spot-power")))
         bench.flush()
         bench.do(intents.pick_parts({"A": "highest-third"}))
@@ -284,27 +284,44 @@ class TestApplyingARule:
         bench.do(intents.sort_by(SortKey("response-time")))
         bench.do(intents.move_spot(Spot(4, 7, 0.0, 0.1)))
         bench.flush()
-        bench.do(intents.prepare_rule(rule))
+        before = bench.state
+        twice = intents.apply_rule("B", rule, gesture=7)
+        bench.do(twice)
+        assert bench.state.b.n == 0  # its key is not worked out yet
         bench.flush()
-        bench.do(intents.apply_rule("B", rule))
+        bench.do(twice)
+        bench.end_gesture()
         np.testing.assert_array_equal(bench.state.b.mask, expected)
         assert bench.state.b.rule == rule
+        assert bench.history.undo_name == "apply the rule to B"
+        bench.undo()
+        assert bench.state == before
+
+    def test_a_rule_that_does_not_read_at_the_spot_does_not_move_it(self, bench):
+        bench.do(intents.pick_parts({"A": "highest-third"}))
+        rule = bench.state.a.rule
+        there = Spot(4, 7, 0.0, 0.1)
+        bench.do(intents.move_spot(there))
+        bench.flush()
+        bench.do(intents.apply_rule("B", rule))
+        assert bench.state.spot == there
+        assert bench.state.b == bench.state.a
 
     def test_a_rule_by_labels_needs_no_key_and_moves_nothing(self, bench):
         rule = Rule(RuleKind.LABELS, labels=("white",))
         before = bench.state
-        assert intents.prepare_rule(rule).change(before, bench.snapshot) == before
         bench.do(intents.apply_rule("A", rule))
+        assert replace(bench.state, a=before.a) == before
         assert np.flatnonzero(bench.state.a.mask).tolist() == list(range(0, N, 3))
 
-    def test_it_is_not_applied_to_another_key(self, bench):
+    def test_it_sorts_first_and_picks_nobody_by_another_key(self, bench):
         bench.do(intents.pick_parts({"A": "highest-third"}))
         rule = bench.state.a.rule
         bench.do(intents.sort_by(SortKey("response-time")))
         bench.flush()
-        state = bench.state
         bench.do(intents.apply_rule("B", rule))
-        assert bench.state is state
+        assert bench.state.key == rule.key
+        assert bench.state.b.n == 0
 
     def test_it_is_not_applied_to_another_channel_under_the_first_ones_name(self, bench):
         bench.do(intents.pick_parts({"A": "highest-third"}))

@@ -12,7 +12,7 @@ from phasebrush.exports.report_numbers import comparisons_part, recipe_text, spo
 from phasebrush.figures.caption import CAUTION, caption
 from phasebrush.figures.save import page_bytes
 from phasebrush.look.tokens import LIGHT
-from phasebrush.model.methods.wording import counted, listed, number, picked_by, span
+from phasebrush.model.methods.wording import chosen_how, counted, listed, number, span
 from phasebrush.model.methods_text import methods_text
 from phasebrush.model.pages import Page
 from phasebrush.model.state import LETTERS
@@ -121,7 +121,7 @@ def _trials(snapshot: Snapshot, trials: Trials) -> str:
     ]
     for letter in LETTERS:
         subset = state.subset(letter)
-        words = f"{counted(subset.n, 'trial')}, {picked_by(subset.rule)}" if subset.n else "empty"
+        words = f"{counted(subset.n, 'trial')}, {chosen_how(subset)}" if subset.n else "empty"
         rows.append((letter, words))
     if excluded.any():
         out = [f"{trials.onsets_s[i]:.3f} s ({trials.labels[i]})" for i in np.flatnonzero(excluded)]

@@ -8,11 +8,11 @@ from phasebrush.figures.needs import TRACES
 from phasebrush.figures.panels.steps import key_words
 from phasebrush.model.methods.wording import (
     band,
+    chosen_how,
     counted,
     listed,
     number,
     one_line,
-    picked_by,
     span,
 )
 from phasebrush.model.stale import Result
@@ -82,7 +82,7 @@ def _subsets(snapshot: Snapshot) -> list[str]:
     for letter in LETTERS:
         subset = snapshot.state.subset(letter)
         if subset.n:
-            said.append(f"{letter}: {counted(subset.n, 'trial')}, {picked_by(subset.rule)}.")
+            said.append(f"{letter}: {counted(subset.n, 'trial')}, {chosen_how(subset)}.")
     return said
 
 

@@ -29,7 +29,7 @@ from phasebrush.gui.foot import Foot
 from phasebrush.gui.frame_clock import FrameClock
 from phasebrush.gui.message_bar import MessageBar
 from phasebrush.gui.trouble import Trouble
-from phasebrush.gui.view import Ways
+from phasebrush.gui.view import View, Ways
 from phasebrush.gui.view_board import ViewBoard
 from phasebrush.gui.view_menu import ViewMenu
 from phasebrush.gui.welcome import SAMPLES, Welcome
@@ -49,7 +49,6 @@ if TYPE_CHECKING:
     from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QKeyEvent, QResizeEvent
 
     from phasebrush.core.rule import Rule
-    from phasebrush.gui.view import View
     from phasebrush.model.recovery import Offer, Recovery
     from phasebrush.model.results import Snapshot
     from phasebrush.model.state import Letter
@@ -199,11 +198,17 @@ class MainWindow(QMainWindow):
         self.workbench.want_steps(wanted=bool(self._wish_steps))
 
     def _apply_rule(self, letter: Letter, rule: Rule) -> None:
-        """Sort as the rule does, then pick whom it gives by now."""
-        here = replace(rule, channel=self.workbench.state.channel) if rule.key else rule
-        self.workbench.do(intents.prepare_rule(here))
+        """Sort as the rule does, then pick whom it gives by now: one step for undo."""
+        workbench = self.workbench
+        if rule.key is not None and workbench.snapshot.outdated & {Result.CHANNEL, Result.KEY}:
+            self.message_bar.say("the channel is still being transformed; apply the rule after it")
+            return
+        here = replace(rule, channel=workbench.state.channel) if rule.key else rule
+        intent = intents.apply_rule(letter, here, gesture=View.new_gesture())
+        workbench.do(intent)
         self.clock.flush_now()
-        self.workbench.do(intents.apply_rule(letter, here))
+        workbench.do(intent)
+        workbench.end_gesture()
 
     def _show_words(self, snapshot: Snapshot) -> None:
         self.docks.show_titles(snapshot)

@@ -5,6 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, ClassVar
 
+from PySide6.QtCore import Qt
+from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import QWidget
 
 from phasebrush.look.tokens import LIGHT, Look
@@ -89,8 +91,9 @@ class View(QWidget):
         self.ways.seen(self, False)
 
     def contextMenuEvent(self, event: QContextMenuEvent) -> None:
-        """Copy or save this view alone."""
-        self.ways.view_menu(self, event.globalPos())
+        """Copy or save this view alone; not in the middle of a drag."""
+        if not QGuiApplication.mouseButtons() & Qt.MouseButton.LeftButton:
+            self.ways.view_menu(self, event.globalPos())
         event.accept()
 
     def close_view(self) -> None:

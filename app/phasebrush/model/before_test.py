@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from phasebrush.core.comparison import FEW_TRIALS, unequal_counts
-from phasebrush.model.methods.wording import counted, listed, picked_by, span
+from phasebrush.model.methods.wording import chosen_how, counted, listed, span
 from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
@@ -96,7 +96,7 @@ def _circular(snapshot: Snapshot) -> Iterator[str]:
         where = "inside the hatched part of the maps"
         if state.tested == "average":
             where = f"from {span(found.start_s, found.end_s, 's')}"
-        how = picked_by(state.subset(letter).rule)
+        how = chosen_how(state.subset(letter))
         yield f"{letter} was picked by {how}: what is found {where} follows from the pick"
     if state.tested == "power" and snapshot.circles.in_baseline:
         who = listed(snapshot.circles.in_baseline)

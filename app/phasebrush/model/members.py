@@ -26,10 +26,17 @@ class Members:
         Onset sample at the recording's own rate, and label.
     rule : Rule or None
         How they were picked; None for a pick by hand.
+    lost : int
+        How many of the trials that were picked had been excluded since.
     """
 
     who: frozenset[Identity] = frozenset()
     rule: Rule | None = None
+    lost: int = 0
+
+    def __post_init__(self) -> None:
+        if self.lost < 0:
+            raise ValueError(f"{self.lost} trials lost; give 0 or more")
 
 
 def members_of(subset: Subset, trials: Trials) -> Members:
@@ -38,7 +45,7 @@ def members_of(subset: Subset, trials: Trials) -> Members:
         return Members()
     picked = np.flatnonzero(subset.mask).tolist()
     who = frozenset((int(trials.onset_samples[i]), trials.labels[i]) for i in picked)
-    return Members(who, subset.rule)
+    return Members(who, subset.rule, subset.lost)
 
 
 def found_excluded(members: Members, trials: Trials) -> Subset:
@@ -53,4 +60,4 @@ def found_again(members: Members, trials: Trials) -> Subset:
         return NOBODY
     identities = zip(trials.onset_samples.tolist(), trials.labels, strict=True)
     mask = np.fromiter((who in members.who for who in identities), bool, count=len(trials))
-    return Subset(mask, members.rule) if mask.any() else NOBODY
+    return Subset(mask, members.rule, members.lost) if mask.any() else NOBODY

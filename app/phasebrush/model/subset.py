@@ -25,10 +25,13 @@ class Subset:
         True for the picked trials; of length 0 while nothing was ever picked.
     rule : Rule or None
         How they were picked; None for a pick by hand.
+    lost : int
+        How many of the trials that were picked have been excluded since.
     """
 
     mask: NDArray[np.bool_] = field(default_factory=lambda: np.zeros(0, dtype=bool))
     rule: Rule | None = None
+    lost: int = 0
 
     def __post_init__(self) -> None:
         self.mask.flags.writeable = False
@@ -36,10 +39,11 @@ class Subset:
     def __eq__(self, other: object) -> bool:
         if not isinstance(other, Subset):
             return NotImplemented
-        return self.rule == other.rule and np.array_equal(self.mask, other.mask)
+        same = self.rule == other.rule and self.lost == other.lost
+        return same and np.array_equal(self.mask, other.mask)
 
     def __hash__(self) -> int:
-        return hash((self.rule, self.mask.tobytes()))
+        return hash((self.rule, self.lost, self.mask.tobytes()))
 
     @property
     def n(self) -> int:

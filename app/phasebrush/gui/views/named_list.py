@@ -8,9 +8,9 @@ from PySide6.QtCore import QItemSelectionModel, QSignalBlocker, Qt
 from PySide6.QtGui import QStandardItem, QStandardItemModel
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QLineEdit, QTreeView, QWidget
 
-from phasebrush.core.rule import rule_words
 from phasebrush.gui import theme
 from phasebrush.gui.views.drawer_parts import plain_tip
+from phasebrush.model.methods.wording import chosen_how
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -26,8 +26,7 @@ LONGEST_NAME = 80
 
 def rule_of_named(named: Named) -> str:
     """How a named subset was picked, in words."""
-    rule = named.members.rule
-    return rule_words(rule) if rule is not None else "picked by hand"
+    return chosen_how(named.members)
 
 
 class NamedList(QTreeView):

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
@@ -40,13 +39,7 @@ MARKS = {"A": "■ A", "B": "● B"}
 
 def note_for(about: About, text: str) -> Intent:
     """Write a note where it belongs, also when another recording is open by now."""
-    write = intents.write_note(text, about.name)
-
-    def change(state: State, snapshot: Snapshot) -> State:
-        there = write.change(replace(state, recording=about.recording), snapshot)
-        return replace(there, recording=state.recording)
-
-    return replace(write, change=change)
+    return intents.write_note(text, about.name, recording=about.recording)
 
 
 class NotesPanel(View):
@@ -230,7 +223,6 @@ class NotesPanel(View):
         if self.apply_rule is not None:
             self.apply_rule(letter, rule)
         else:
-            self.ways.do(intents.prepare_rule(rule))
             self.ways.do(intents.apply_rule(letter, rule))
 
     def _forgotten(self) -> None:

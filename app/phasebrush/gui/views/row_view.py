@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QContextMenuEvent
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
 from phasebrush.gui.brush import BrushGesture, Picked
@@ -110,6 +111,13 @@ class RowView(View):
         mask = np.zeros(len(self._trial_of_row), dtype=bool)
         mask[self._trial_of_row[row]] = True
         self.ways.do(exclude(mask, back=row < self._n_excluded))
+
+    def contextMenuEvent(self, event: QContextMenuEvent) -> None:
+        """A right press has brought the menu of its row already; the menu key brings the view's."""
+        if event.reason() == QContextMenuEvent.Reason.Mouse:
+            event.accept()
+        else:
+            super().contextMenuEvent(event)
 
     def _ask_menu(self, pointer: Pointer) -> None:
         """A right click: exclude this trial, A or B, or take trials back."""

@@ -8,11 +8,11 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLabel, QPushButton, QVBoxLayout, QWidget
 
 from phasebrush.core.comparison import FEW_TRIALS, unequal_counts
-from phasebrush.core.rule import rule_words
 from phasebrush.gui import theme
 from phasebrush.gui.view import View
 from phasebrush.gui.words import ElidedLabel
 from phasebrush.model import intents
+from phasebrush.model.methods.wording import chosen_how
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS, Letter
 
@@ -28,7 +28,7 @@ def subset_words(subset: Subset) -> str:
     """How a subset came about, in words."""
     if not subset.n:
         return "no trial yet"
-    return rule_words(subset.rule) if subset.rule is not None else "picked by hand"
+    return chosen_how(subset)
 
 
 class _Card(QWidget):

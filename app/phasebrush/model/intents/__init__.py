@@ -25,7 +25,6 @@ from phasebrush.model.intents.keeping import (
     apply_rule,
     forget_named,
     keep_as,
-    prepare_rule,
     recall,
     write_note,
 )
@@ -85,7 +84,6 @@ __all__ = [
     "pick_range",
     "pick_sector",
     "pick_trials",
-    "prepare_rule",
     "recall",
     "rest_to_b",
     "rule_of",

@@ -30,7 +30,8 @@ KEY_FIELDS = ("recording", "cut", "channel", "transform", "key", "excluded", "de
 DIAL_FIELDS = ("recording", "cut", "channel", "transform", "spot")
 
 
-def _with_subset(state: State, letter: Letter, subset: Subset) -> State:
+def with_subset(state: State, letter: Letter, subset: Subset) -> State:
+    """Put a subset in place of A or B."""
     return replace(state, a=subset) if letter == "A" else replace(state, b=subset)
 
 
@@ -47,7 +48,7 @@ def combined(
         mask = before & mask
     mask = mask & ~state.excluded.mask_of(len(mask))
     kept = rule if how == "replace" else None
-    return _with_subset(state, letter, Subset(mask, kept) if mask.any() else NOBODY)
+    return with_subset(state, letter, Subset(mask, kept) if mask.any() else NOBODY)
 
 
 def used_trials(state: State, n_trials: int) -> NDArray[np.bool_]:
@@ -263,7 +264,7 @@ def match_counts(seed: int = 1) -> Intent:
             return state
         larger: Letter = "A" if sizes["A"] > sizes["B"] else "B"
         mask = pick_matched(state.subset(larger).mask_of(n_trials), min(sizes.values()), seed)
-        return _with_subset(state, larger, Subset(mask))
+        return with_subset(state, larger, Subset(mask))
 
     return Intent("match counts", change)
 
@@ -273,7 +274,7 @@ def clear(letters: tuple[Letter, ...] = ("A", "B")) -> Intent:
 
     def change(state: State, _snapshot: Snapshot) -> State:
         for letter in letters:
-            state = _with_subset(state, letter, NOBODY)
+            state = with_subset(state, letter, NOBODY)
         return state
 
     return Intent(f"clear {' and '.join(letters)}", change)
@@ -297,11 +298,12 @@ def exclude(mask: NDArray[np.bool_], *, back: bool = False) -> Intent:
             return state  # an average of nobody: at least one trial stays
         state = replace(state, excluded=Subset(after) if after.any() else NOBODY)
         for letter in LETTERS:
-            kept = state.subset(letter).mask_of(n_trials) & ~after
-            rule = state.subset(letter).rule
-            subset = Subset(kept, rule) if kept.any() else NOBODY
+            picked = state.subset(letter)
+            kept = picked.mask_of(n_trials) & ~after
+            lost = picked.lost + picked.n - int(np.count_nonzero(kept))
+            subset = Subset(kept, picked.rule, lost) if kept.any() else NOBODY
             if subset != state.subset(letter) and state.subset(letter).n:
-                state = _with_subset(state, letter, subset)
+                state = with_subset(state, letter, subset)
         return state
 
     n = int(np.count_nonzero(mask))

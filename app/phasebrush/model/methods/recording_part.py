@@ -9,7 +9,15 @@ import numpy as np
 
 from phasebrush.core.trials import AS_RECORDED, AVERAGE
 from phasebrush.model.methods.references import Source, cited
-from phasebrush.model.methods.wording import counted, listed, number, one_line, picked_by, span
+from phasebrush.model.methods.wording import (
+    chosen_how,
+    counted,
+    listed,
+    number,
+    one_line,
+    picked_by,
+    span,
+)
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS
 from phasebrush.recordings.filtering import transition_hz
@@ -136,7 +144,7 @@ def subset_words(snapshot: Snapshot) -> str:
     for letter in given:
         n = int(np.count_nonzero(masks[letter]))
         labels = f" ({_labels(trials, masks[letter])})" if many else ""
-        how = picked_by(state.subset(letter).rule)
+        how = chosen_how(state.subset(letter))
         said.append(f"Subset {letter}: {counted(n, 'trial')}{labels}, {how}.")
     shared = int(np.count_nonzero(masks["A"] & masks["B"]))
     if len(given) == 2:

@@ -15,6 +15,8 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from phasebrush.core.rule_record import Rule
+    from phasebrush.model.members import Members
+    from phasebrush.model.subset import Subset
 
 _MINUS = re.compile(r"(?<![\w.])-(?=\d)")
 _RANGE = re.compile(r"(?<=\d)-(?=\d)")
@@ -63,6 +65,12 @@ def one_line(words: str) -> str:
 def typeset(words: str) -> str:
     """Numbers with a true minus sign, ranges with a dash."""
     return _RANGE.sub("–", _MINUS.sub("−", words))
+
+
+def chosen_how(subset: Subset | Members) -> str:
+    """How a subset was picked, and what it lost: ``highest third of …, less 3 excluded since``."""
+    less = f", less {subset.lost:,} excluded since" if subset.lost else ""
+    return picked_by(subset.rule) + less
 
 
 def picked_by(rule: Rule | None) -> str:
