@@ -231,7 +231,7 @@ def test_the_key_moves_the_dots(window, view):
     np.testing.assert_array_equal(view._y.values, window.workbench.snapshot.key.values)
     window.workbench.do(intents.sort_by(SortKey(kind="phase")))
     settle(window)
-    assert view._y.title.endswith("(rad)")
+    assert view._y.title.endswith("(°)")
     low, high = view.plot.getPlotItem().vb.viewRange()[1]
     assert low < view._y.values.min() < view._y.values.max() < high
 

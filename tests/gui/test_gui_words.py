@@ -134,7 +134,7 @@ def test_every_axis_has_a_name_and_a_unit(window):
     [
         (SortKey(), "dB"),
         (SortKey("response-time"), "s"),
-        (SortKey("phase"), "rad"),
+        (SortKey("phase"), "degrees"),
         (SortKey("amplitude"), "µV"),
         (SortKey("column", column="brightness"), "number"),
     ],

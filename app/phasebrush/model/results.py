@@ -6,6 +6,8 @@ from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING
 
+import numpy as np
+
 from phasebrush.core.phase import ppc
 from phasebrush.model.slow_results import Compared, Outlines, Rested, Steps
 from phasebrush.model.state import SET_NAMES, SetName, State
@@ -19,7 +21,6 @@ __all__ = [
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    import numpy as np
     from numpy.typing import NDArray
 
     from phasebrush.core.morlet import Coefficients
@@ -55,6 +56,16 @@ class KeyValues:
     is_angle: bool
     footprint: Footprint | None
     fault: str = ""
+
+    @property
+    def shown(self) -> Floats:
+        """Values as people read them: angles in degrees."""
+        return np.degrees(self.values) if self.is_angle else self.values
+
+    @property
+    def shown_unit(self) -> str:
+        """Unit of the values as people read them."""
+        return "°" if self.is_angle else self.unit
 
 
 @dataclass(frozen=True, eq=False)

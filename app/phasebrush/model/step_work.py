@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from phasebrush.core.spot import Spot
+    from phasebrush.core.steps import StepStats
     from phasebrush.model.channel_work import ChannelWork
     from phasebrush.model.jobs import Progress
     from phasebrush.model.results import KeyValues
@@ -43,6 +44,12 @@ class StepsQuestion:
         )
 
 
+def _in_degrees(step: StepStats) -> StepStats:
+    """The same step with its range of the key as people read it."""
+    low, high = np.degrees((step.key_low, step.key_high))
+    return replace(step, key_low=float(low), key_high=float(high))
+
+
 def work_out_steps(question: StepsQuestion, progress: Progress) -> Steps:
     """Cut the trials into steps and describe each, with bootstrap bands."""
     coefficients = question.work.coefficients
@@ -50,6 +57,8 @@ def work_out_steps(question: StepsQuestion, progress: Progress) -> Steps:
     steps = step_of_trial(question.key.values, question.used, question.count)
     at_spot, values = coefficients.values[:, row, column], question.key.values
     of = steps_at(at_spot, question.work.voltages_uv, steps, key_values=values, seed=question.seed)
+    if question.key.is_angle:
+        of = tuple(_in_degrees(step) for step in of)
     fixed = fixed_response(at_spot, steps, values, key_is_angle=question.key.is_angle)
     progress.report(1.0)
     return Steps(
@@ -57,7 +66,7 @@ def work_out_steps(question: StepsQuestion, progress: Progress) -> Steps:
         times_s=question.work.times_s,
         of=of,
         key_title=question.key.title,
-        key_unit=question.key.unit,
+        key_unit=question.key.shown_unit,
         freq_hz=float(coefficients.freqs_hz[row]),
         time_s=float(coefficients.times_s[column]),
         valid=bool(coefficients.valid[row, column]),

@@ -6,7 +6,9 @@ from typing import TYPE_CHECKING, ClassVar
 
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
-from phasebrush.gui.curves import IN_A, IN_B, Bands, Line, PlotArea
+from phasebrush.gui.curves import IN_A, IN_ALL, IN_B, Bands, Line, PlotArea
+from phasebrush.gui.difference_bars import DifferenceBars
+from phasebrush.gui.number_words import fixed
 from phasebrush.gui.time_plot import Margins, Pointer, TimePlot
 from phasebrush.gui.view import View
 from phasebrush.model.intents import move_cursor, zoom_time
@@ -20,11 +22,25 @@ if TYPE_CHECKING:
     from phasebrush.model.results import Averages, Snapshot
 
 
+TIP = (
+    "Average waveform (µV): mean over trials; band: 95 % confidence band of the mean, Student's t "
+    "with n − 1, of A and B, or of all where neither is picked. Click or drag moves the time "
+    "cursor; the wheel zooms time."
+)
+
+
 class AverageView(View):
     """Mean voltage over time; the bands are 95 % confidence bands from Student's t."""
 
     needs: ClassVar[frozenset[Result]] = frozenset(
-        {Result.TRIALS, Result.AVERAGE, Result.CURSOR, Result.SPOT, Result.SHOWN}
+        {
+            Result.TRIALS,
+            Result.AVERAGE,
+            Result.CURSOR,
+            Result.SPOT,
+            Result.SHOWN,
+            Result.COMPARED,
+        }
     )
 
     def __init__(self, parent: QWidget | None = None) -> None:
@@ -37,16 +53,14 @@ class AverageView(View):
         self.plot.name_axes("voltage (µV)", "", short="µV")
         self.lines = {name: Line(name) for name in SET_NAMES}
         self.bands = Bands()
-        self.plot.add(self.bands, *self.lines.values())
+        self.differs = DifferenceBars()
+        self.plot.add(self.bands, *self.lines.values(), self.differs)
         self.plot.zoomed = self._zoomed
         self.plot.pressed = self.plot.dragged = self._moved
         self.plot.hovered = self._hovered
         self._averages: Averages | None = None
         self.setAccessibleName("average waveform of all trials, A and B")
-        self.setToolTip(
-            "Average waveform (µV): mean over trials; band: 95 % confidence band of the mean, "
-            "Student's t with n − 1. Click or drag moves the time cursor; the wheel zooms time."
-        )
+        self.setToolTip(TIP)
 
     def show_snapshot(self, snapshot: Snapshot, changed: frozenset[Result]) -> None:
         """Draw what changed."""
@@ -56,6 +70,9 @@ class AverageView(View):
             self._draw()
         if changed & {Result.CURSOR, Result.SPOT}:
             self.plot.set_cursor_time(snapshot.state.cursor_s)
+        if Result.COMPARED in changed:
+            self.differs.show_test(snapshot.compared.get("average"))
+            self.setToolTip(f"{TIP} {self.differs.words}".strip())
         if self._averages is not snapshot.averages:
             self._averages = snapshot.averages
             self._draw()
@@ -85,7 +102,8 @@ class AverageView(View):
         if averages is None:
             return
         edges = {}
-        for number, name in ((IN_A, "A"), (IN_B, "B")):
+        picked = {"A": IN_A, "B": IN_B} if len(averages.of) > 1 else {"all": IN_ALL}
+        for name, number in picked.items():
             average = averages.of.get(name)  # type: ignore[call-overload]
             if average is not None and average.n >= 2:
                 mean, half = average.mean_uv, average.band_uv
@@ -107,12 +125,17 @@ class AverageView(View):
         for line in self.lines.values():
             line.set_look(look)
         self.bands.set_look(look)
+        self.differs.set_look(look)
 
     def _moved(self, pointer: Pointer) -> None:
         self.ways.do(move_cursor(pointer.x))
 
     def _hovered(self, pointer: Pointer | None) -> None:
-        self.ways.hint("" if pointer is None else f"{pointer.x:.3f} s · {pointer.y:.2f} µV")
+        if pointer is None:
+            self.ways.hint("")
+            return
+        said = self.differs.words_at(pointer.x)
+        self.ways.hint(f"{fixed(pointer.x, 3)} s · {fixed(pointer.y, 2)} µV{said}")
 
     def _zoomed(self, span_s: tuple[float, float] | None) -> None:
         self.ways.do(zoom_time(span_s))

@@ -102,10 +102,11 @@ class Histogram(QWidget):
         places = np.searchsorted(edges, values, side="right") - 1
         self._bin_of_trial[finite] = np.clip(places, 0, self._bins - 1)
         self._range = (float(edges[0]), float(edges[-1]))
-        self._ends = tuple(f"{edge:.3g}".replace("-", "−") for edge in (edges[0], edges[-1]))  # type: ignore[assignment]
-        self._unit = key.unit
+        shown = np.degrees(edges) if key.is_angle else edges
+        self._ends = tuple(f"{edge:.3g}".replace("-", "−") for edge in (shown[0], shown[-1]))  # type: ignore[assignment]
+        self._unit = "degrees" if key.is_angle else key.unit
         self.setToolTip(
-            f"How many trials have which {key.title} ({key.unit or 'number'}); "
+            f"How many trials have which {key.title} ({self._unit or 'number'}); "
             "the coloured parts are in A and B. Drag picks a range of values for A, with "
             "Shift for B; drag a handle to move an end."
         )

@@ -8,6 +8,7 @@ import numpy as np
 from PySide6.QtCore import QRectF
 
 from phasebrush.core.stack_image import reduce_rows
+from phasebrush.gui.number_words import fixed
 from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.time_plot import Margins, Pointer
 from phasebrush.gui.views.row_view import RowView
@@ -58,8 +59,9 @@ class KeyStrip(RowView):
             self._key = key if fits else None
             if key is not None and rows is not None and fits:
                 self._by_row = key.values[rows.trial_of_row]
-                name = f"{key.title} ({key.unit})" if key.unit else key.title
-                self.plot.name_axes("", key.unit or "number")
+                unit = key.shown_unit
+                name = f"{key.title} ({unit})" if unit else key.title
+                self.plot.name_axes("", "degrees" if key.is_angle else unit or "number")
                 self.setToolTip(
                     f"Key strip: {name} for each row. The bracket at the left marks A "
                     f"(solid) and B (dashed). {rows.n_missing} trials have no value."
@@ -131,7 +133,7 @@ class KeyStrip(RowView):
     def _tick_angles(self) -> None:
         axis = self.plot.getPlotItem().getAxis("bottom")
         angle = self._key is not None and self._key.is_angle
-        axis.setTicks([[(-np.pi / 2, "−π/2"), (0.0, "0"), (np.pi / 2, "π/2")]] if angle else None)
+        axis.setTicks([[(-np.pi / 2, "−90"), (0.0, "0"), (np.pi / 2, "90")]] if angle else None)
 
     @staticmethod
     def _member(in_a: NDArray[np.bool_], in_b: NDArray[np.bool_]) -> NDArray[np.uint8]:
@@ -186,5 +188,9 @@ class KeyStrip(RowView):
             return
         row = min(max(int(pointer.y), 0), len(self._by_row) - 1)
         value = self._by_row[row]
-        words = f"{value:.2f} {self._key.unit}" if np.isfinite(value) else "no value"
+        words = "no value"
+        if np.isfinite(value) and self._key.is_angle:
+            words = f"{fixed(np.degrees(value), 0)}°"
+        elif np.isfinite(value):
+            words = f"{fixed(value, 2)} {self._key.unit}".strip()
         self.ways.hint(f"row {row + 1} · {self._key.title}: {words}")

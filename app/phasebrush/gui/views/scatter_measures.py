@@ -65,4 +65,5 @@ def measure_of(snapshot: Snapshot, choice: str) -> Measure:
         return Measure(name, found)
     if key is None or len(key.values) != len(trials):
         return Measure("current key", nothing)
-    return Measure(f"{key.title} ({key.unit})" if key.unit else key.title, key.values)
+    unit = key.shown_unit
+    return Measure(f"{key.title} ({unit})" if unit else key.title, key.shown)

@@ -112,8 +112,8 @@ def key_column(key: KeyValues | None, n_trials: int) -> Column:
     """The current sort key; empty while it is not known."""
     if key is None or len(key.values) != n_trials:
         return Column("sort key", "The current sort key: not known yet", np.full(n_trials, np.nan))
-    name = f"{key.title} ({key.unit})" if key.unit else key.title
-    return number_column(name, f"The current sort key: {name}", key.values)
+    name = f"{key.title} ({key.shown_unit})" if key.shown_unit else key.title
+    return number_column(name, f"The current sort key: {name}", key.shown)
 
 
 def first_columns(trials: Trials) -> tuple[Column, ...]:
