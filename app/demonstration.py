@@ -37,7 +37,7 @@ def show() -> int:
     int
         Exit status.
     """
-    if environment.has_display():
+    if environment.display_answers():
         environment.say("Opening the demo recording ...")
         return environment.run_instead(["-m", "phasebrush", "open", str(RECORDING)])
     environment.say("There is no display here, so the window is saved as a picture instead ...")

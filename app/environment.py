@@ -120,10 +120,16 @@ def last_line(text: str) -> str:
 
 
 def has_display() -> bool:
-    """Whether a window can be shown."""
+    """Whether a display is named; the program itself looks whether it answers."""
     if sys.platform in {"darwin", "win32"}:
         return True
     return bool(os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
+
+
+def display_answers() -> bool:
+    """Whether the named display answers, as the installed program finds out."""
+    asked = [str(python_path()), "-m", "phasebrush.gui.display"]
+    return has_display() and subprocess.call(asked) == 0
 
 
 def need_system_libraries() -> None:

@@ -213,3 +213,9 @@ def test_an_interrupted_call_is_one_line(capsys, monkeypatch, tmp_path):
     monkeypatch.setattr("phasebrush.model.measure.measure", interrupted)
     ended = here(capsys, *MEASURE, "--out", str(tmp_path / "o.npz"))
     assert (ended.status, ended.lines) == (130, ["phasebrush: interrupted"])
+
+
+def test_an_empty_name_is_no_file(capsys, tmp_path):
+    ended = here(capsys, "open", "", "--picture", str(tmp_path / "x.png"))
+    assert_refused(ended, said="an empty name is no file")
+    assert list(tmp_path.iterdir()) == []

@@ -186,12 +186,15 @@ def test_the_order_panel_takes_numbers(window):
 
 def test_ends_in_the_wrong_order_are_put_right_on_screen_too(window):
     panel = window.docks.views.order
+    said = []
+    panel.ways.hint = said.append
     low = named(panel, QDoubleSpinBox, "lowest frequency")
     high = named(panel, QDoubleSpinBox, "highest frequency")
     type_into(low, "20")
     settle(window)
     assert window.workbench.state.key.band_hz == (13.0, 20.0)
     assert (low.value(), high.value()) == (13.0, 20.0)
+    assert said == ["the lower end comes first: both ends changed places"]
 
 
 def test_a_band_outside_the_transform_says_so_and_keeps_the_recording_order(window):

@@ -49,6 +49,18 @@ def test_widths_in_time_and_frequency(transform_dialog):
     assert f"{reach_ms:.0f} ms" in lines
 
 
+def test_a_baseline_that_reaches_past_time_zero_is_said(transform_dialog):
+    """2 sigma_t of 7 cycles at 10 Hz is 7 / (pi 10) s = 223 ms, of 40 Hz 56 ms."""
+    assert "centred in the baseline reach past time zero" in words(transform_dialog)
+    # 7 / (pi f) > 0.1 s below 22.28 Hz; the highest of the grid there is 10 * 4 ** (10 / 19)
+    assert "below 20.7 Hz" in words(transform_dialog)
+    end = named(transform_dialog, QDoubleSpinBox, "end of the power baseline")
+    type_into(end, "-0.3", None)
+    turn()
+    assert "past time zero" not in words(transform_dialog)
+    assert ok(transform_dialog).isEnabled()
+
+
 def test_widths_follow_the_numbers(transform_dialog):
     cycles = named(transform_dialog, QDoubleSpinBox, "cycles at the lowest")
     type_into(cycles, "3.5", None)

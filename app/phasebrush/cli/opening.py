@@ -30,7 +30,6 @@ def _open_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "path",
         nargs="?",
-        default="",
         metavar="PATH",
         help="a recording, a folder of recordings, or a workspace (.phasebrush.json)",
     )
@@ -67,11 +66,13 @@ def _open_arguments(parser: argparse.ArgumentParser) -> None:
 def _run_open(arguments: argparse.Namespace) -> int:
     from phasebrush.gui.application import Wish, run
 
+    if arguments.path == "":
+        raise InputError("an empty name is no file", "name a recording, a folder or a workspace")
     # Path.exists raises for names that the system cannot take.
     if arguments.path and not os.path.exists(arguments.path):  # noqa: PTH110
         raise InputError("there is no such file or folder", "check the path", arguments.path)
     wish = Wish(
-        path=arguments.path,
+        path=arguments.path or "",
         picture=arguments.picture,
         size=arguments.size,
         look=arguments.look,

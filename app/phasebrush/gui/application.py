@@ -19,6 +19,7 @@ from shiboken6 import isValid
 from phasebrush.errors import InputError
 from phasebrush.gui import theme
 from phasebrush.gui.background import ThreadRunner
+from phasebrush.gui.display import display_answers
 from phasebrush.gui.last_resort import LastResort
 from phasebrush.gui.main_window import MainWindow
 from phasebrush.model import intents
@@ -62,7 +63,7 @@ def application() -> QApplication:
     existing = QApplication.instance()
     if isinstance(existing, QApplication):
         return existing
-    if not has_display():
+    if not display_answers():
         os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
     pg.setConfigOptions(antialias=False, imageAxisOrder="row-major", useNumba=False)
     # A collection costs a brush step about a millisecond; cycles are few and small here.
@@ -71,13 +72,6 @@ def application() -> QApplication:
     made.setApplicationName("Phasebrush")
     made.setDesktopFileName("phasebrush")
     return made
-
-
-def has_display() -> bool:
-    """Whether a window can be shown."""
-    if sys.platform in {"win32", "darwin"}:
-        return True
-    return bool(os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
 
 
 def settings() -> QSettings | None:
@@ -108,7 +102,7 @@ def run(wish: Wish) -> int:
     InputError
         With ``picture``: if the recording cannot be opened or the picture not written.
     """
-    if not wish.picture and not has_display() and "QT_QPA_PLATFORM" not in os.environ:
+    if not wish.picture and not display_answers() and "QT_QPA_PLATFORM" not in os.environ:
         raise InputError(
             "there is no display to open the window on", "add --picture OUT.png to save a picture"
         )

@@ -13,6 +13,7 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from phasebrush.core.power import baseline_reaches
 from phasebrush.core.transform_settings import TransformSettings
 from phasebrush.gui.views.order_panel import number_box
 
@@ -153,12 +154,20 @@ class TransformDialog(QDialog):
         ok = self._buttons.button(QDialogButtonBox.StandardButton.Ok)
         try:
             settings = self.settings()
-            self.baseline_s()
+            baseline_s = self.baseline_s()
         except ValueError as error:
             self._fault.setText(str(error))
             ok.setEnabled(False)
             return
-        self._fault.setText("")
+        reaches = baseline_reaches(settings, baseline_s)
+        high_hz = settings.freqs_hz[reaches].max() if reaches.any() else 0.0
+        # Allowed, and worth knowing: part of the response is in its own baseline then.
+        self._fault.setText(
+            f"below {high_hz:.3g} Hz wavelets that are centred in the baseline reach past time "
+            "zero: end it earlier, or take fewer cycles there"
+            if reaches.any()
+            else ""
+        )
         ok.setEnabled(True)
         for cells, at in zip(self._cells, (0, settings.count // 2, -1), strict=True):
             words = (

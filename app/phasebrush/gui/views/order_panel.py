@@ -200,6 +200,8 @@ class OrderPanel(View):
             return
         band = sorted((self._low.value(), self._high.value()))
         window = sorted((self._start.value(), self._end.value()))
+        if band[0] != self._low.value() or window[0] != self._start.value():
+            self.ways.hint("the lower end comes first: both ends changed places")
         key: SortKey = replace(
             self._state.key, band_hz=(band[0], band[1]), window_s=(window[0], window[1])
         )
