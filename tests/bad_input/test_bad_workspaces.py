@@ -63,7 +63,7 @@ REFUSED = {
     "empty": (lambda d: written(d, b""), f"{_NONE}the content is empty{_AGAIN}"),
     "cut off": (
         lambda d: written(d, saved(d).read_bytes()[:200]),
-        f"{_NONE}line 15 is not JSON{_AGAIN}",
+        f"{_NONE}line 17 is not JSON{_AGAIN}",
     ),
     "bytes": (
         lambda d: written(d, bytes(range(256))),
