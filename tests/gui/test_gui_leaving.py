@@ -12,12 +12,13 @@ from PIL import Image
 from PySide6.QtCore import QPoint, Qt
 from PySide6.QtGui import QContextMenuEvent, QGuiApplication
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication, QDialogButtonBox, QFileDialog, QMenu
+from PySide6.QtWidgets import QApplication, QDialogButtonBox, QFileDialog, QMenu, QMessageBox
 from window_tools import drag_rows, key, pick_both, settle, strike, turn, wait_for
 
 from phasebrush.exports.recipe import recipe
 from phasebrush.figures.caption import caption
 from phasebrush.figures.save import page_bytes
+from phasebrush.gui.file_names import fit_for_a_file, with_ending
 from phasebrush.model.pages import Page
 
 CTRL = Qt.KeyboardModifier.ControlModifier
@@ -169,7 +170,13 @@ def test_pages_are_kept_recalled_undone_and_forgotten(window, figure):
     settle(window)
     assert window.workbench.state.pages == ()
     window.workbench.undo()
+    settle(window)
     assert window.workbench.state.pages == (kept,)
+    assert figure.kept.findText("lab") == 0
+    figure.kept.setEditText("lab")
+    assert figure.forget.isEnabled()
+    figure.kept.setEditText("lap")
+    assert not figure.forget.isEnabled()
 
 
 def test_what_is_saved_is_the_page(window, figure, tmp_path, monkeypatch):
@@ -206,6 +213,70 @@ def test_a_page_goes_to_the_clipboard(window, figure):
     assert (image.width(), image.height()) == (2666, 1500)
     assert said(window) == ["the page is on the clipboard"]
     QGuiApplication.clipboard().clear()
+
+
+def test_a_copy_does_not_end_a_save(open_window, trials, tmp_path, monkeypatch):
+    window = open_window(trials, threaded=True)
+    settle(window)
+    key(window, Qt.Key.Key_G, CTRL)
+    settle(window)
+    (dialog,) = window.asking._open_dialogs
+    choose(monkeypatch, tmp_path / "lab.png")
+    strike(dialog.save)
+    strike(dialog.copy)
+    settle(window)
+    assert (tmp_path / "lab.png").is_file()
+    assert set(said(window)) == {"lab.png is saved", "the page is on the clipboard"}
+    QGuiApplication.clipboard().clear()
+
+
+def test_what_is_still_worked_out_is_not_saved(open_window, trials):
+    window = open_window(trials, threaded=True)
+    settle(window)
+    key(window, Qt.Key.Key_G, CTRL)
+    settle(window)
+    (dialog,) = window.asking._open_dialogs
+    assert dialog.save.isEnabled()
+    tick(dialog, "steps of the sort key")
+    assert window.workbench.waits
+    assert not dialog.save.isEnabled()
+    settle(window)
+    assert window.workbench.snapshot.steps is not None
+    assert dialog.save.isEnabled()
+
+
+def test_a_name_that_gets_its_ending_replaces_nothing_unasked(
+    window, figure, tmp_path, monkeypatch
+):
+    there = tmp_path / "lab.png"
+    there.write_bytes(b"before")
+    choose(monkeypatch, tmp_path / "lab")
+    answers = [QMessageBox.StandardButton.No, QMessageBox.StandardButton.Yes]
+    monkeypatch.setattr(QMessageBox, "question", lambda *_words: answers.pop(0))
+    strike(figure.save)
+    settle(window)
+    assert there.read_bytes() == b"before"
+    strike(figure.save)
+    settle(window)
+    assert there.read_bytes().startswith(b"\x89PNG")
+
+
+@pytest.mark.parametrize(
+    ("typed", "kind", "named"),
+    [
+        ("a/lab", "PNG picture (*.png)", "a/lab.png"),
+        ("lab.v2", "SVG drawing (*.svg)", "lab.v2.svg"),
+        ("lab.PDF", "PNG picture (*.png)", "lab.PDF"), ("lab", "", "lab.png"),
+    ],
+)  # fmt: skip
+def test_endings(typed, kind, named):
+    assert with_ending(typed, kind) == named
+
+
+def test_names_of_pages_become_names_of_files():
+    assert fit_for_a_file("lab/meeting: 1") == "lab_meeting_ 1"
+    assert fit_for_a_file("..") == "page"
+    assert fit_for_a_file("größe") == "größe"
 
 
 def test_the_dialog_closes_in_the_middle_of_a_preview(open_window, trials):

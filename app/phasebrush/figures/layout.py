@@ -44,7 +44,7 @@ HEAD, FOOT, BARE_FOOT = 1.9, 2.9, 0.7
 """Room above (the title) and below (a named and an unnamed time axis), in em."""
 BAR, STRIP, BESIDE = 0.9, 4.6, 0.8
 """Width of colour bar and key strip, and their distance from the plot area, in em."""
-LEAST_HIGH, LEAST_WIDE, LEAST_STEPS = 4.0, 9.0, 30.0
+LEAST_HIGH, LEAST_WIDE, LEAST_STEPS = 4.0, 9.0, 46.0
 """Smallest plot area that can be read, in em; the steps are four plots side by side."""
 USUAL_HIGH = 9.5
 """Height of a plot area of share 1 on a page whose height follows its panels, in em."""

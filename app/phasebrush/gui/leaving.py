@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import replace
 from functools import partial
+from itertools import count
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -26,9 +27,10 @@ if TYPE_CHECKING:
     from phasebrush.model.results import Snapshot
     from phasebrush.model.workbench import Workbench
 
-PREVIEW, LEAVING = "preview", "export"
+PREVIEW = "preview"
 PREVIEW_REST_S = 0.25
 """How long a page must stand as it is before it is drawn: a second of work beside the window."""
+_numbers = count(1)
 HASHED = 0.2
 """Share of the progress that reading the recording for its hash takes."""
 
@@ -86,7 +88,10 @@ class Leaving:
     def _start(
         self, title: str, work: Callable[[Progress], object], done: Callable[..., None]
     ) -> None:
-        self._bench.jobs.start(Job(LEAVING, title, work, done, self._bench.tell_failure))
+        # Each is of a kind of its own: jobs of one kind replace each other, and a copy must not
+        # end a save that is under way.
+        kind = f"leaving {next(_numbers)}"
+        self._bench.jobs.start(Job(kind, title, work, done, self._bench.tell_failure))
 
     def _saved(self, path: str) -> None:
         self._say(f"{Path(path).name} is saved")

@@ -169,6 +169,8 @@ class MainWindow(QMainWindow):
         self.foot.show_jobs()
         running = self.workbench.jobs.runs("compare")
         self.docks.drawer_content.views.compare.show_running(running=running)
+        for follow in tuple(self.followers):
+            follow(frozenset())
 
     # -- frames -------------------------------------------------------------------------------
 

@@ -11,6 +11,7 @@ from PySide6.QtGui import QColor, QGuiApplication, QPixmap
 from PySide6.QtWidgets import QFileDialog, QMenu
 
 from phasebrush.errors import PersonError
+from phasebrush.gui.file_names import may_replace, with_ending
 from phasebrush.model.pages import Page
 from phasebrush.model.swap_in import swap_in
 
@@ -80,18 +81,24 @@ class ViewMenu:
         path, kind = QFileDialog.getSaveFileName(
             self._window, "Save this view", "view.png", DRAWN if drawn else PIXELS
         )
-        if not path:
-            return
-        if not Path(path).suffix:
-            path += {"SVG": ".svg", "PDF": ".pdf"}.get(kind[:3], ".png")
-        self.save(view, path)
+        if path:
+            named = with_ending(path, kind if drawn else PIXELS)
+            if not drawn and not named.lower().endswith(".png"):
+                named += ".png"
+            if may_replace(path, named, self._window):
+                self.save(view, named)
 
     def save(self, view: View, path: str) -> None:
         """Save a view: as pixels of the screen, or as a page with its panel alone."""
         panel = PANEL_OF.get(view.objectName())
         if Path(path).suffix.lower() in {".svg", ".pdf"} and panel is not None:
             look: LookName = "dark" if view.look.name == "dark" else "light"
-            page = Page("view", (panel,), 1, "double-column", look, 8.0)
+            snapshot = self._window.workbench.snapshot
+            if self._window.workbench.waits:
+                self._window.message_bar.say("this is still being worked out; save it after that")
+                return
+            tested = tuple(name for name, test in snapshot.compared.items() if test.current)
+            page = Page("view", (panel,), 1, "double-column", look, 8.0, tested=tested)
             self._window.asking.leaving().save_page(page, path)
             return
         try:

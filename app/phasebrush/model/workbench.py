@@ -25,6 +25,8 @@ if TYPE_CHECKING:
     from phasebrush.recordings import Recording
 
 EVERYTHING = frozenset(Result)
+ANSWERS = ("read", "cut", "transform", "rest", "steps")
+"""Jobs whose answers the snapshot waits for."""
 SAVING = frozenset({"save", "aside"})
 """Jobs that go on when work is stopped: what a person asked to keep is kept."""
 
@@ -228,6 +230,11 @@ class Workbench:
     def settled(self) -> bool:
         """Whether nothing is stale and no job runs."""
         return not self._stale and not self.jobs.running
+
+    @property
+    def waits(self) -> bool:
+        """Whether an answer that the snapshot shows is still to come."""
+        return bool(self._stale) or any(self.jobs.runs(kind) for kind in ANSWERS)
 
     # -- recordings come in -------------------------------------------------------------------
 

@@ -23,6 +23,7 @@ from phasebrush.figures.caption import caption
 from phasebrush.figures.layout import lay_out
 from phasebrush.figures.needs import panels_need
 from phasebrush.gui.dialogs.page_controls import PageControls
+from phasebrush.gui.file_names import fit_for_a_file, may_replace, with_ending
 from phasebrush.gui.theme import GRID
 from phasebrush.model import intents
 from phasebrush.model.pages import Page
@@ -38,7 +39,6 @@ if TYPE_CHECKING:
     from phasebrush.model.workbench import Workbench
 
 KINDS = "PNG picture (*.png);;SVG drawing (*.svg);;PDF page (*.pdf)"
-ENDINGS = {"PNG": ".png", "SVG": ".svg", "PDF": ".pdf"}
 UNNAMED = "page"
 FADED = 0.4
 FINER = 1.5
@@ -135,6 +135,7 @@ class FigureDialog(QDialog):
         self.setObjectName("figureDialog")
         self.setWindowTitle("Figure page")
         self._bench, self._leaving, self._want_steps = workbench, leaving, want_steps
+        self._fits = True
         self.kept = QComboBox(self)
         self.kept.setObjectName("pageKept")
         self.kept.setEditable(True)
@@ -188,6 +189,7 @@ class FigureDialog(QDialog):
         self.controls.changed.connect(self.draw_again)
         self.controls.panels.installEventFilter(self)
         self.kept.activated.connect(self._recall)
+        self.kept.editTextChanged.connect(self._enable)
         self.keep.clicked.connect(self._keep)
         self.forget.clicked.connect(self._forget)
         self.save.clicked.connect(self._save)
@@ -204,17 +206,20 @@ class FigureDialog(QDialog):
 
     def show_snapshot(self, changed: frozenset[Result]) -> None:
         """Follow the window: what is drawn is drawn again when it has come to rest."""
+        if Result.SUBSETS in changed or not changed:
+            self._list_kept(select=self.kept.currentText())
         if changed - {Result.CURSOR}:
             self.draw_again()
+        else:
+            self._enable()
 
     def draw_again(self) -> None:
         """Draw the page as it is asked for now."""
         page = self.page()
         snapshot = self._bench.snapshot
         self._want_steps(page is not None and panels_need(page).steps)
-        ready = page is not None and snapshot.trials is not None
-        for button in (self.save, self.copy, self.keep):
-            button.setEnabled(ready)
+        self._fits = True
+        self._enable()
         if page is None or snapshot.trials is None:
             self._leaving.forget_preview()
             self.preview.show_words("tick a panel" if page is None else "open a recording first")
@@ -222,6 +227,15 @@ class FigureDialog(QDialog):
         self.controls.show_built(caption(snapshot, page) if page.caption is None else page.caption)
         self.preview.fade()
         self._leaving.preview(page, self._dpi(page), self.preview.show_page, self._no_preview)
+
+    def _enable(self) -> None:
+        """What is still being worked out is not saved: the file would lack it."""
+        there = self.page() is not None and self._bench.snapshot.trials is not None
+        self.keep.setEnabled(there)
+        for button in (self.save, self.copy):
+            button.setEnabled(there and self._fits and not self._bench.waits)
+        name = self.kept.currentText().strip()
+        self.forget.setEnabled(any(page.name == name for page in self._bench.state.pages))
 
     def _dpi(self, page: Page) -> int:
         """Pixels per inch that fill the preview, and no more: they take the time."""
@@ -236,8 +250,8 @@ class FigureDialog(QDialog):
     def _no_preview(self, fault: Exception) -> None:
         if isinstance(fault, PersonError):
             self.preview.show_words(fault.line)
-            for button in (self.save, self.copy):
-                button.setEnabled(False)
+            self._fits = False
+            self._enable()
         else:
             self._bench.tell_failure(fault)
 
@@ -260,20 +274,22 @@ class FigureDialog(QDialog):
         self._list_kept(select="")
 
     def _list_kept(self, *, select: str) -> None:
-        self.kept.clear()
-        for page in self._bench.state.pages:
-            self.kept.addItem(page.name)
-        self.kept.setEditText(select or UNNAMED)
-        self.forget.setEnabled(any(page.name == select for page in self._bench.state.pages))
+        names = [page.name for page in self._bench.state.pages]
+        if names != [self.kept.itemText(at) for at in range(self.kept.count())]:
+            self.kept.clear()
+            self.kept.addItems(names)
+        if (select or UNNAMED) != self.kept.currentText():
+            self.kept.setEditText(select or UNNAMED)
+        self._enable()
 
     def _save(self) -> None:
         page = self.page()
         if page is None:
             return
-        path, kind = QFileDialog.getSaveFileName(self, "Save the page", f"{page.name}.png", KINDS)
-        if path:
-            known = path.lower().endswith(tuple(ENDINGS.values()))
-            self._leaving.save_page(page, path if known else path + ENDINGS.get(kind[:3], ".png"))
+        suggested = f"{fit_for_a_file(page.name)}.png"
+        path, kind = QFileDialog.getSaveFileName(self, "Save the page", suggested, KINDS)
+        if path and may_replace(path, with_ending(path, kind), self):
+            self._leaving.save_page(page, with_ending(path, kind))
 
     def _copy(self) -> None:
         page = self.page()
