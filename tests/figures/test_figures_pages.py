@@ -10,7 +10,7 @@ import numpy as np
 import pytest
 
 from phasebrush.errors import InputError, JobStopped
-from phasebrush.figures.layout import PANELS
+from phasebrush.figures.layout import PANELS, lay_out
 from phasebrush.figures.page import draw_page
 from phasebrush.figures.paper import PAPERS
 from phasebrush.figures.style import settings
@@ -36,6 +36,9 @@ PAGES = {
         paper="double-column", panels=(*FOUR, "locking-difference", "power-difference"), font_pt=7
     ),
     "steps and dial": Page(paper="double-column", columns=1, panels=("steps", "dial"), font_pt=8),
+    "steps among two columns": Page(
+        paper="a4", panels=("average", "steps", "locking-map", "power-map"), font_pt=8
+    ),
     "stack alone": Page(paper="single-column", columns=1, panels=("stack",), font_pt=6),
 }
 
@@ -126,6 +129,14 @@ def test_time_axes_of_a_column_line_up_and_only_the_last_is_named(snapshot):
     assert len(edges) == 1
     assert {x.get_xlim() for x in plots} == {snapshot.trials.window_s}
     assert [bool(x.get_xlabel()) for x in plots] == [False, False, False, True]
+
+
+def test_a_whole_panel_has_a_row_of_its_own(snapshot):
+    panels = ("average", "steps", "locking-map", "power-map")
+    laid = {x.name: x for x in lay_out(Page(paper="a4", panels=panels, font_pt=8), 1.0).panels}
+    assert laid["steps"].plot.width > 2 * laid["average"].plot.width
+    tops = [laid[name].plot.foot for name in panels]
+    assert tops[0] > tops[1] > tops[2] == tops[3]
 
 
 def test_a_map_shows_the_numbers_of_the_snapshot(snapshot):

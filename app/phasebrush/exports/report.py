@@ -155,6 +155,6 @@ def _notes(snapshot: Snapshot) -> str:
 REPORT_PAGE = Page(
     name="report", paper="double-column", columns=2, font_pt=7.0, dpi=200,
     panels=("average", "locking-map", "stack", "power-map", "locking-trace", "power-trace",
-            "dial", "steps"),
+            "steps", "dial"),
 )  # fmt: skip
 """The figure of a report where no page of its own is named."""

@@ -111,7 +111,7 @@ def lay_out(page: Page, foot_in: float) -> Layout:
     paper = PAPERS[page.paper]
     em = page.font_pt / 72.0
     columns = min(page.columns, len(page.panels))
-    rows = [page.panels[at : at + columns] for at in range(0, len(page.panels), columns)]
+    rows = _rows(page.panels, columns)
     inner = paper.width_in - 2 * paper.margin_in
     wide = (inner - (columns - 1) * GAP * em) / columns - (LEFT + RIGHT) * em
     named = _named(rows)
@@ -120,17 +120,31 @@ def lay_out(page: Page, foot_in: float) -> Layout:
     frame = 2 * paper.margin_in + foot_in + sum(feet) * em + len(rows) * HEAD * em
     height = paper.height_in or frame + sum(shares) * USUAL_HIGH * em
     unit = (height - frame) / sum(shares)
-    _check(page, wide / em, unit * min(shares) / em)
+    whole = inner - (LEFT + RIGHT) * em
+    _check(page, wide / em, whole / em, unit * min(shares) / em)
     laid, top = [], height - paper.margin_in
     for r, row in enumerate(rows):
         tall = shares[r] * unit
         top -= HEAD * em + tall
         for c, name in enumerate(row):
             left = paper.margin_in + c * (wide + (LEFT + RIGHT + GAP) * em) + LEFT * em
-            plot = Box(left, top, wide, tall)
+            plot = Box(left, top, whole if PANELS[name].whole else wide, tall)
             laid.append(Laid(name, plot, _beside(name, plot, em), HEAD * em, named[r][c]))
         top -= feet[r] * em
     return Layout(paper.width_in, height, paper.margin_in, tuple(laid))
+
+
+def _rows(panels: tuple[PanelName, ...], columns: int) -> list[tuple[PanelName, ...]]:
+    """Rows in reading order; a panel that takes the whole width has a row of its own."""
+    rows: list[tuple[PanelName, ...]] = []
+    for name in panels:
+        last = rows[-1] if rows else ()
+        alone = PANELS[name].whole or any(PANELS[other].whole for other in last)
+        if last and len(last) < columns and not alone:
+            rows[-1] = (*last, name)
+        else:
+            rows.append((name,))
+    return rows
 
 
 def _beside(name: PanelName, plot: Box, em: float) -> Box:
@@ -158,10 +172,10 @@ def _foot(name: PanelName, named: bool) -> float:
     return FOOT if named or not panel.on_time or panel.strip else BARE_FOOT
 
 
-def _check(page: Page, wide_em: float, high_em: float) -> None:
-    need = LEAST_STEPS if "steps" in page.panels else LEAST_WIDE
-    reach = wide_em + (RIGHT if "steps" in page.panels else 0.0)
-    if reach >= need and high_em >= LEAST_HIGH:
+def _check(page: Page, wide_em: float, whole_em: float, high_em: float) -> None:
+    wholes = [PANELS[name].whole for name in page.panels]
+    fits = high_em >= LEAST_HIGH and (all(wholes) or wide_em >= LEAST_WIDE)
+    if fits and (not any(wholes) or whole_em + RIGHT >= LEAST_STEPS):
         return
     raise InputError(
         f"{len(page.panels)} panel{'s' if len(page.panels) != 1 else ''} in {page.columns} "

@@ -63,6 +63,8 @@ class Panel:
         Draws into a place.
     square : bool
         Whether it is drawn in a square.
+    whole : bool
+        Whether it takes the whole width of the page.
     strip : bool
         Whether the area beside it is as wide as a strip, not as a colour bar.
     """
@@ -75,3 +77,4 @@ class Panel:
     draw: Callable[[Place, Snapshot], None]
     square: bool = False
     strip: bool = False
+    whole: bool = False

@@ -179,5 +179,6 @@ def _draw_measure(axes: Axes, style: Style, drawn: Measured, *, read: bool) -> N
 
 
 STEPS = Panel(
-    "steps of the sort key", 1.35, on_time=False, titles=titles, missing=missing, draw=draw
-)
+    "steps of the sort key", 1.35, on_time=False, titles=titles, missing=missing, draw=draw,
+    whole=True,
+)  # fmt: skip
