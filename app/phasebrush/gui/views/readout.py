@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import TYPE_CHECKING, ClassVar
 
-from PySide6.QtCore import QEvent, QRectF, QSize, Qt
+from PySide6.QtCore import QEvent, QRect, QRectF, QSize, Qt
 from PySide6.QtGui import (
     QColor,
     QFocusEvent,
@@ -56,6 +57,8 @@ class ReadoutView(View):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self._rows: tuple[Row, ...] = ()
+        self._names_wide = self._column_wide = 0.0
+        self._wanted = QRectF()
         self._names: tuple[SetName, ...] = ()
         self._at = 0
         self.setAccessibleName("readout at the spot")
@@ -99,9 +102,24 @@ class ReadoutView(View):
         self.match.setChecked(snapshot.state.match)
         self._foot.setVisible(bool(words))
         if rows != self._rows or names != self._names or Result.TRIALS in changed:
+            part = self._part_to_write(rows) if names == self._names else self.rect()
             self._rows, self._names = rows, names
             self._at = min(self._at, max(0, len(rows) - 1))
-            self.update()
+            self.update(part)
+
+    def _part_to_write(self, rows: tuple[Row, ...]) -> QRect:
+        """The columns whose numbers changed: a brush changes one of three."""
+        before = self._rows
+        if [replace(row, cells={}) for row in rows] != [replace(row, cells={}) for row in before]:
+            return self.rect()
+        part = QRect()
+        for column, name in enumerate(self._names):
+            if any(
+                x.cells.get(name) != y.cells.get(name) for x, y in zip(rows, before, strict=True)
+            ):
+                left = self._names_wide + 4 + self._column_wide * column
+                part |= QRectF(left - 6, 0, self._column_wide + 12, self.height()).toAlignedRect()
+        return part
 
     def table(self) -> dict[str, list[str]]:
         """What is written, by column: for tests, for the clipboard and for screen readers."""
@@ -120,8 +138,8 @@ class ReadoutView(View):
         wanted = QFontMetricsF(self.font()).height() + 3
         return min(wanted, (self._room() - 4) / (len(self._rows) + 1))
 
-    def paintEvent(self, _event: QPaintEvent) -> None:
-        """Write the table."""
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """Write the table, as far as it is wanted."""
         painter = QPainter(self)
         painter.fillRect(self.rect(), QColor(self.look.panel))
         if not self._rows:
@@ -135,6 +153,8 @@ class ReadoutView(View):
             metrics = QFontMetricsF(painter.font())
         names = max(metrics.horizontalAdvance(row.name) for row in self._rows) + 10
         wide = max(48.0, min(84.0, (self.width() - names - 8) / len(SET_NAMES)))
+        self._names_wide, self._column_wide = names, wide
+        self._wanted = QRectF(event.rect())
         for column, name in enumerate(self._names):
             painter.setPen(QColor(self.look.subset(name)))
             head = QRectF(names + 4 + wide * column, 2, wide, high)
@@ -158,8 +178,9 @@ class ReadoutView(View):
         names: float,
         wide: float,
     ) -> None:
-        painter.setPen(QColor(self.look.muted))
-        painter.drawText(line, Qt.AlignmentFlag.AlignVCenter, row.name)
+        if self._wanted.left() < line.left() + names:
+            painter.setPen(QColor(self.look.muted))
+            painter.drawText(line, Qt.AlignmentFlag.AlignVCenter, row.name)
         painter.setPen(QColor(self.look.text))
         left = line.left() + names
         if row.across:
@@ -168,9 +189,9 @@ class ReadoutView(View):
             painter.drawText(box, Qt.AlignmentFlag.AlignVCenter, words)
         for column, name in enumerate(self._names):
             box = QRectF(left + wide * column, line.top(), wide, line.height())
-            self._write(
-                painter, metrics, row.cells.get(name, ""), left + wide * (column + 0.44), box
-            )
+            if box.adjusted(-6, 0, 6, 0).intersects(self._wanted):
+                words = row.cells.get(name, "")
+                self._write(painter, metrics, words, left + wide * (column + 0.44), box)
 
     @staticmethod
     def _write(
