@@ -63,8 +63,8 @@ def application() -> QApplication:
     existing = QApplication.instance()
     if isinstance(existing, QApplication):
         return existing
-    if not display_answers():
-        os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
+    if "QT_QPA_PLATFORM" not in os.environ and not display_answers():
+        os.environ["QT_QPA_PLATFORM"] = "offscreen"
     pg.setConfigOptions(antialias=False, imageAxisOrder="row-major", useNumba=False)
     # A collection costs a brush step about a millisecond; cycles are few and small here.
     gc.set_threshold(50_000, 20, 20)
@@ -102,7 +102,7 @@ def run(wish: Wish) -> int:
     InputError
         With ``picture``: if the recording cannot be opened or the picture not written.
     """
-    if not wish.picture and not display_answers() and "QT_QPA_PLATFORM" not in os.environ:
+    if not wish.picture and "QT_QPA_PLATFORM" not in os.environ and not display_answers():
         raise InputError(
             "there is no display to open the window on", "add --picture OUT.png to save a picture"
         )
