@@ -49,7 +49,8 @@ def start_display() -> tuple[subprocess.Popen, str]:
     """A display in memory, at a number that nobody has (``-displayfd``, X server manual)."""
     read, write = os.pipe()
     server = subprocess.Popen(
-        ["Xvfb", "-displayfd", str(write), "-screen", "0", "1280x900x24", "-nolisten", "tcp", "-noreset"],
+        ["Xvfb", "-displayfd", str(write), "-screen", "0", "1280x900x24", "-nolisten", "tcp",
+         "-noreset"],  # else it starts anew when whoever looked whether it answers has gone
         pass_fds=[write], stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL,
     )  # fmt: skip
     os.close(write)
