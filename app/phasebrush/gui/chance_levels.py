@@ -4,19 +4,18 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-import pyqtgraph as pg
 from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QColor, QFontMetricsF
 
 from phasebrush.gui import theme
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from PySide6.QtGui import QPainter
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+    from PySide6.QtGui import QPainter, QTransform
 
     from phasebrush.model.results import SetName
 
@@ -24,7 +23,7 @@ if TYPE_CHECKING:
 LINES_OF_ROOM = 3
 
 
-class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
+class ChanceLevels(OverPlot):
     """One dotted line a set of trials, painted in one go.
 
     Three line items and a text item of the library take 0.5 ms a brush step.
@@ -60,26 +59,9 @@ class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
             self._levels, self._words = drawn, words
             self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Draw lines and words."""
-        way = painter.worldTransform()
         area = way.mapRect(self.boundingRect())
-        painter.save()
-        painter.resetTransform()
         for name, level in self._levels.items():
             y = round(way.map(QPointF(0, level)).y()) + 0.5
             colour = self._look.muted if name == "all" else self._look.subset(name)
@@ -87,7 +69,6 @@ class ChanceLevels(pg.GraphicsObject):  # type: ignore[misc]
             painter.drawLine(QLineF(area.left(), y, area.right(), y))
         if self._words:
             self._write(painter, area)
-        painter.restore()
 
     def _write(self, painter: QPainter, area: QRectF) -> None:
         metrics = QFontMetricsF(self._font)

@@ -4,17 +4,16 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF
 from PySide6.QtGui import QColor
 
 from phasebrush.core.comparison import WHAT_P_SAYS
 from phasebrush.gui.number_words import fixed, p_words
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
-    from PySide6.QtGui import QPainter
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+    from PySide6.QtGui import QPainter, QTransform
 
     from phasebrush.core.comparison import Cluster
     from phasebrush.model.results import Compared
@@ -24,7 +23,7 @@ TALL, ABOVE = 4.0, 3.0
 """Height of a bar, and its distance from the axis, pixels of the screen."""
 
 
-class DifferenceBars(pg.GraphicsObject):  # type: ignore[misc]
+class DifferenceBars(OverPlot):
     """One bar a cluster whose p is at most 0.05, while the test belongs to what is on screen."""
 
     def __init__(self) -> None:
@@ -74,33 +73,15 @@ class DifferenceBars(pg.GraphicsObject):  # type: ignore[misc]
             self.setVisible(bool(clusters))
             self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Fill the bars at the screen's pixels."""
-        way = painter.worldTransform()
         area = way.mapRect(self.boundingRect())
-        painter.save()
-        painter.resetTransform()
         for start_s, end_s in self.spans:
             left = max(way.map(QPointF(start_s, 0.0)).x(), area.left())
             right = min(max(way.map(QPointF(end_s, 0.0)).x(), left + 1.0), area.right())
             if right > left:
                 bar = QRectF(left, area.bottom() - ABOVE - TALL, right - left, TALL)
                 painter.fillRect(bar, QColor(self._look.text))
-        painter.restore()
 
 
 def _words(cluster: Cluster) -> str:

@@ -6,19 +6,18 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
-import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
 from PySide6.QtGui import QColor, QPainter, QPolygonF
 from PySide6.QtWidgets import QSizePolicy, QWidget
 
 from phasebrush.gui import theme
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
-    from PySide6.QtGui import QPaintEvent, QPen
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem
+    from PySide6.QtGui import QPaintEvent, QPen, QTransform
 
     from phasebrush.core.carriers import Carriers
     from phasebrush.model.state import SetName
@@ -86,7 +85,7 @@ def curves_of(carriers: Carriers, name: SetName) -> tuple[Curve, ...]:
     )  # fmt: skip
 
 
-class CarrierCurves(pg.GraphicsObject):  # type: ignore[misc]
+class CarrierCurves(OverPlot):
     """The curves, painted at the screen's own pixels: some fifty points each."""
 
     def __init__(self) -> None:
@@ -105,31 +104,14 @@ class CarrierCurves(pg.GraphicsObject):  # type: ignore[misc]
         self.x, self.curves = x, curves
         self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Draw ranges first, then lines."""
-        way = painter.worldTransform()
 
         def places(y: Floats) -> list[QPointF]:
             known = np.isfinite(y)
             pairs = zip(self.x[known].tolist(), y[known].tolist(), strict=True)
             return [way.map(QPointF(*pair)) for pair in pairs]
 
-        painter.save()
-        painter.resetTransform()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         for curve in self.curves:
             if curve.low is not None and curve.high is not None:
@@ -142,7 +124,6 @@ class CarrierCurves(pg.GraphicsObject):  # type: ignore[misc]
         for curve in self.curves:
             painter.setPen(curve.pen(self._look))
             painter.drawPolyline(places(curve.y))
-        painter.restore()
 
 
 class CurveLegend(QWidget):

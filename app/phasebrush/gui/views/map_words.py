@@ -5,22 +5,21 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 import numpy as np
-import pyqtgraph as pg
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF
 
 from phasebrush.gui import theme
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
-    from PySide6.QtGui import QPainter
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+    from PySide6.QtGui import QPainter, QTransform
 
 PICKED = "picked here"
 
 
-class MapWords(pg.GraphicsObject):  # type: ignore[misc]
+class MapWords(OverPlot):
     """A line in the middle where nothing can be drawn, a label where a subset was picked."""
 
     def __init__(self) -> None:
@@ -65,27 +64,10 @@ class MapWords(pg.GraphicsObject):  # type: ignore[misc]
             self.setVisible(bool(line) or not place.isNull())
             self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Write, where there is room."""
-        way = painter.worldTransform()
         area = way.mapRect(self.boundingRect())
         line, place = self._said
-        painter.save()
-        painter.resetTransform()
         painter.setFont(self._font)
         metrics = QFontMetricsF(self._font)
         if line:
@@ -101,4 +83,3 @@ class MapWords(pg.GraphicsObject):  # type: ignore[misc]
             painter.fillRect(tag, veil)
             painter.setPen(QColor(self._look.text))
             painter.drawText(QPointF(tag.left() + 2, tag.bottom() - metrics.descent()), PICKED)
-        painter.restore()

@@ -4,19 +4,18 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-import pyqtgraph as pg
 from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QColor
 
 from phasebrush.gui.hatch import PRINT_SPACING
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from PySide6.QtGui import QPainter
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+    from PySide6.QtGui import QPainter, QTransform
 
     from phasebrush.model.results import Circles
 
@@ -43,7 +42,7 @@ def picked_spans(circles: Circles, band_hz: tuple[float, float]) -> dict[str, Sp
     }
 
 
-class PickedStrip(pg.GraphicsObject):  # type: ignore[misc]
+class PickedStrip(OverPlot):
     """Hatched as the footprint on the maps is: wide lines with an edge."""
 
     def __init__(self) -> None:
@@ -74,26 +73,9 @@ class PickedStrip(pg.GraphicsObject):  # type: ignore[misc]
             self.setVisible(bool(spans))
             self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Hatch each span; subsets with the same one share it."""
-        way = painter.worldTransform()
         area = way.mapRect(self.boundingRect())
-        painter.save()
-        painter.resetTransform()
         edge = QColor(self._look.text)
         edge.setAlpha(150)
         for start_s, end_s in sorted(set(self._spans.values())):
@@ -109,4 +91,3 @@ class PickedStrip(pg.GraphicsObject):  # type: ignore[misc]
             at = [box.left() - TALL + number * PRINT_SPACING for number in range(count)]
             painter.drawLines([QLineF(x, box.bottom(), x + TALL, box.top()) for x in at])
             painter.setClipping(False)
-        painter.restore()

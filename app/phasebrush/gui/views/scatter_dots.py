@@ -5,17 +5,18 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 import numpy as np
-import pyqtgraph as pg
 from pyqtgraph.Qt.internals import PrimitiveArray
 from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPen
 
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.colour_maps import mixed
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
+    from PySide6.QtGui import QTransform
     from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
 
     Floats = NDArray[np.float64]
@@ -26,29 +27,13 @@ DOT_ROOM = 6.0
 """Pixels that a dot may reach beyond its place: half the largest, smoothing, and whole pixels."""
 
 
-class _OverPlot(pg.GraphicsObject):  # type: ignore[misc]
-    """An item as large as the plot, painted at the screen's pixels."""
+class Dots(OverPlot):
+    """Trials as dots: A squares, B round, both a square with a round heart, the rest small."""
 
     def __init__(self) -> None:
         super().__init__()
         # Tell `paint` which part is wanted: by default Qt names the whole item.
         self.setFlag(self.GraphicsItemFlag.ItemUsesExtendedStyleOption)
-
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range or has another size."""
-        self.prepareGeometryChange()
-
-
-class Dots(_OverPlot):
-    """Trials as dots: A squares, B round, both a square with a round heart, the rest small."""
-
-    def __init__(self) -> None:
-        super().__init__()
         self._look = LIGHT
         self._x: Floats = np.zeros(0)
         self._y: Floats = np.zeros(0)
@@ -153,7 +138,7 @@ class Dots(_OverPlot):
         painter.drawPoints(*self._points.drawargs())
 
 
-class PickBox(_OverPlot):
+class PickBox(OverPlot):
     """The box that is being dragged, in the colour and line of the subset it picks for."""
 
     def __init__(self) -> None:
@@ -181,18 +166,10 @@ class PickBox(_OverPlot):
         """The box in the plot's units."""
         return self._box
 
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Draw the outline with a halo of the panel's colour."""
-        place = painter.worldTransform().mapRect(self._box)
-        painter.save()
-        painter.resetTransform()
+        place = way.mapRect(self._box)
         painter.setPen(pen(self._look.panel, width=4))
         painter.drawRect(place)
         painter.setPen(pen(self._look.subset(self._letter), width=2, dashed=self._letter == "B"))
         painter.drawRect(place)
-        painter.restore()

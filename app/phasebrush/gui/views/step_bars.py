@@ -6,18 +6,18 @@ import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-import pyqtgraph as pg
 from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF, QPainter
 
 from phasebrush.gui import theme
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.gui.time_plot import pen
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterable
 
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+    from PySide6.QtGui import QTransform
 
     from phasebrush.gui.views.step_kinds import Ends, Numbers
 
@@ -62,7 +62,7 @@ class StepValues:
         return tuple(number for number in all_of if math.isfinite(number))
 
 
-class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
+class ErrorBars(OverPlot):
     """Dots joined by a line, each with its band; chance dotted, predictions dashed."""
 
     def __init__(self) -> None:
@@ -81,30 +81,13 @@ class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
         self.drawn = drawn
         self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Draw chance, predictions, bands, line and dots at the screen's pixels."""
-        way = painter.worldTransform()
         area = way.mapRect(self.boundingRect())
 
         def at(step: float, value: float) -> QPointF:
             return way.map(QPointF(step, value))
 
-        painter.save()
-        painter.resetTransform()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         self._draw_levels(painter, at, area)
         painter.setPen(pen(self._look.muted))
@@ -114,7 +97,6 @@ class ErrorBars(pg.GraphicsObject):  # type: ignore[misc]
         self._draw_predicted(painter, _places(at, self.drawn.predicted))
         self._draw_measured(painter, _places(at, self.drawn.values))
         self._label_line(painter, at, area)
-        painter.restore()
 
     def _draw_levels(self, painter: QPainter, at: Place, area: QRectF) -> None:
         painter.setPen(pen(self._look.muted, dotted=True))

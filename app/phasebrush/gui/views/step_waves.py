@@ -6,19 +6,19 @@ import math
 from typing import TYPE_CHECKING
 
 import numpy as np
-import pyqtgraph as pg
-from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
+from PySide6.QtCore import QLineF, QPointF, Qt
 from PySide6.QtGui import QColor, QFontMetricsF
 
 from phasebrush.gui import theme
 from phasebrush.gui.curves import Line
+from phasebrush.gui.over_plot import OverPlot
 from phasebrush.gui.time_plot import Axis, Margins, TimePlot, pen
 from phasebrush.look.colour_maps import mixed
 from phasebrush.look.tokens import LIGHT, Look
 
 if TYPE_CHECKING:
-    from PySide6.QtGui import QPainter
-    from PySide6.QtWidgets import QStyleOptionGraphicsItem, QWidget
+    from PySide6.QtGui import QPainter, QTransform
+    from PySide6.QtWidgets import QWidget
 
     from phasebrush.model.results import Steps
 
@@ -62,7 +62,7 @@ class StepLine(Line):
         self.update()
 
 
-class ScaleBar(pg.GraphicsObject):  # type: ignore[misc]
+class ScaleBar(OverPlot):
     """A vertical bar of a round voltage, with its length beside it."""
 
     def __init__(self) -> None:
@@ -87,30 +87,13 @@ class ScaleBar(pg.GraphicsObject):  # type: ignore[misc]
         self._uv = uv
         self.update()
 
-    def boundingRect(self) -> QRectF:
-        """The whole plot."""
-        box = self.getViewBox()
-        return QRectF() if box is None else QRectF(box.viewRect())
-
-    def viewTransformChanged(self) -> None:  # noqa: N802 - the library's own name
-        """The plot shows another range."""
-        self.prepareGeometryChange()
-
-    def paint(
-        self,
-        painter: QPainter,
-        _option: QStyleOptionGraphicsItem,
-        _widget: QWidget | None = None,
-    ) -> None:
+    def draw(self, painter: QPainter, way: QTransform) -> None:
         """Draw the bar at the top left."""
         if self._uv <= 0:
             return
-        way = painter.worldTransform()
         area = way.mapRect(self.boundingRect())
         tall = abs(way.m22()) * self._uv
         x, y = round(area.left() + BAR_PIXELS) + 0.5, area.top() + 4
-        painter.save()
-        painter.resetTransform()
         painter.setPen(pen(self._look.text))
         for line in (
             QLineF(x, y, x, y + tall), QLineF(x - 2, y, x + 2, y),
@@ -121,7 +104,6 @@ class ScaleBar(pg.GraphicsObject):  # type: ignore[misc]
         painter.setPen(QColor(self._look.muted))
         middle = y + tall / 2 + painter.fontMetrics().ascent() / 2 - 1
         painter.drawText(QPointF(x + 6, middle), f"{number(self._uv)} µV")
-        painter.restore()
 
 
 class StepWaves(TimePlot):
