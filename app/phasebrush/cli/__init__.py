@@ -6,7 +6,8 @@ import sys
 from typing import TYPE_CHECKING
 
 from phasebrush import __version__
-from phasebrush.cli.command import CAUTION, USAGE, Parser, complain
+from phasebrush.caution import CAUTION
+from phasebrush.cli.command import USAGE, Parser, complain
 from phasebrush.cli.drawing import DRAW
 from phasebrush.cli.measuring import MEASURE
 from phasebrush.cli.opening import OPEN

@@ -11,10 +11,6 @@ from typing import TYPE_CHECKING, NoReturn
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-CAUTION = (
-    "Research use only; not for diagnosis or patient care. Follow local ethics and "
-    "data-protection rules."
-)
 DONE, USAGE = 0, 2
 
 

@@ -7,9 +7,10 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from phasebrush.caution import CAUTION
 from phasebrush.exports.markup import html_table, paragraphs, safe, section
 from phasebrush.exports.report_numbers import comparisons_part, recipe_text, spot_part
-from phasebrush.figures.caption import CAUTION, caption
+from phasebrush.figures.caption import caption
 from phasebrush.figures.save import page_bytes
 from phasebrush.look.tokens import LIGHT
 from phasebrush.model.methods.wording import chosen_how, counted, listed, number, span

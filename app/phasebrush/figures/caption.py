@@ -15,6 +15,7 @@ from phasebrush.model.methods.wording import (
     one_line,
     span,
 )
+from phasebrush.model.set_words import SET_WORDS
 from phasebrush.model.stale import Result
 from phasebrush.model.state import LETTERS
 
@@ -23,15 +24,10 @@ if TYPE_CHECKING:
     from phasebrush.model.results import Snapshot
     from phasebrush.model.state import Tested
 
-CAUTION = (
-    "Research use only; not for diagnosis or patient care. Follow local ethics and "
-    "data-protection rules."
-)
 MAPS = frozenset({"locking-map", "power-map"})
 DIFFERENCES = frozenset({"locking-difference", "power-difference"})
 POWER = frozenset({"power-map", "power-difference", "power-trace"})
 LOCKING = frozenset({"locking-map", "locking-difference", "locking-trace"})
-SET_WORDS = {"all": "all trials", "A": "A", "B": "B", "A-B": "A − B"}
 
 
 def caption(snapshot: Snapshot, page: Page) -> str:

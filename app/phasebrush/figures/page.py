@@ -8,8 +8,9 @@ from typing import TYPE_CHECKING
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
 
+from phasebrush.caution import CAUTION
 from phasebrush.errors import InputError, JobStopped
-from phasebrush.figures.caption import CAUTION, caption
+from phasebrush.figures.caption import caption
 from phasebrush.figures.layout import PANELS, Box, Laid, Layout, lay_out
 from phasebrush.figures.panels.panel import Place
 from phasebrush.figures.paper import PAPERS

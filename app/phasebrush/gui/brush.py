@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from phasebrush.core.runs import runs
 from phasebrush.model.intents import How, Intent, brush_rows
 from phasebrush.model.state import LETTERS, Letter
 
@@ -16,14 +17,6 @@ if TYPE_CHECKING:
     from phasebrush.gui.time_plot import Pointer
 
 EDGE_PIXELS = 5.0
-
-
-def runs(mask: NDArray[np.bool_]) -> list[tuple[int, int]]:
-    """Unbroken runs of True as (first, last), both included."""
-    padded = np.concatenate(([False], mask, [False])).astype(np.int8)
-    steps = np.diff(padded)
-    starts, ends = np.flatnonzero(steps == 1), np.flatnonzero(steps == -1) - 1
-    return list(zip(starts.tolist(), ends.tolist(), strict=True))
 
 
 @dataclass

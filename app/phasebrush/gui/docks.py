@@ -20,6 +20,7 @@ from phasebrush.gui.views.readout import ReadoutView
 from phasebrush.gui.views.recordings_list import RecordingsList
 from phasebrush.gui.views.subset_cards import SubsetCards
 from phasebrush.gui.views.traces import LockingTrace, PowerTrace
+from phasebrush.model.set_words import SET_WORDS, power_words
 
 if TYPE_CHECKING:
     from phasebrush.gui.view import View
@@ -44,7 +45,6 @@ PARTS: tuple[tuple[PowerPart, str, str], ...] = (
     ("evoked", "evoked", f"{PART_TIPS['evoked']} (P)"),
     ("induced", "induced", f"{PART_TIPS['induced']} (P)"),
 )
-SET_WORDS = {"all": "all trials", "A": "A", "B": "B", "A-B": "A − B"}
 
 
 @dataclass(frozen=True)
@@ -200,7 +200,7 @@ class Docks:
             n = f", n {maps.of[maps.shown].n}" if maps.shown in maps.of else ""  # type: ignore[index]
             start, end = maps.baseline_s
             self.itc.title_line.set_title(f"{maps.measure} · {words}{n}")
-            part = "Power" if maps.part == "total" else f"{maps.part.capitalize()} power"
+            part = power_words(maps.part)
             self.power.title_line.set_title(
                 f"{part} · {words}{n}, dB re baseline {seconds(start)[:-2]} to {seconds(end)}",
                 f"{part} · {words}{n}, dB",

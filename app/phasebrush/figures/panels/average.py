@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-import numpy as np
 from matplotlib.patches import Rectangle
 
+from phasebrush.core.runs import runs
 from phasebrush.figures.panels.panel import Panel, Place
 from phasebrush.figures.time_axis import draw_time_axis, draw_value_ticks
 from phasebrush.model.results import SET_NAMES
@@ -77,10 +77,8 @@ def _draw_clusters(place: Place, snapshot: Snapshot) -> None:
     compared = snapshot.compared.get("average")
     if compared is None or not compared.current:
         return
-    found = compared.comparison.outline(SIGNIFICANT_P)
-    edges = np.flatnonzero(np.diff(np.pad(found.astype(np.int8), 1)))
     times_s = compared.times_s
-    for first, last in zip(edges[::2], edges[1::2] - 1, strict=True):
+    for first, last in runs(compared.comparison.outline(SIGNIFICANT_P)):
         place.axes.add_patch(
             Rectangle(
                 (times_s[first], 0.0), times_s[last] - times_s[first], BAR,

@@ -13,6 +13,7 @@ from phasebrush.figures.panels.colour_bar import draw_colour_bar
 from phasebrush.figures.panels.panel import Panel, Place
 from phasebrush.figures.time_axis import draw_time_axis, plain
 from phasebrush.model.derive.maps import derive_maps, map_limits
+from phasebrush.model.set_words import SET_WORDS, power_words
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
@@ -26,7 +27,6 @@ if TYPE_CHECKING:
     Floats = NDArray[np.float64]
 
 Shown = Literal["locking", "power"]
-SET_WORDS = {"all": "all trials", "A": "A", "B": "B", "A-B": "A − B"}
 ROUND_HZ = (1, 2, 3, 4, 6, 8, 10, 13, 20, 30, 40, 60, 80, 100, 150, 200)
 NO_MAPS = "no maps: no channel is transformed"
 
@@ -52,7 +52,7 @@ def _titles(maps: Maps | None, kind: Shown) -> tuple[str, ...]:
     words = f"{SET_WORDS[maps.shown]}{n}"
     if kind == "locking":
         return f"{maps.measure}, {words}", maps.measure
-    part = "Power" if maps.part == "total" else f"{maps.part.capitalize()} power"
+    part = power_words(maps.part)
     return f"{part}, {words}", part
 
 

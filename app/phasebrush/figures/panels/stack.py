@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from matplotlib.ticker import FuncFormatter, MaxNLocator
 
+from phasebrush.core.runs import runs
 from phasebrush.core.stack_image import reduce_rows
 from phasebrush.figures.panels.panel import Panel, Place
 from phasebrush.figures.time_axis import draw_time_axis, plain
@@ -95,8 +96,7 @@ def _draw_groups(place: Place, rows: Rows) -> None:
 def rows_of(snapshot: Snapshot, letter: str, rows: Rows) -> list[tuple[int, int]]:
     """Blocks of rows of a subset, as (first, one past the last)."""
     members = snapshot.state.subset(letter).mask_of(snapshot.n_trials)  # type: ignore[arg-type]
-    edges = np.flatnonzero(np.diff(np.pad(members[rows.trial_of_row].astype(np.int8), 1)))
-    return [(int(a), int(b)) for a, b in zip(edges[::2], edges[1::2], strict=True)]
+    return [(first, last + 1) for first, last in runs(members[rows.trial_of_row])]
 
 
 def _draw_picks(place: Place, snapshot: Snapshot, rows: Rows) -> None:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -14,13 +13,14 @@ from phasebrush.figures.time_axis import draw_time_axis, draw_value_ticks, plain
 from phasebrush.look.colour_maps import mixed
 from phasebrush.model.methods.wording import typeset
 from phasebrush.model.stale import Result
+from phasebrush.model.step_kinds import ITC, POWER, PPC, PROJECTED
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
     from phasebrush.figures.style import Style
     from phasebrush.model.results import Snapshot, Steps
-    from phasebrush.model.state import Consistency
+    from phasebrush.model.step_kinds import Measured
 
 SHARES = (0.40, 0.20, 0.20, 0.20)
 """Of the panel's width: waveforms, alignment, power, projected response."""
@@ -57,56 +57,9 @@ def draw(place: Place, snapshot: Snapshot) -> None:
         return
     areas = _split(place)
     _draw_waves(areas[0], snapshot, steps, place.style)
-    for axes, drawn in zip(areas[1:], _measured(steps, snapshot.state.consistency), strict=True):
-        _draw_measure(axes, place.style, drawn, read=steps.valid)
-
-
-@dataclass(frozen=True)
-class Measured:
-    """One measure of the steps.
-
-    Parameters
-    ----------
-    name : str
-        With its unit.
-    values, bands : list
-        A value and the ends of its 95 % band for each step.
-    chance, predicted : list
-        Level of chance, and what a response of fixed shape would give, where there are any.
-    line : float
-        Level of the fixed-response line; NaN for none.
-    """
-
-    name: str
-    values: list[float]
-    bands: list[tuple[float, float]]
-    chance: list[float] = field(default_factory=list)
-    predicted: list[float] = field(default_factory=list)
-    line: float = float("nan")
-
-
-def _measured(steps: Steps, measure: Consistency) -> tuple[Measured, Measured, Measured]:
-    """Alignment, power and projected response."""
-    of, fixed = steps.of, steps.fixed
-    checks = () if fixed is None else fixed.of
-    if measure == "ITC":
-        aligned = Measured(
-            "ITC", [x.itc for x in of], [x.itc_band for x in of], [x.chance_itc for x in of],
-            [x.expected_itc for x in checks],
-        )  # fmt: skip
-    else:
-        aligned = Measured(
-            "PPC", [x.ppc for x in of], [x.ppc_band for x in of], [x.chance_ppc for x in of],
-            [x.expected_ppc for x in checks],
-        )  # fmt: skip
-    power = Measured("power (dB re 1 µV²)", [x.power_db for x in of], [x.power_band_db for x in of])
-    projected = Measured(
-        "projected (µV)",
-        [x.projected_uv for x in checks],
-        [(x.projected_uv - x.band_uv, x.projected_uv + x.band_uv) for x in checks],
-        line=float("nan") if fixed is None else fixed.line_uv,
-    )
-    return aligned, power, projected
+    aligned = ITC if snapshot.state.consistency == "ITC" else PPC
+    for axes, measured in zip(areas[1:], (aligned, POWER, PROJECTED), strict=True):
+        _draw_measure(axes, place.style, measured, steps)
 
 
 def _split(place: Place) -> list[Axes]:
@@ -150,32 +103,34 @@ def _draw_waves(axes: Axes, snapshot: Snapshot, steps: Steps, style: Style) -> N
     draw_time_axis(axes, snapshot, style, named=True)
 
 
-def _draw_measure(axes: Axes, style: Style, drawn: Measured, *, read: bool) -> None:
+def _draw_measure(axes: Axes, style: Style, measured: Measured, steps: Steps) -> None:
     """Draw a dot with its band a step; dotted chance, open diamonds of a fixed response."""
-    axes.set_ylabel(drawn.name)
+    axes.set_ylabel(measured.name)
     axes.set_xlabel("step")
-    at = np.arange(1, len(drawn.values) + 1)
+    values = measured.values(steps)
+    at = np.arange(1, len(values) + 1)
     axes.xaxis.set_major_locator(FixedLocator(at.tolist()))
     axes.set_xlim(0.4, max(1, at.size) + 0.6)
     draw_value_ticks(axes)
-    if not read or not drawn.values:
+    if not steps.valid or not values:
         axes.text(0.5, 0.5, "not read", transform=axes.transAxes, ha="center", va="center",
                   size=style.small_pt, color=style.look.muted)  # fmt: skip
         return
     colour, muted = style.look.text, style.look.muted
-    for x, (low, high) in zip(at, drawn.bands, strict=True):
+    for x, (low, high) in zip(at, measured.bands(steps), strict=True):
         axes.plot([x, x], [low, high], color=colour, linewidth=0.6 * style.thick)
-    axes.plot(at, drawn.values, linestyle="none", marker="o", color=colour, zorder=4,
+    axes.plot(at, values, linestyle="none", marker="o", color=colour, zorder=4,
               markersize=0.4 * style.font_pt, markeredgewidth=0.0)  # fmt: skip
-    for x, level in zip(at, drawn.chance, strict=False):
+    for x, level in zip(at, measured.chances(steps), strict=False):
         axes.plot([x - 0.35, x + 0.35], [level, level], color=muted,
                   linewidth=2 * style.thin, linestyle=(0, (1, 1.2)))  # fmt: skip
-    if drawn.predicted:
-        axes.plot(at, drawn.predicted, linestyle="none", marker="D", markerfacecolor="none",
+    predicted, line = measured.predicted(steps), measured.line(steps)
+    if predicted:
+        axes.plot(at, predicted, linestyle="none", marker="D", markerfacecolor="none",
                   markeredgecolor=muted, markersize=0.5 * style.font_pt, zorder=3,
                   markeredgewidth=1.6 * style.thin)  # fmt: skip
-    if np.isfinite(drawn.line):
-        axes.axhline(drawn.line, color=muted, linestyle=(0, (4, 2)), linewidth=2 * style.thin)
+    if np.isfinite(line):
+        axes.axhline(line, color=muted, linestyle=(0, (4, 2)), linewidth=2 * style.thin)
 
 
 STEPS = Panel(

@@ -10,6 +10,7 @@ from phasebrush.figures.panels.average import draw_legend
 from phasebrush.figures.panels.panel import Panel, Place
 from phasebrush.figures.time_axis import draw_time_axis, draw_value_ticks, plain
 from phasebrush.model.results import SET_NAMES
+from phasebrush.model.set_words import power_words
 from phasebrush.model.stale import Result
 
 if TYPE_CHECKING:
@@ -34,7 +35,7 @@ def _titles(snapshot: Snapshot, kind: Shown) -> tuple[str, ...]:
     if kind == "locking":
         words = f"{traces.measure}, {band}"
         return f"{words} (dotted: chance 5 %)", words, traces.measure
-    part = "Power" if traces.part == "total" else f"{traces.part.capitalize()} power"
+    part = power_words(traces.part)
     return f"{part}, {band}", part
 
 

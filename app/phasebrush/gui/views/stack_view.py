@@ -8,9 +8,9 @@ import numpy as np
 import pyqtgraph as pg
 from PySide6.QtCore import QRectF
 
+from phasebrush.core.runs import runs
 from phasebrush.core.stack_image import reduce_columns, reduce_rows
 from phasebrush.gui import theme
-from phasebrush.gui.brush import runs
 from phasebrush.gui.pixel_image import PixelImage, packed
 from phasebrush.gui.row_edges import RowEdges
 from phasebrush.gui.time_plot import Margins, Pointer, pen

@@ -19,7 +19,7 @@ if TYPE_CHECKING:
 
     from PySide6.QtGui import QTransform
 
-    from phasebrush.gui.views.step_kinds import Ends, Numbers
+    from phasebrush.model.step_kinds import Ends, Numbers
 
     Place = Callable[[float, float], QPointF]
 

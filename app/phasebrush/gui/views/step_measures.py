@@ -8,7 +8,7 @@ import pyqtgraph as pg
 
 from phasebrush.gui.time_plot import Margins, TimePlot, pen
 from phasebrush.gui.views.step_bars import ErrorBars, StepValues
-from phasebrush.gui.views.step_kinds import MEASURES, Measured
+from phasebrush.model.step_kinds import MEASURES, Measured
 
 if TYPE_CHECKING:
     from PySide6.QtWidgets import QWidget

@@ -15,8 +15,8 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
+from phasebrush.core.runs import runs
 from phasebrush.gui import theme
-from phasebrush.gui.brush import runs
 from phasebrush.gui.views.trial_rows import SET_COLUMN, TrialRows
 
 if TYPE_CHECKING:
