@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 from phasebrush import __version__
 from phasebrush.errors import InputError
-from phasebrush.model.recording_hash import read_content
+from phasebrush.model.recording_hash import ContentShelf
 from phasebrush.model.workspace import to_workspace
 from phasebrush.model.workspace_file import workspace_bytes
 
@@ -39,6 +39,7 @@ def recipe(
     snapshot: Snapshot,
     *,
     page: Page | None = None,
+    contents: ContentShelf | None = None,
     stopped: Callable[[], bool] | None = None,
 ) -> dict[str, Any]:
     """Say what the numbers of a snapshot hang on.
@@ -51,6 +52,8 @@ def recipe(
         Record and results.
     page : Page, optional
         The figure page, for figures.
+    contents : ContentShelf, optional
+        What was read already; without it the recording's files are read from end to end.
     stopped : callable, optional
         Asked while the recording is read.
 
@@ -69,7 +72,7 @@ def recipe(
     settings = _settings(snapshot)
     found: dict[str, Any] = {
         "versions": versions(),
-        "recording_sha256": _recording_hash(state.recording, stopped),
+        "recording_sha256": _recording_hash(state.recording, contents or ContentShelf(), stopped),
         "workspace_sha256": _hash(settings),
         "settings": settings,
     }
@@ -79,12 +82,14 @@ def recipe(
     return found
 
 
-def _recording_hash(path: str, stopped: Callable[[], bool] | None) -> str:
+def _recording_hash(
+    path: str, contents: ContentShelf, stopped: Callable[[], bool] | None
+) -> str:
     """Hash of the data files; unknown where they cannot be read any more."""
     if not path:
         return UNKNOWN
     try:
-        return read_content(path, stopped=stopped).sha256
+        return contents.read(path, stopped=stopped).sha256
     except InputError:
         return UNKNOWN
 

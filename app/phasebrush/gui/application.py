@@ -7,7 +7,7 @@ import os
 import sys
 import time
 from dataclasses import dataclass
-from functools import partial
+from functools import cache, partial
 from pathlib import Path
 
 import pyqtgraph as pg
@@ -58,12 +58,18 @@ class Wish:
     channel: str = ""
 
 
+@cache
+def _has_display() -> bool:
+    """Whether a window can be shown; tried once, as each try starts a process."""
+    return display_answers()
+
+
 def application() -> QApplication:
     """The one QApplication; without a display Qt draws into memory."""
     existing = QApplication.instance()
     if isinstance(existing, QApplication):
         return existing
-    if "QT_QPA_PLATFORM" not in os.environ and not display_answers():
+    if "QT_QPA_PLATFORM" not in os.environ and not _has_display():
         os.environ["QT_QPA_PLATFORM"] = "offscreen"
     pg.setConfigOptions(antialias=False, imageAxisOrder="row-major", useNumba=False)
     # A collection costs a brush step about a millisecond; cycles are few and small here.
@@ -102,7 +108,7 @@ def run(wish: Wish) -> int:
     InputError
         With ``picture``: if the recording cannot be opened or the picture not written.
     """
-    if not wish.picture and "QT_QPA_PLATFORM" not in os.environ and not display_answers():
+    if not wish.picture and "QT_QPA_PLATFORM" not in os.environ and not _has_display():
         raise InputError(
             "there is no display to open the window on", "add --picture OUT.png to save a picture"
         )

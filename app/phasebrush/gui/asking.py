@@ -209,7 +209,8 @@ class Asking:
         """What writes files and pictures in jobs."""
         from phasebrush.gui.leaving import Leaving
 
-        return Leaving(self._window.workbench, self._window.message_bar.say)
+        window = self._window
+        return Leaving(window.workbench, window.keeper.contents, window.message_bar.say)
 
     def save_work(self) -> None:
         """Save where it was saved before, else ask where."""

@@ -24,6 +24,7 @@ if TYPE_CHECKING:
     from phasebrush.exports.bundle import Part
     from phasebrush.model.jobs import Progress
     from phasebrush.model.pages import Page
+    from phasebrush.model.recording_hash import ContentShelf
     from phasebrush.model.results import Snapshot
     from phasebrush.model.workbench import Workbench
 
@@ -42,12 +43,17 @@ class Leaving:
     ----------
     workbench : Workbench
         Whose snapshot is drawn and written.
+    contents : ContentShelf
+        What the window's recordings hold, as far as they were read for it.
     say : callable
         Takes a line for the person.
     """
 
-    def __init__(self, workbench: Workbench, say: Callable[[str], None]) -> None:
+    def __init__(
+        self, workbench: Workbench, contents: ContentShelf, say: Callable[[str], None]
+    ) -> None:
         self._bench = workbench
+        self._contents = contents
         self._say = say
 
     def preview(
@@ -70,7 +76,7 @@ class Leaving:
 
     def save_page(self, page: Page, path: str) -> None:
         """Save a page as PNG, SVG or PDF."""
-        work = partial(_save_page, self._bench.snapshot, page, path)
+        work = partial(_save_page, self._bench.snapshot, page, path, self._contents)
         self._start(f"saving {Path(path).name}", work, self._saved)
 
     def copy_page(self, page: Page) -> None:
@@ -82,7 +88,9 @@ class Leaving:
         self, parts: tuple[Part, ...], folder: str, stem: str, *, report: str, page: Page
     ) -> None:
         """Write parts of the work into a folder, and the report where a path for it is given."""
-        work = partial(_export, self._bench.snapshot, parts, folder, stem, report, page)
+        work = partial(
+            _export, self._bench.snapshot, parts, folder, stem, report, page, self._contents
+        )
         self._start("writing numbers", work, self._exported)
 
     def _start(
@@ -113,8 +121,10 @@ def _picture(snapshot: Snapshot, page: Page, progress: Progress) -> bytes:
     return page_bytes(snapshot, page, ".png", stopped=progress.stopped)
 
 
-def _save_page(snapshot: Snapshot, page: Page, path: str, progress: Progress) -> str:
-    how = recipe(snapshot, page=page, stopped=progress.stopped)
+def _save_page(
+    snapshot: Snapshot, page: Page, path: str, contents: ContentShelf, progress: Progress
+) -> str:
+    how = recipe(snapshot, page=page, contents=contents, stopped=progress.stopped)
     progress.report(HASHED)
     save_page(
         snapshot, page, path, recipe=how, stopped=progress.stopped,
@@ -130,10 +140,11 @@ def _export(
     stem: str,
     report: str,
     page: Page,
+    contents: ContentShelf,
     progress: Progress,
 ) -> Written:
     """Write the report first: the tables are all there or none, and come last."""
-    how = recipe(snapshot, stopped=progress.stopped)
+    how = recipe(snapshot, contents=contents, stopped=progress.stopped)
     progress.report(HASHED)
     own: tuple[Path, ...] = ()
     if report:

@@ -59,12 +59,17 @@ class WorkKeeper:
         Whose work is kept.
     recovery : Recovery or None
         Where unsaved work is kept aside; nowhere where none is given.
+
+    Attributes
+    ----------
+    contents : ContentShelf
+        What recordings hold, so that none is read a second time for its hash.
     """
 
     def __init__(self, bench: Workbench, recovery: Recovery | None = None) -> None:
         self._bench = bench
         self._recovery = recovery
-        self._contents = ContentShelf()
+        self.contents = ContentShelf()
         self._known: dict[str, Content] = {}
         self._saved: State | None = None
         self._told_aside = ""
@@ -106,7 +111,7 @@ class WorkKeeper:
         for done, place in enumerate(places):
             # One that cannot be read just now keeps what was known of it.
             with contextlib.suppress(InputError):
-                known[place] = self._contents.read(place, stopped=progress.stopped)
+                known[place] = self.contents.read(place, stopped=progress.stopped)
             progress.report((done + 1) / (len(places) + 1))
         save_workspace(path, to_workspace(state, trials, known, file=path))
         return known
@@ -151,7 +156,7 @@ class WorkKeeper:
         found = find_recordings(
             workspace,
             Path(file).parent if file else None,
-            self._contents,
+            self.contents,
             progress=lambda share: progress.report(0.5 * share),
             stopped=progress.stopped,
         )
