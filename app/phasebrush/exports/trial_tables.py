@@ -24,12 +24,8 @@ NOT_APPLICABLE = "n/a"
 
 def members(snapshot: Snapshot) -> dict[str, Mask]:
     """Who is in A, in B, excluded: bool of shape (trials,) each."""
-    state, n_trials = snapshot.state, snapshot.n_trials
-    excluded = state.excluded.mask_of(n_trials)
-    masks: dict[str, Mask] = {"excluded": excluded}
-    for letter in LETTERS:
-        masks[letter] = state.subset(letter).mask_of(n_trials) & ~excluded
-    return masks
+    masks = snapshot.state.masks(snapshot.n_trials)
+    return {"A": masks["A"], "B": masks["B"], "excluded": ~masks["all"]}
 
 
 def trial_table(snapshot: Snapshot) -> Table:

@@ -9,7 +9,6 @@ import numpy as np
 
 from phasebrush.core.comparison import FEW_TRIALS, unequal_counts
 from phasebrush.model.methods.wording import chosen_how, counted, listed, span
-from phasebrush.model.state import LETTERS
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -45,9 +44,8 @@ def before_test(snapshot: Snapshot) -> BeforeTest:
     """Look at A and B as they would be tested now, by what the record says is compared."""
     if snapshot.trials is None:
         return BeforeTest(0, 0, (NO_RECORDING,), ())
-    state, n_trials = snapshot.state, snapshot.n_trials
-    used = ~state.excluded.mask_of(n_trials)
-    a, b = (state.subset(letter).mask_of(n_trials) & used for letter in LETTERS)
+    masks = snapshot.state.masks(snapshot.n_trials)
+    a, b = masks["A"], masks["B"]
     n_a, n_b, shared = (int(np.count_nonzero(mask)) for mask in (a, b, a & b))
     refused = [*_too_few(n_a, n_b)]
     if shared:

@@ -95,15 +95,6 @@ class Deriver:
         """The channel as transformed; None while that is under way."""
         return self._work
 
-    def masks(self, state: State, n_trials: int) -> dict[SetName, NDArray[np.bool_]]:
-        """Membership of every set of trials."""
-        used = ~state.excluded.mask_of(n_trials)
-        return {
-            "all": used,
-            "A": state.a.mask_of(n_trials) & used,
-            "B": state.b.mask_of(n_trials) & used,
-        }
-
     def run(
         self, state: State, stale: frozenset[Result], *, keep_scales: bool
     ) -> frozenset[Result]:
@@ -171,7 +162,7 @@ class Deriver:
         """The test of A against B as it would be asked now; None while there are no maps."""
         if self._work is None:
             return None
-        masks = self.masks(state, len(self._work.question.trials))
+        masks = state.masks(len(self._work.question.trials))
         circles = derive.find_circles(state, self._work.coefficients.settings)
         return CompareQuestion(
             self._work, state.tested, masks["A"], masks["B"], state.baseline_s,
@@ -285,7 +276,7 @@ class Deriver:
     def _subsets(self, state: State) -> bool:
         if self._work is None:
             return False
-        masks = self.masks(state, len(self._work.question.trials))
+        masks = state.masks(len(self._work.question.trials))
         for name, mask in masks.items():
             sums = self._work.sums[name]
             before = sums.frozen()
@@ -379,7 +370,7 @@ class Deriver:
             return False
         question = RestQuestion(
             self._work,
-            self.masks(state, len(self._work.question.trials)),
+            state.masks(len(self._work.question.trials)),
             state.spot,
             derive.band_rows(self._work.coefficients.freqs_hz, state.spot),
             state.baseline_s,

@@ -5,13 +5,14 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal, get_args
 
+from phasebrush.core.comparison import Quantity
+
 PanelName = Literal[
     "average", "stack", "locking-map", "power-map", "locking-difference", "power-difference",
     "locking-trace", "power-trace", "dial", "steps",
 ]  # fmt: skip
 PaperName = Literal["slide", "a4", "single-column", "double-column"]
 LookName = Literal["light", "dark"]
-TestedName = Literal["ITC", "PPC", "power", "average"]
 LEAST_PT, MOST_PT = 5.0, 32.0
 LEAST_DPI, MOST_DPI = 50, 1200
 
@@ -56,7 +57,7 @@ class Page:
     font_pt: float = 10.0
     dpi: int = 200
     caption: str | None = None
-    tested: tuple[TestedName, ...] = ()
+    tested: tuple[Quantity, ...] = ()
 
     def __post_init__(self) -> None:
         # 8 and 8.0 are the same size, but not the same text in a recipe.
@@ -67,7 +68,7 @@ class Page:
                 f"panels {', '.join(self.panels) or '(none)'}; give each at most once, of "
                 f"{', '.join(get_args(PanelName))}"
             )
-        if not set(self.tested) <= set(get_args(TestedName)):
+        if not set(self.tested) <= set(get_args(Quantity)):
             raise ValueError(f"tests {', '.join(self.tested)} are not all known")
         if self.columns not in (1, 2):
             raise ValueError(f"{self.columns} columns; give 1 or 2")

@@ -45,7 +45,7 @@ class SlowWork:
 
     def transform(self, question: ChannelQuestion) -> None:
         """Transform a channel."""
-        masks = self.deriver.masks(self._bench.state, len(question.trials))
+        masks = self._bench.state.masks(len(question.trials))
         self._bench.jobs.start(
             Job(
                 "transform",

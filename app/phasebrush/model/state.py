@@ -5,12 +5,16 @@ from __future__ import annotations
 from dataclasses import dataclass, fields
 from typing import TYPE_CHECKING, Literal
 
+from phasebrush.core.comparison import Quantity
 from phasebrush.core.sort_keys import SortKey
 from phasebrush.core.spot import Spot
 from phasebrush.core.transform_settings import TransformSettings
 from phasebrush.model.subset import NOBODY, Subset
 
 if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
     from phasebrush.core.trials import Cut
     from phasebrush.model.members import Members
     from phasebrush.model.pages import Page
@@ -20,7 +24,7 @@ SetName = Literal["all", "A", "B"]
 MapsShow = Literal["all", "A", "B", "A-B"]
 Consistency = Literal["ITC", "PPC"]
 PowerPart = Literal["total", "evoked", "induced"]
-Tested = Literal["ITC", "PPC", "power", "average"]
+Tested = Quantity
 DEFAULT_TRANSFORM, DEFAULT_KEY, DEFAULT_SPOT = TransformSettings(), SortKey(), Spot()
 FEWEST_DRAWS, MOST_DRAWS = 100, 100_000
 SET_NAMES: tuple[SetName, ...] = ("all", "A", "B")
@@ -188,6 +192,15 @@ class State:
     def subset(self, letter: Letter) -> Subset:
         """Subset A or B."""
         return self.a if letter == "A" else self.b
+
+    def masks(self, n_trials: int) -> dict[SetName, NDArray[np.bool_]]:
+        """Who takes part in every set, bool of shape (trials,) each; excluded trials in none."""
+        used = ~self.excluded.mask_of(n_trials)
+        return {
+            "all": used,
+            "A": self.a.mask_of(n_trials) & used,
+            "B": self.b.mask_of(n_trials) & used,
+        }
 
     def note(self, recording: str) -> str:
         """The note about a recording; empty where there is none."""

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QEvent, QObject, QSize, Qt
-from PySide6.QtGui import QKeyEvent, QPixmap, QResizeEvent
+from PySide6.QtGui import QKeyEvent, QPainter, QPixmap, QResizeEvent
 from PySide6.QtWidgets import (
     QComboBox,
     QDialog,
@@ -32,10 +32,8 @@ from phasebrush.model.stale import Result
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from PySide6.QtGui import QCloseEvent
-
     from phasebrush.gui.leaving import Leaving
-    from phasebrush.model.pages import TestedName
+    from phasebrush.model.state import Tested
     from phasebrush.model.workbench import Workbench
 
 KINDS = "PNG picture (*.png);;SVG drawing (*.svg);;PDF page (*.pdf)"
@@ -100,8 +98,6 @@ class Preview(QLabel):
 
 
 def _paler(page: QPixmap) -> QPixmap:
-    from PySide6.QtGui import QPainter
-
     paler = QPixmap(page.size())
     paler.fill(Qt.GlobalColor.transparent)
     painter = QPainter(paler)
@@ -201,7 +197,7 @@ class FigureDialog(QDialog):
     def page(self) -> Page | None:
         """The page as it is asked for now; None while no panel is ticked."""
         compared = self._bench.snapshot.compared
-        tested: tuple[TestedName, ...] = tuple(x for x, test in compared.items() if test.current)
+        tested: tuple[Tested, ...] = tuple(x for x, test in compared.items() if test.current)
         return self.controls.page(self.kept.currentText().strip() or UNNAMED, tested)
 
     def show_snapshot(self, changed: frozenset[Result]) -> None:
@@ -320,12 +316,6 @@ class FigureDialog(QDialog):
         self._leaving.forget_preview()
         self._want_steps(False)
         super().done(result)
-
-    def closeEvent(self, event: QCloseEvent) -> None:
-        """Nobody looks any more."""
-        self._leaving.forget_preview()
-        self._want_steps(False)
-        super().closeEvent(event)
 
 
 def _button(words: str, name: str, tip: str) -> QPushButton:

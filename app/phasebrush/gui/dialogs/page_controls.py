@@ -24,7 +24,8 @@ from phasebrush.gui.views.order_panel import number_box
 from phasebrush.model.pages import LEAST_DPI, LEAST_PT, MOST_DPI, MOST_PT, LookName, Page, PaperName
 
 if TYPE_CHECKING:
-    from phasebrush.model.pages import PanelName, TestedName
+    from phasebrush.model.pages import PanelName
+    from phasebrush.model.state import Tested
 
 ROLE = Qt.ItemDataRole.UserRole
 USUAL_PT = {"slide": 11.0, "a4": 9.0, "single-column": 7.0, "double-column": 7.0}
@@ -122,7 +123,7 @@ class PageControls(QWidget):
         if self._own_caption is None and self.caption.toPlainText() != words:
             self._write_caption(words)
 
-    def page(self, name: str, tested: tuple[TestedName, ...]) -> Page | None:
+    def page(self, name: str, tested: tuple[Tested, ...]) -> Page | None:
         """The page as it is asked for; None while no panel is ticked."""
         items = [self.panels.item(row) for row in range(self.panels.count())]
         panels = tuple(

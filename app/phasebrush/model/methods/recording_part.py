@@ -135,7 +135,7 @@ def subset_words(snapshot: Snapshot) -> str:
     state, trials = snapshot.state, snapshot.trials
     if trials is None:
         return ""
-    masks = _masks(state, trials)
+    masks = state.masks(len(trials))
     given = [letter for letter in LETTERS if masks[letter].any()]
     if not given:
         return "All trials that were not excluded were studied together."
@@ -150,11 +150,6 @@ def subset_words(snapshot: Snapshot) -> str:
     if len(given) == 2:
         said.append(f"{counted(shared, 'trial') if shared else 'No trial'} belonged to both.")
     return " ".join((*said, *_circular_words(snapshot)))
-
-
-def _masks(state: State, trials: Trials) -> dict[str, NDArray[np.bool_]]:
-    used = ~state.excluded.mask_of(len(trials))
-    return {letter: state.subset(letter).mask_of(len(trials)) & used for letter in LETTERS}
 
 
 def _circular_words(snapshot: Snapshot) -> list[str]:
