@@ -36,5 +36,13 @@ class InputError(PersonError):
     """An input that cannot be used: a recording, a side file, an option or a workspace."""
 
 
+def reason_of(fault: OSError) -> str:
+    """Give the system's own word for a fault (``Permission denied``).
+
+    Its full text holds the whole path, which may name a participant.
+    """
+    return fault.strerror or "no reason given"
+
+
 class JobStopped(Exception):  # noqa: N818 - a stop that was asked for is no error
     """Raised inside long work when the person asked it to stop."""

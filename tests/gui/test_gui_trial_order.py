@@ -33,7 +33,8 @@ from window_tools import (
     wait_for,
 )
 
-from phasebrush.gui.views.trial_columns import decimals_for, for_spreadsheet
+from phasebrush.exports.table import safe_cell
+from phasebrush.gui.views.trial_columns import decimals_for
 from phasebrush.model import intents
 
 TRIAL, ONSET, LABEL, RESPONSE, KEY, SET, BRIGHTNESS = range(7)
@@ -248,7 +249,7 @@ def test_without_a_selection_everything_is_copied(window, view):
 )
 def test_no_cell_of_text_is_a_formula(text, safe):
     """Common practice, no source, for the line ends."""
-    assert for_spreadsheet(text) == safe
+    assert safe_cell(text) == safe
 
 
 def test_labels_and_names_of_columns_are_guarded_too(qapp, trials):

@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 
 from phasebrush.cli.command import Command
-from phasebrush.errors import InputError
+from phasebrush.errors import InputError, reason_of
 
 
 def _seed(text: str) -> int:
@@ -42,7 +42,7 @@ def _run_synth(arguments: argparse.Namespace) -> int:
             written = write_session(name, arguments.folder, seed=arguments.seed)
         except OSError as error:
             raise InputError(
-                f"could not be written ({error.strerror or 'no reason given'})",
+                f"could not be written ({reason_of(error)})",
                 "choose a folder that can be written",
                 arguments.folder,
             ) from error

@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING, Any, Literal
 
 import numpy as np
 
-from phasebrush.errors import InputError, JobStopped
+from phasebrush.errors import InputError, JobStopped, reason_of
 from phasebrush.exports.places import move_in, spare_recording
 from phasebrush.exports.result_tables import (
     average_table,
@@ -130,7 +130,7 @@ def export(
             move_in(Path(drafts), place, tuple(files))
     except OSError as fault:
         raise InputError(
-            f"could not be written ({fault.strerror or 'no reason given'})",
+            f"could not be written ({reason_of(fault)})",
             "choose a folder that can be written and has room",
             place,
         ) from fault

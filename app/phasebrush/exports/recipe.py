@@ -82,9 +82,7 @@ def recipe(
     return found
 
 
-def _recording_hash(
-    path: str, contents: ContentShelf, stopped: Callable[[], bool] | None
-) -> str:
+def _recording_hash(path: str, contents: ContentShelf, stopped: Callable[[], bool] | None) -> str:
     """Hash of the data files; unknown where they cannot be read any more."""
     if not path:
         return UNKNOWN

@@ -8,7 +8,7 @@ import sys
 import time
 from dataclasses import dataclass
 from functools import cache, partial
-from pathlib import Path
+from typing import TYPE_CHECKING
 
 import pyqtgraph as pg
 from platformdirs import user_config_path, user_data_path
@@ -26,6 +26,9 @@ from phasebrush.model import intents
 from phasebrush.model.recovery import Recovery, offers
 from phasebrush.model.swap_in import make_private_file, make_private_folder
 from phasebrush.model.workbench import Workbench
+
+if TYPE_CHECKING:
+    from pathlib import Path
 
 LONGEST_PICTURE_S = 300.0
 
@@ -170,7 +173,8 @@ def _draw_picture(
     if wish.parts:
         bench.do(intents.pick_parts(dict(wish.parts)))  # type: ignore[arg-type]
         wait()
-    _swap_in_picture(window, Path(wish.picture))
+    if not window.save_picture(wish.picture):
+        raise InputError("could not be written", "name a file in a folder of yours", wish.picture)
 
 
 def _named(fault: BaseException, path: str) -> BaseException:
@@ -178,21 +182,6 @@ def _named(fault: BaseException, path: str) -> BaseException:
     if isinstance(fault, InputError) and not fault.file:
         return InputError(fault.wrong, fault.remedy, path)
     return fault
-
-
-def _swap_in_picture(window: MainWindow, target: Path) -> None:
-    beside = target.with_name(f".{target.name}.part")
-    try:
-        if target.is_dir() or not window.save_picture(str(beside)):
-            raise InputError("could not be written", "name a file in a folder of yours", target)
-        beside.replace(target)
-    except OSError as error:
-        reason = error.strerror or "no reason given"
-        raise InputError(
-            f"could not be written ({reason})", "name a file in a folder of yours", target
-        ) from error
-    finally:
-        beside.unlink(missing_ok=True)
 
 
 def _wait(app: QApplication, window: MainWindow, path: str, faults: list[BaseException]) -> None:

@@ -9,7 +9,7 @@ from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QBuffer, QByteArray, QIODevice, QSettings, QTimer
+from PySide6.QtCore import QSettings, QTimer
 from PySide6.QtWidgets import (
     QApplication,
     QMainWindow,
@@ -28,6 +28,7 @@ from phasebrush.gui.docks import Docks
 from phasebrush.gui.foot import Foot
 from phasebrush.gui.frame_clock import FrameClock
 from phasebrush.gui.message_bar import MessageBar
+from phasebrush.gui.png import png_bytes
 from phasebrush.gui.trouble import Trouble
 from phasebrush.gui.view import View, Ways
 from phasebrush.gui.view_board import ViewBoard
@@ -328,13 +329,11 @@ class MainWindow(QMainWindow):
 
         Then a picture that was there is there still.
         """
-        content = QByteArray()
-        buffer = QBuffer(content)
-        buffer.open(QIODevice.OpenModeFlag.WriteOnly)
-        if not self.grab().save(buffer, "PNG"):
+        content = png_bytes(self.grab())
+        if not content:
             return False
         try:
-            swap_in(path, lambda stream: stream.write(content.data()))
+            swap_in(path, lambda stream: stream.write(content))
         except InputError:
             return False
         return True

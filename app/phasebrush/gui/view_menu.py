@@ -6,12 +6,13 @@ from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QBuffer, QIODevice, Qt
+from PySide6.QtCore import Qt
 from PySide6.QtGui import QColor, QGuiApplication, QPixmap
 from PySide6.QtWidgets import QFileDialog, QMenu
 
 from phasebrush.errors import PersonError
 from phasebrush.gui.file_names import may_replace, with_ending
+from phasebrush.gui.png import png_bytes
 from phasebrush.model.pages import Page
 from phasebrush.model.swap_in import swap_in
 
@@ -102,15 +103,8 @@ class ViewMenu:
             self._window.asking.leaving().save_page(page, path)
             return
         try:
-            swap_in(path, lambda stream: stream.write(_png_bytes(picture_of(view))))
+            swap_in(path, lambda stream: stream.write(png_bytes(picture_of(view))))
         except PersonError as fault:
             self._window.message_bar.say(fault.line)
             return
         self._window.message_bar.say(f"{Path(path).name} is saved")
-
-
-def _png_bytes(picture: QPixmap) -> bytes:
-    buffer = QBuffer()
-    buffer.open(QIODevice.OpenModeFlag.WriteOnly)
-    picture.save(buffer, "PNG")
-    return bytes(buffer.data().data())

@@ -5,7 +5,7 @@ from __future__ import annotations
 import json
 from typing import TYPE_CHECKING, Any
 
-from phasebrush.errors import InputError
+from phasebrush.errors import InputError, reason_of
 from phasebrush.model.plain_records import MisfitError
 
 if TYPE_CHECKING:
@@ -33,7 +33,7 @@ def read_text(file: Path) -> str:
             data = stream.read(MOST_BYTES + 1)
     except OSError as fault:
         raise InputError(
-            f"cannot be read ({fault.strerror or 'no reason given'})",
+            f"cannot be read ({reason_of(fault)})",
             "check that you may read it",
             file,
         ) from fault

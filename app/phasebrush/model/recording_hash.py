@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from phasebrush.errors import InputError, JobStopped
+from phasebrush.errors import InputError, JobStopped, reason_of
 from phasebrush.recordings.events_table import events_table_beside
 
 if TYPE_CHECKING:
@@ -118,7 +118,7 @@ def read_content(
         return _hashed(data_files(path), progress, stopped)
     except OSError as fault:
         raise InputError(
-            f"cannot be read ({fault.strerror or 'no reason given'})",
+            f"cannot be read ({reason_of(fault)})",
             "check that it is there and that you may read it",
             path,
         ) from fault

@@ -12,7 +12,7 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from phasebrush.errors import InputError
+from phasebrush.errors import InputError, reason_of
 from phasebrush.model.process_lock import HeldFile, is_held
 from phasebrush.model.swap_in import make_private_folder, swap_in
 from phasebrush.model.workspace_file import WORKSPACE_ENDING, read_workspace, workspace_bytes
@@ -147,7 +147,7 @@ class Recovery:
 
     def _cannot(self, fault: OSError) -> InputError:
         return InputError(
-            f"work cannot be kept aside ({fault.strerror or 'no reason given'})",
+            f"work cannot be kept aside ({reason_of(fault)})",
             "save the workspace by hand now and then",
             self._folder,
         )

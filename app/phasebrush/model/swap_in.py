@@ -11,7 +11,7 @@ import time
 from pathlib import Path
 from typing import IO, TYPE_CHECKING
 
-from phasebrush.errors import InputError
+from phasebrush.errors import InputError, reason_of
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -61,7 +61,7 @@ def swap_in(
         _sweep(place)
     except OSError as error:
         raise InputError(
-            f"could not be written ({error.strerror or 'no reason given'})",
+            f"could not be written ({reason_of(error)})",
             "choose a folder that can be written and has room",
             Path(target),
         ) from error

@@ -4,19 +4,15 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from phasebrush.errors import InputError
+from phasebrush.errors import InputError, reason_of
 
 if TYPE_CHECKING:
     from pathlib import Path
 
 
 def unreadable(fault: OSError, path: Path) -> InputError:
-    """Put what the system says about a file into one line.
-
-    Only the system's own word for the fault is passed on (``Permission denied``); its full
-    text holds the whole path.
-    """
-    reason = fault.strerror or "no reason given"
+    """Put what the system says about a file into one line."""
+    reason = reason_of(fault)
     if isinstance(fault, PermissionError):
         return InputError(f"cannot be read ({reason})", "check that you may read it", path)
     return InputError(

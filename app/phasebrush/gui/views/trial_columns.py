@@ -8,6 +8,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from phasebrush.exports.table import safe_cell
+
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
@@ -25,17 +27,6 @@ SET_WORDS = (NOTHING, "■ A", "● B", "■●", "excluded")
 SET_PLAIN = ("", "A", "B", "A and B", "excluded")
 SET_RANK = np.array([3, 0, 2, 1, 4])
 """Sorted by set: A, A and B, B, the rest, excluded."""
-FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
-
-
-def for_spreadsheet(text: str) -> str:
-    """A cell of text that no spreadsheet takes for a formula, on one line.
-
-    Text that begins with one of ``= + - @``, a tab or a carriage return is kept from being
-    evaluated by a leading apostrophe (OWASP, "CSV Injection"; value from memory).
-    """
-    guarded = f"'{text}" if text.startswith(FORMULA_STARTS) else text
-    return " ".join(guarded.replace("\t", " ").splitlines())
 
 
 def sets_of(state: State, n_trials: int) -> NDArray[np.uint8]:
@@ -91,7 +82,7 @@ class Column:
     def plain(self, trial: int) -> str:
         """As it is copied: numbers at nine digits, nothing where there is none."""
         if self.texts is not None:
-            return for_spreadsheet(self.texts[trial])
+            return safe_cell(self.texts[trial])
         value = float(self.values[trial])
         return f"{value:.9g}" if math.isfinite(value) else ""
 

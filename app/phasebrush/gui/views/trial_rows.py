@@ -8,6 +8,7 @@ import numpy as np
 from PySide6.QtCore import QAbstractTableModel, QModelIndex, QObject, QPersistentModelIndex, Qt
 from PySide6.QtGui import QColor
 
+from phasebrush.exports.table import safe_cell
 from phasebrush.gui.views import trial_columns as columns
 from phasebrush.gui.views.drawer_parts import plain_tip
 from phasebrush.look.tokens import LIGHT, Look
@@ -186,7 +187,7 @@ class TrialRows(QAbstractTableModel):
 
     def text(self, mask: NDArray[np.bool_]) -> str:
         """Trials as tab-separated lines under a heading, in the order of the table."""
-        lines = ["\t".join(columns.for_spreadsheet(column.name) for column in self._columns)]
+        lines = ["\t".join(safe_cell(column.name) for column in self._columns)]
         for trial in self._trial_of_row[self.rows_of(mask)].tolist():
             cells = [column.plain(trial) for column in self._columns]
             cells[SET_COLUMN] = columns.SET_PLAIN[self._sets[trial]]
