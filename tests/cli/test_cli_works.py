@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import io
 import shutil
-import sys
 from dataclasses import replace
 from pathlib import Path
 
@@ -13,8 +12,6 @@ import pandas as pd
 import pypdf
 import pytest
 from calls import BRAINVISION, EDF, FIF, assert_refused, here, outside
-
-sys.path.insert(0, str(Path(__file__).resolve().parents[1]))
 
 from phasebrush.exports.recipe import recipe
 from phasebrush.figures.save import page_bytes

@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+import hashlib
 import io
+import json
+from dataclasses import replace
 
 import pandas as pd
 import pypdf
@@ -17,8 +20,9 @@ from window_tools import drag_rows, key, pick_both, settle, strike, turn, wait_f
 
 from phasebrush.exports.recipe import recipe
 from phasebrush.figures.caption import caption
-from phasebrush.figures.save import page_bytes
+from phasebrush.figures.save import PNG_KEYWORD, page_bytes
 from phasebrush.gui.file_names import fit_for_a_file, with_ending
+from phasebrush.model import recording_hash
 from phasebrush.model.pages import Page
 
 CTRL = Qt.KeyboardModifier.ControlModifier
@@ -213,6 +217,31 @@ def test_a_page_goes_to_the_clipboard(window, figure):
     assert (image.width(), image.height()) == (2666, 1500)
     assert said(window) == ["the page is on the clipboard"]
     QGuiApplication.clipboard().clear()
+
+
+def test_the_recording_is_hashed_once_for_all_that_leaves(
+    open_window, trials, tmp_path, monkeypatch
+):
+    file = tmp_path / "made-up.edf"
+    file.write_bytes(b"not looked into")
+    plain, reads = recording_hash.read_content, []
+
+    def counted(path, **more):
+        reads.append(path)
+        return plain(path, **more)
+
+    monkeypatch.setattr(recording_hash, "read_content", counted)
+    window = open_window(replace(trials, source=replace(trials.source, path=str(file))))
+    settle(window)
+    for name in ("one.png", "two.png"):
+        window.asking.leaving().save_page(Page(dpi=50), str(tmp_path / name))
+        settle(window)
+    hashes = [
+        json.loads(Image.open(tmp_path / name).text[PNG_KEYWORD])["recording_sha256"]
+        for name in ("one.png", "two.png")
+    ]
+    assert hashes == [hashlib.sha256(b"not looked into").hexdigest()] * 2
+    assert len(reads) == 1
 
 
 def test_a_copy_does_not_end_a_save(open_window, trials, tmp_path, monkeypatch):

@@ -19,8 +19,6 @@ from phasebrush.errors import InputError
 if TYPE_CHECKING:
     import argparse
 
-    from phasebrush.model.pages import Page
-    from phasebrush.model.replay import Wanted
     from phasebrush.model.results import Snapshot
 
 
@@ -37,17 +35,9 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
     )
 
 
-def wanted_for(page: Page) -> Wanted:
-    """Slower answers that are on a page."""
-    from phasebrush.figures.needs import panels_need
-    from phasebrush.model.replay import Wanted
-
-    needs = panels_need(page)
-    return Wanted(rested=needs.rested, steps=needs.steps, tested=page.tested)
-
-
 def _run(arguments: argparse.Namespace) -> int:
     from phasebrush.exports.recipe import recipe
+    from phasebrush.figures.needs import panels_need
     from phasebrush.figures.save import FORMATS, save_page
 
     out = Path(arguments.out)
@@ -62,7 +52,7 @@ def _run(arguments: argparse.Namespace) -> int:
         place = beside(out, given, several=len(recordings) > 1)
         save_page(snapshot, page, place, recipe=recipe(snapshot, page=page))
 
-    return each_recording(arguments.workspace, recordings, wanted_for(page), draw)
+    return each_recording(arguments.workspace, recordings, panels_need(page), draw)
 
 
 DRAW = Command("draw", "draw a figure page of a workspace", _arguments, _run)

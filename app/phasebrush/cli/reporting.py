@@ -6,7 +6,6 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from phasebrush.cli.command import Command
-from phasebrush.cli.drawing import wanted_for
 from phasebrush.cli.works import (
     Given,
     beside,
@@ -41,6 +40,7 @@ def _arguments(parser: argparse.ArgumentParser) -> None:
 def _run(arguments: argparse.Namespace) -> int:
     from phasebrush.exports.recipe import recipe
     from phasebrush.exports.report import REPORT_PAGE, report_bytes
+    from phasebrush.figures.needs import panels_need
     from phasebrush.model.swap_in import swap_in
 
     out = Path(arguments.out)
@@ -55,7 +55,7 @@ def _run(arguments: argparse.Namespace) -> int:
             beside(out, given, several=len(recordings) > 1), lambda stream: stream.write(content)
         )
 
-    return each_recording(arguments.workspace, recordings, wanted_for(page), write)
+    return each_recording(arguments.workspace, recordings, panels_need(page), write)
 
 
 REPORT = Command("report", "write the session report of a workspace", _arguments, _run)

@@ -12,18 +12,16 @@ from phasebrush.figures.time_axis import draw_time_axis, draw_value_ticks, plain
 from phasebrush.model.results import SET_NAMES
 from phasebrush.model.set_words import power_words
 from phasebrush.model.stale import Result
+from phasebrush.model.trace_scale import locking_ends, locking_range, power_ends, power_range
 
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
-    from phasebrush.core.trace_bands import TraceBand
-    from phasebrush.model.results import Snapshot, Trace, Traces
+    from phasebrush.model.results import Snapshot, Trace
 
     Floats = NDArray[np.float64]
 
 Shown = Literal["locking", "power"]
-WIDEST = 2.0
-"""How much wider than the map's scale a trace may make its axis."""
 
 
 def _titles(snapshot: Snapshot, kind: Shown) -> tuple[str, ...]:
@@ -47,15 +45,6 @@ def _values(trace: Trace, kind: Shown) -> Floats:
     return trace.locking if kind == "locking" else trace.power_db
 
 
-def _ends(band: TraceBand, traces: Traces, kind: Shown) -> tuple[Floats, Floats] | None:
-    """Ends of the band; of evoked and induced power there is none."""
-    if kind == "power":
-        return (band.power_db_low, band.power_db_high) if traces.part == "total" else None
-    if traces.measure == "ITC":
-        return band.itc_low, band.itc_high
-    return band.ppc_low, band.ppc_high
-
-
 def draw_trace(place: Place, snapshot: Snapshot, kind: Shown) -> None:
     """Draw a line a set, with bands and the level of chance."""
     axes, style, traces = place.axes, place.style, snapshot.traces
@@ -64,6 +53,7 @@ def draw_trace(place: Place, snapshot: Snapshot, kind: Shown) -> None:
         return
     axes.axhline(0.0, color=style.look.hairline, linewidth=style.thin, zorder=1)
     picked = len(traces.of) > 1
+    ends_of = locking_ends if kind == "locking" else power_ends
     rested = None if Result.RESTED in snapshot.outdated else snapshot.rested
     for name in SET_NAMES:
         trace = traces.of.get(name)
@@ -73,7 +63,7 @@ def draw_trace(place: Place, snapshot: Snapshot, kind: Shown) -> None:
         shown = np.where(traces.valid, _values(trace, kind), np.nan)
         axes.plot(traces.times_s, shown, zorder=3, label=f"{name} {trace.n}", **line)
         band = None if rested is None else rested.bands.get(name)
-        ends = None if band is None else _ends(band, traces, kind)
+        ends = None if band is None else ends_of(band, traces)
         if ends is not None and (name != "all" or not picked):
             axes.fill_between(
                 traces.times_s, *ends, where=traces.valid.tolist(), color=line["color"],
@@ -84,7 +74,7 @@ def draw_trace(place: Place, snapshot: Snapshot, kind: Shown) -> None:
                 trace.chance, color=line["color"], linestyle=(0, (1, 1.6)), zorder=2.5,
                 linewidth=1.6 * style.thin,
             )  # fmt: skip
-    _set_scale(place, traces, kind)
+    axes.set_ylim(*(locking_range if kind == "locking" else power_range)(traces))
     draw_value_ticks(axes)
     unit = traces.measure if kind == "locking" else "dB re baseline"
     axes.set_ylabel(unit)
@@ -95,18 +85,6 @@ def draw_trace(place: Place, snapshot: Snapshot, kind: Shown) -> None:
         color=style.look.text, linewidth=1.6 * style.thick, solid_capstyle="butt", zorder=5,
     )  # fmt: skip
     draw_legend(place)
-
-
-def _set_scale(place: Place, traces: Traces, kind: Shown) -> None:
-    """As on screen: a common scale, that a trace may widen."""
-    if kind == "locking":
-        low = 0.0 if traces.measure == "ITC" else -0.25 * traces.locking_limit
-        place.axes.set_ylim(low, traces.locking_limit * 1.04)
-        return
-    drawn = [np.abs(np.where(traces.valid, x.power_db, 0.0)) for x in traces.of.values()]
-    reach = max((float(x[np.isfinite(x)].max(initial=0.0)) for x in drawn), default=0.0)
-    limit = max(traces.db_limit, min(np.ceil(reach), WIDEST * traces.db_limit)) * 1.04
-    place.axes.set_ylim(-limit, limit)
 
 
 def _panel(words: str, kind: Shown) -> Panel:

@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-import math
 from typing import TYPE_CHECKING
-
-import numpy as np
 
 from phasebrush.gui.chance_levels import ChanceLevels
 from phasebrush.gui.number_words import fixed
 from phasebrush.gui.views.trace_view import TraceView
+from phasebrush.model.trace_scale import locking_ends, locking_range, power_ends, power_range
 
 if TYPE_CHECKING:
+    import numpy as np
     from numpy.typing import NDArray
     from PySide6.QtWidgets import QWidget
 
@@ -22,8 +21,6 @@ if TYPE_CHECKING:
     Floats = NDArray[np.float64]
 
 CHANCE_WORDS = "dotted: chance 5 %"
-WIDEST = 2.0
-"""How much wider than the map's scale a trace may make its axis."""
 BAND_WORDS = (
     " Bands: 95 % bootstrap over trials (1,000 draws), of A and B, or of all where neither is "
     "picked. Hatched at the foot: times that a subset was picked by."
@@ -54,9 +51,7 @@ class LockingTrace(TraceView):
 
     def band(self, band: TraceBand, traces: Traces) -> tuple[Floats, Floats]:
         """Ends of the band of ITC or PPC."""
-        if traces.measure == "ITC":
-            return band.itc_low, band.itc_high
-        return band.ppc_low, band.ppc_high
+        return locking_ends(band, traces)
 
     def set_scale(self, snapshot: Snapshot) -> None:
         """From 0 (PPC: from a little below) to the largest value; move the chance levels."""
@@ -64,8 +59,7 @@ class LockingTrace(TraceView):
         if traces is not None:
             if traces.measure != self._measure:
                 self._name(traces.measure)
-            low = 0.0 if traces.measure == "ITC" else -0.25 * traces.locking_limit
-            self.plot.set_value_range(low, traces.locking_limit * 1.04)
+            self.plot.set_value_range(*locking_range(traces))
         of = traces.of if traces is not None else {}
         self.chances.setVisible(bool(of))
         levels = {name: trace.chance for name, trace in of.items()}
@@ -100,21 +94,12 @@ class PowerTrace(TraceView):
 
     def band(self, band: TraceBand, traces: Traces) -> tuple[Floats, Floats] | None:
         """Ends of the band of total power."""
-        return (band.power_db_low, band.power_db_high) if traces.part == "total" else None
+        return power_ends(band, traces)
 
     def set_scale(self, snapshot: Snapshot) -> None:
-        """Symmetric around 0: as wide as the maps of the sets, or wider where a trace needs it.
-
-        A set of few trials may need far more; it runs along the edge, so that the others can
-        be read.
-        """
-        traces = snapshot.traces
-        if traces is None:
-            return
-        drawn = [np.abs(np.where(traces.valid, x.power_db, 0.0)) for x in traces.of.values()]
-        reach = max((float(x[np.isfinite(x)].max(initial=0.0)) for x in drawn), default=0.0)
-        limit = max(traces.db_limit, min(math.ceil(reach), WIDEST * traces.db_limit)) * 1.04
-        self.plot.set_value_range(-limit, limit)
+        """Symmetric around 0, as wide as the maps of the sets or a little wider."""
+        if snapshot.traces is not None:
+            self.plot.set_value_range(*power_range(snapshot.traces))
 
     def words(self, value: float) -> str:
         """Power in words."""
